@@ -1,0 +1,147 @@
+//! The board: shapes per layer with role and net, holes, ports, call-outs, outline.
+
+use std::collections::BTreeMap;
+
+use crate::base::{Nm, Point};
+use crate::layout::Node;
+
+/// The side of the board a layer lies on.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Face {
+    /// Component side; strips.
+    Top,
+    /// Ground side; drawn as seen through the board from the top.
+    Bottom,
+}
+
+/// A layer of the board.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Layer {
+    /// Copper 1 (top) to n (bottom).
+    Copper(u8),
+    /// Solder mask; shapes are the openings.
+    Mask(Face),
+    /// Legend print.
+    Legend(Face),
+}
+
+/// What a shape is for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Role {
+    /// Resonators and lines of the circuit, feeds included.
+    Circuit,
+    /// Signal pad and taper of a launch (joined to the circuit's shape by the union).
+    Launch,
+    /// Ground copper.
+    Ground,
+    /// Text.
+    Text,
+    /// Opening in the mask.
+    Opening,
+}
+
+/// A polygon with voids, outer ring counter-clockwise, voids clockwise, no repeated first vertex.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Shape {
+    /// Outer ring.
+    pub outer: Vec<Point>,
+    /// Voids.
+    pub voids: Vec<Vec<Point>>,
+    /// What it is for.
+    pub role: Role,
+    /// Net name; empty for what is no conductor.
+    pub net: String,
+}
+
+/// What a hole is for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum HoleUse {
+    /// Plated via to ground.
+    Via,
+    /// Unplated mounting hole.
+    Mounting,
+}
+
+/// A round hole, finished size.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Hole {
+    /// Centre.
+    pub at: Point,
+    /// Finished diameter.
+    pub diameter: Nm,
+    /// Pad diameter on both faces; zero for none.
+    pub pad: Nm,
+    /// What for; vias are plated, mounting holes are not.
+    pub purpose: HoleUse,
+    /// Net; empty for none.
+    pub net: String,
+}
+
+impl Hole {
+    /// Whether the wall is plated.
+    pub fn is_plated(&self) -> bool {
+        self.purpose == HoleUse::Via
+    }
+}
+
+/// A land where a connector or wire is soldered: a flash on top of the copper it lies in.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Land {
+    /// Centre.
+    pub at: Point,
+    /// Size along x and y.
+    pub size: [Nm; 2],
+    /// Net.
+    pub net: String,
+    /// Reference and pin: `J1`, `1`.
+    pub pin: (String, String),
+}
+
+/// A port: the plane at the connector and the reference plane of the response.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Port {
+    /// 1 or 2.
+    pub number: usize,
+    /// Where the connector touches.
+    pub edge: Node,
+    /// Where launch meets feed.
+    pub plane: Node,
+    /// Net of the signal copper.
+    pub net: String,
+}
+
+/// A dimension as it lies on the board.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Callout {
+    /// Name of the dimension.
+    pub dimension: String,
+    /// One end.
+    pub from: Point,
+    /// Other end.
+    pub to: Point,
+}
+
+/// Everything that can be made, finished size, origin at the board's lower left corner.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Board {
+    /// Board outline (the routed edge).
+    pub outline: Shape,
+    /// Whether the outline is a real board edge.
+    pub outline_drawn: bool,
+    /// Shapes per layer: one per conductor and net, sorted.
+    pub layers: BTreeMap<Layer, Vec<Shape>>,
+    /// Holes, sorted.
+    pub holes: Vec<Hole>,
+    /// Solder lands on the top.
+    pub lands: Vec<Land>,
+    /// Ports.
+    pub ports: Vec<Port>,
+    /// Corners of the circuit's bounding box, launches not included.
+    pub circuit: [Point; 2],
+    /// Dimensions to control.
+    pub callouts: Vec<Callout>,
+    /// Turn of the circuit, degrees counter-clockwise.
+    pub turn_deg: f64,
+    /// Nets the family expects its circuit to form.
+    pub expected_nets: usize,
+}

@@ -1,0 +1,11 @@
+//! What every room stands on: problems, quantities, whole nanometres, root finding.
+
+mod nm;
+mod problem;
+mod quantity;
+mod root;
+
+pub use nm::{Nm, Point};
+pub use problem::{Outcome, Place, Problem, Severity};
+pub use quantity::{Dimensionality, format_quantity, parse_quantity};
+pub use root::{bisect, golden_section};

@@ -1,0 +1,75 @@
+//! The dimension set assembled into parts joined at nodes; neighbours share coordinates.
+
+use crate::base::{Nm, Point};
+
+/// The mouth of a joint: the two corners of the strip's end, rounded once. Seen looking out of the first part that names it,
+/// `left` is on the left hand.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Node {
+    /// Left corner.
+    pub left: Point,
+    /// Right corner.
+    pub right: Point,
+}
+
+impl Node {
+    /// Width of the mouth.
+    pub fn width(&self) -> Nm {
+        let (dx, dy) = ((self.left.x - self.right.x).m(), (self.left.y - self.right.y).m());
+        Nm::from_m(dx.hypot(dy))
+    }
+
+    /// Middle of the mouth, rounded to 1 nm.
+    pub fn middle(&self) -> Point {
+        Point { x: Nm((self.left.x.0 + self.right.x.0).div_euclid(2)), y: Nm((self.left.y.0 + self.right.y.0).div_euclid(2)) }
+    }
+}
+
+/// A part of a layout. A closed set: every stage must answer for each.
+#[derive(Clone, Debug, PartialEq)]
+pub enum Part {
+    /// N >= 1 parallel coupled strips of one length. Nodes: near ends 1..N, then far ends 1..N.
+    Lines {
+        /// Strip widths, in order across.
+        widths: Vec<Nm>,
+        /// Gaps between neighbours, N-1 of them.
+        gaps: Vec<Nm>,
+        /// Common length.
+        length: Nm,
+    },
+    /// An open end; no length, its copper is the strip's. One node.
+    OpenEnd,
+    /// A step in width; no length. Two nodes, one mouth within the other's.
+    Step,
+    /// A launch at the board's edge. One node: the reference plane where the feed begins. The order says which class.
+    Launch {
+        /// 1 or 2.
+        port: usize,
+    },
+}
+
+/// A part with the nodes it joins.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Placed {
+    /// The part.
+    pub part: Part,
+    /// Node indices, in the part's own order.
+    pub nodes: Vec<usize>,
+    /// Names of the dimensions it is drawn from.
+    pub serves: Vec<String>,
+}
+
+/// A circuit assembled from a dimension set, port axes along x, before any turn of the whole.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Layout {
+    /// Joints.
+    pub nodes: Vec<Node>,
+    /// Parts.
+    pub parts: Vec<Placed>,
+    /// Nodes of port 1, port 2: where launch meets feed; the reference planes of the response.
+    pub ports: Vec<usize>,
+    /// Turn of the whole circuit, applied last to the union, degrees counter-clockwise.
+    pub turn_deg: f64,
+    /// How many nets the copper of the circuit must form, ports included.
+    pub expected_nets: usize,
+}

@@ -1,0 +1,5 @@
+//! One strip, coupled strips and discontinuities as built: impedance, effective permittivity, dispersion and loss.
+
+mod as_built;
+
+pub use as_built::AsBuilt;

@@ -1,0 +1,7 @@
+//! Layout and as-built lines to S-parameters, response figures and Touchstone.
+
+mod figures;
+mod response;
+
+pub use figures::{Figures, Verdict};
+pub use response::{Method, Response};

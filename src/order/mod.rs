@@ -1,0 +1,5 @@
+//! What is wanted: the order, valid by construction, every default resolved and recorded.
+
+mod types;
+
+pub use types::*;
