@@ -48,6 +48,11 @@ impl AsBuilt {
         }
     }
 
+    /// Frequency times dielectric thickness in GHz mm, the measure of dispersion in the published laws.
+    pub fn normalised_frequency_ghz_mm(&self, f_hz: f64) -> f64 {
+        f_hz * self.thickness_m * 1e-6
+    }
+
     /// The same board without loss.
     pub fn without_loss(&self) -> AsBuilt {
         AsBuilt { lossless: true, ..self.clone() }
