@@ -16,6 +16,7 @@ mod single;
 mod statics;
 mod step;
 mod strip;
+pub mod stripline;
 mod surface;
 
 pub use as_built::AsBuilt;
