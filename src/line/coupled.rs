@@ -40,8 +40,16 @@ pub fn air_impedances_ohm(u: f64, g: f64) -> EvenOdd<f64> {
         let fading = (SMALLEST_GAP - g) / SMALLEST_GAP;
         [here[0] - (beside[0] - here[0]) / SLOPE_STEP * fading, here[1] + (beside[1] - here[1]) / SLOPE_STEP * ln_excess]
     };
-    let of = |q: f64| single / (1.0 - single / ETA0_OHM * q);
-    EvenOdd { even: of(q4), odd: of(q10) }
+    let of = |share: f64| single / (1.0 - share);
+    EvenOdd { even: of(bounded(single / ETA0_OHM * q4, 0.5)), odd: of(bounded(single / ETA0_OHM * q10, 0.0)) }
+}
+
+/// A share of a strip's charge (what the neighbour takes in the even mode, less what it adds in the odd mode) kept below `limit` + 0.1 without a corner.
+///
+/// In the even mode it cannot exceed a half: strips that touch are one of twice the width, which holds more charge than one alone; in the odd mode it cannot
+/// be positive. The published fits overshoot both for strips much narrower than their range and would turn the impedance negative there.
+fn bounded(share: f64, limit: f64) -> f64 {
+    if share <= limit { share } else { limit + 0.1 * ((share - limit) / 0.1).tanh() }
 }
 
 /// Q4 and Q10 of the source.

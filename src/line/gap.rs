@@ -46,3 +46,17 @@ pub fn in_range(strip: &Strip, gap_m: f64) -> bool {
 fn built_share(strip: &Strip, gap_m: f64) -> f64 {
     super::statics::built_gap_m(&strip.board, gap_m) / strip.built_width_m
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::line::AsBuilt;
+
+    #[test]
+    fn knows_its_range() {
+        let board = AsBuilt::for_tests(10.2, 0.0);
+        let strip = Strip::new(&board, 0.762e-3);
+        assert!(in_range(&strip, 0.3e-3) && !in_range(&strip, 0.05e-3) && !in_range(&Strip::new(&board, 3e-3), 0.5e-3));
+        assert!(gap(&strip, 0.2e-3).series_f > gap(&strip, 0.4e-3).series_f);
+    }
+}

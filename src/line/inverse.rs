@@ -12,7 +12,7 @@ use crate::base::bisect;
 /// Widths looked at, over the dielectric thickness: beyond the ends no formula is trusted and no filter is drawn.
 const WIDTHS: [f64; 2] = [0.01, 60.0];
 /// Gaps looked at, over the dielectric thickness.
-const GAPS: [f64; 2] = [0.002, 20.0];
+const GAPS: [f64; 2] = [0.005, 20.0];
 /// Bracket in ln(size) at which a root is taken as found: below any grid.
 const CLOSE: f64 = 1e-11;
 /// Newton steps before the slow, sure way is taken; it needs four or five.
@@ -112,7 +112,7 @@ fn width_unreachable(board: &AsBuilt, subject: &str, wanted: f64, [highest, lowe
 /// The drawn width and gap (m) of the pair of even and odd impedance `z0e_ohm`, `z0o_ohm` at `f_hz` (zero: static).
 ///
 /// # Errors
-/// [`Unreachable`] when the strips would be narrower than 0.01 or wider than 60 times the dielectric thickness, or the gap below 0.002 or above 20 times.
+/// [`Unreachable`] when the strips would be narrower than 0.01 or wider than 60 times the dielectric thickness, or the gap below 0.005 or above 20 times.
 pub fn pair_for_impedances(board: &AsBuilt, z0e_ohm: f64, z0o_ohm: f64, f_hz: f64) -> Result<(f64, f64), Unreachable> {
     if !(z0o_ohm > 0.0 && z0e_ohm.is_finite() && f_hz >= 0.0 && f_hz.is_finite()) {
         let message = format!("no pair has an even impedance of {z0e_ohm} ohm and an odd one of {z0o_ohm} ohm at {f_hz} Hz");
@@ -186,6 +186,14 @@ impl PairSearch {
     /// For each gap the width that gives the mean; then the gap that gives the ratio.
     fn nested(&self) -> Result<(f64, f64), Unreachable> {
         let ([w_low, w_high], [s_low, s_high]) = (self.widths(), self.gaps());
+        let mean_at = |ln_w: f64, ln_s: f64| (self.residual(ln_w, ln_s)[0] + self.ln_mean).exp();
+        // A wide gap leaves the mean highest, a narrow one lowest.
+        let (wanted, ends) = (self.ln_mean.exp(), [mean_at(w_low, s_high), mean_at(w_high, s_low)]);
+        let mean_unreachable =
+            |ends: [f64; 2]| width_unreachable(&self.board, "a mean impedance sqrt(Z0e Z0o)", wanted, ends, wanted > ends[0]);
+        if wanted > ends[0] || wanted < ends[1] {
+            return Err(mean_unreachable(ends));
+        }
         let width_at = |ln_s: f64| bisect(|ln_w| self.residual(ln_w, ln_s)[0], w_low, w_high, CLOSE);
         // Where no width gives the mean, the nearest end of the widths stands in, so that the search in the gap stays continuous.
         let nearest = |ln_s: f64| width_at(ln_s).unwrap_or(if self.residual(w_low, ln_s)[0] < 0.0 { w_low } else { w_high });
@@ -195,11 +203,7 @@ impl PairSearch {
         };
         match width_at(ln_s) {
             Some(ln_w) => Ok((ln_w.exp(), ln_s.exp())),
-            None => {
-                let [highest, lowest] = [w_low, w_high].map(|ln_w| (self.residual(ln_w, ln_s)[0] + self.ln_mean).exp());
-                let wanted = self.ln_mean.exp();
-                Err(width_unreachable(&self.board, "a mean impedance sqrt(Z0e Z0o)", wanted, [highest, lowest], wanted > highest))
-            }
+            None => Err(mean_unreachable([mean_at(w_low, ln_s), mean_at(w_high, ln_s)])),
         }
     }
 
@@ -237,5 +241,58 @@ impl PairSearch {
             ),
             help: help.into(),
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn pair_of_any_usual_geometry_is_found_again() {
+        for er in [1.0, 2.2, 4.4, 15.0] {
+            for t in [0.0, 43e-6] {
+                let board = AsBuilt::for_tests(er, t).without_loss();
+                for (i, j) in (0..9).flat_map(|i| (0..9).map(move |j| (i, j))) {
+                    let w = board.thickness_m * 0.05 * 400f64.powf(i as f64 / 8.0);
+                    let s = board.thickness_m * 0.01 * 1000f64.powf(j as f64 / 8.0);
+                    let wanted = Pair::new(&board, w, s).at(5e9);
+                    let (found_w, found_s) = pair_for_impedances(&board, wanted.even.z0_ohm, wanted.odd.z0_ohm, 5e9).unwrap();
+                    // Weak couplings: k = 5e-4 known to 1e-12 gives s to some 1e-9.
+                    assert!(
+                        (found_w / w - 1.0).abs() < 1e-7 && (found_s / s - 1.0).abs() < 1e-6,
+                        "er {er} t {t} w {w} s {s}: {found_w} {found_s}"
+                    );
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn width_is_found_again() {
+        for er in [1.0, 3.0, 10.2] {
+            let board = AsBuilt::for_tests(er, 35e-6);
+            for w in [0.05e-3, 0.5e-3, 2e-3, 20e-3] {
+                let z0_ohm = Strip::new(&board, w).at(8e9).z0_ohm;
+                assert!((width_for_impedance(&board, z0_ohm, 8e9).unwrap() / w - 1.0).abs() < 1e-9);
+            }
+        }
+    }
+
+    #[test]
+    fn says_what_is_out_of_reach() {
+        let board = AsBuilt::for_tests(3.0, 35e-6);
+        let pair = |even, odd| pair_for_impedances(&board, even, odd, 2e9).map_err(|e| e.what);
+        assert_eq!(width_for_impedance(&board, 400.0, 2e9).map_err(|e| e.what), Err(OutOfReach::WidthTooSmall));
+        assert_eq!(width_for_impedance(&board, 1.0, 2e9).map_err(|e| e.what), Err(OutOfReach::WidthTooLarge));
+        assert_eq!(width_for_impedance(&board, f64::NAN, 2e9).map_err(|e| e.what), Err(OutOfReach::NotALine));
+        assert_eq!(pair(300.0, 5.0), Err(OutOfReach::GapTooSmall));
+        assert_eq!(pair(50.0001, 49.9999), Err(OutOfReach::GapTooLarge));
+        assert_eq!(pair(900.0, 700.0), Err(OutOfReach::WidthTooSmall));
+        assert_eq!(pair(1.1, 1.0), Err(OutOfReach::WidthTooLarge));
+        assert_eq!(pair(40.0, 60.0), Err(OutOfReach::NotALine));
+        assert_eq!(pair(f64::INFINITY, 60.0), Err(OutOfReach::NotALine));
+        let problem = pair_for_impedances(&board, 300.0, 5.0, 2e9).unwrap_err().problem(Place::Dimension("gap 1".into()));
+        assert!(problem.is_error() && problem.message.contains("coupling") && !problem.help.is_empty(), "{problem}");
     }
 }

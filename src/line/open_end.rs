@@ -86,3 +86,45 @@ pub fn radiation_factor(eps_eff: f64) -> f64 {
     let root = e.sqrt();
     (e + 1.0) / e - (e - 1.0).powi(2) / (2.0 * e * root) * ((root + 1.0) / (root - 1.0)).ln()
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::line::AsBuilt;
+
+    #[test]
+    fn extension_stays_a_fringe_up_to_very_wide_strips() {
+        // The miscopied form of the law goes to +1.4 and -3.2 heights between w/h 30 and 100.
+        for er in [1.0, 2.2, 9.8, 15.0] {
+            for u in [0.01, 0.1, 1.0, 10.0, 30.0, 100.0] {
+                let board = AsBuilt::for_tests(er, 0.0);
+                let share = extension_m(&Strip::new(&board, u * board.thickness_m)) / board.thickness_m;
+                assert!(share > 0.05 && share < 1.1, "er {er} u {u}: {share}");
+            }
+        }
+    }
+
+    #[test]
+    fn pair_ends_go_to_single_and_to_double_width() {
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        let h = board.thickness_m;
+        let single = |u: f64| extension_m(&Strip::new(&board, u * h));
+        for u in [0.3, 1.0, 3.0] {
+            let far = pair_extensions_m(&Pair::new(&board, u * h, 10.0 * h));
+            assert!((far.even / single(u) - 1.0).abs() < 1e-3 && (far.odd / single(u) - 1.0).abs() < 1e-3);
+            // A closing gap makes one strip of twice the width: within the 6 % that the law leaves there.
+            let near = pair_extensions_m(&Pair::new(&board, u * h, 0.02 * h));
+            assert!((near.even / single(2.0 * u) - 1.0).abs() < 0.07 && near.odd < 0.8 * single(u), "{u} {near:?}");
+        }
+    }
+
+    #[test]
+    fn radiation_grows_with_frequency_and_ends_without_loss() {
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        let strip = Strip::new(&board, 1.9e-3);
+        let ratio = radiation_conductance_s(&strip, 4e9) / radiation_conductance_s(&strip, 2e9);
+        assert!((ratio / 4.0 - 1.0).abs() < 0.02, "{ratio}");
+        assert_eq!(radiation_conductance_s(&Strip::new(&board.without_loss(), 1.9e-3), 4e9), 0.0);
+        assert!((radiation_factor(1.0) - 2.0).abs() < 1e-6 && radiation_factor(1e4) > 0.0);
+    }
+}

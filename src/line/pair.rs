@@ -97,3 +97,84 @@ impl Pair {
         self.dispersion.impedance_factor(f_n, self.single_eps_eff, eps_eff)
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::line::Strip;
+
+    #[test]
+    fn wide_gap_tends_to_the_single_strip() {
+        // At 20 heights the coupling of thin pairs is 1e-3 (exact static solutions fall as 1/s^2); 0.5 % for the formulas' own error.
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        for f in [0.0, 5e9] {
+            let (pair, strip) = (Pair::new(&board, 1.9e-3, 20.0 * 0.762e-3).at(f), Strip::new(&board, 1.9e-3).at(f));
+            for mode in [pair.even, pair.odd] {
+                assert!(
+                    (mode.z0_ohm / strip.z0_ohm - 1.0).abs() < 5e-3 && (mode.eps_eff / strip.eps_eff - 1.0).abs() < 5e-3,
+                    "{pair:?} {strip:?}"
+                );
+                assert!((mode.conductor_np_per_m - strip.conductor_np_per_m).abs() <= 0.02 * strip.conductor_np_per_m);
+            }
+        }
+    }
+
+    #[test]
+    fn coupling_falls_with_the_gap_whatever_the_copper() {
+        for er in [1.0, 2.2, 6.15, 15.0] {
+            for t in [0.0, 18e-6, 70e-6] {
+                let board = AsBuilt::for_tests(er, t);
+                for u in [0.05, 0.3, 1.0, 4.0, 20.0] {
+                    let mut last = 1.0;
+                    for step in 0..150 {
+                        let gap = 0.762e-3 * 0.01 * 1000f64.powf(step as f64 / 149.0);
+                        let z = Pair::new(&board, u * 0.762e-3, gap).static_z0_ohm();
+                        let coupling = (z.even - z.odd) / (z.even + z.odd);
+                        assert!(coupling > 0.0 && coupling < last, "er {er} t {t} u {u} gap {gap}: {coupling} after {last}");
+                        last = coupling;
+                    }
+                }
+            }
+        }
+    }
+
+    #[test]
+    fn slopes_have_no_jump() {
+        // Across the places where the formulas are continued (thin gaps): the slope in ln s may bend, not jump.
+        for t in [0.0, 18e-6, 70e-6] {
+            let board = AsBuilt::for_tests(3.0, t);
+            let odd = |s: f64| Pair::new(&board, 1.5e-3, s).odd_at(3e9).z0_ohm;
+            let slope = |s: f64| (odd(s * 1.0001) - odd(s / 1.0001)) / 2e-4;
+            let mut last: Option<f64> = None;
+            for step in 0..2000 {
+                let here = slope(5e-6 * 400f64.powf(step as f64 / 1999.0));
+                // Steps of 0.3 % in s; the slope itself changes by its own size over about a factor of 2.7 in s, so by 0.3 % a step; ten times that is a jump.
+                if let Some(last) = last {
+                    assert!((here - last).abs() < 0.03 * here.abs().max(1.0), "t {t} step {step}: {last} then {here}");
+                }
+                last = Some(here);
+            }
+        }
+    }
+
+    #[test]
+    fn extremes_stay_finite() {
+        for er in [1.0, 1.03, 2.2, 15.0, 100.0] {
+            for t in [0.0, 1e-6, 70e-6, 700e-6] {
+                for (w, s) in [(0.0, 0.0), (1e-6, 1e-9), (1e-3, -1.0), (1e-3, 1e-6), (1e-3, 0.1e-3), (1.0, 1.0), (1e-5, 1.0), (0.1, 1e-6)] {
+                    let pair = Pair::new(&AsBuilt { undercut_m: 0.5 * t, widening_m: 1e-6, ..AsBuilt::for_tests(er, t) }, w, s);
+                    for f in [0.0, 1e9, 1e11, 1e14] {
+                        let modes = pair.at(f);
+                        for mode in [modes.even, modes.odd] {
+                            assert!(
+                                mode.z0_ohm.is_finite() && mode.z0_ohm > 0.0 && mode.eps_eff.is_finite(),
+                                "{er} {t} {w} {s} {f} {mode:?}"
+                            );
+                            assert!(mode.alpha_np_per_m().is_finite(), "{er} {t} {w} {s} {f} {mode:?}");
+                        }
+                    }
+                }
+            }
+        }
+    }
+}

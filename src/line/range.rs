@@ -117,3 +117,25 @@ impl Range<'_> {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn warns_outside_only() {
+        let board = AsBuilt::for_tests(3.0, 35e-6);
+        assert_eq!(Strip::new(&board, 1.9e-3).problems(10e9), vec![]);
+        assert_eq!(Pair::new(&board, 1.9e-3, 0.3e-3).problems(10e9), vec![]);
+        let codes = |problems: Vec<Problem>| problems.iter().map(|p| p.code).collect::<Vec<_>>();
+        assert_eq!(codes(Strip::new(&board, 0.1).problems(60e9)), ["line-model-range", "line-model-range"]);
+        let lid = AsBuilt { lid_m: Some(3e-3), undercut_m: 20e-6, ..board };
+        assert_eq!(codes(Strip::new(&lid, 30e-6).problems(1e9)), ["lid-not-modelled", "strip-top-vanishes"]);
+        // Gap below a tenth of the height and below three copper thicknesses.
+        assert_eq!(
+            codes(Pair::new(&AsBuilt::for_tests(3.0, 35e-6), 1.9e-3, 0.05e-3).problems(1e9)),
+            ["line-model-range", "line-model-range"]
+        );
+        assert_eq!(codes(Pair::new(&AsBuilt::for_tests(3.0, 35e-6), f64::NAN, 0.3e-3).problems(1e9)).len(), 1);
+    }
+}

@@ -45,3 +45,16 @@ fn mean(mut a: f64, mut b: f64) -> f64 {
     }
     a
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn wide_gap_is_the_single_strip() {
+        let pair = pair_impedances_ohm(0.8, 8.0, 2.2);
+        for z in [pair.even, pair.odd] {
+            assert!((z / impedance_ohm(0.8, 2.2) - 1.0).abs() < 1e-8);
+        }
+    }
+}

@@ -45,10 +45,11 @@ pub fn rows() -> Result<usize, String> {
         }
     }
     // D. M. Pozar, *Microwave Engineering*, microstrip attenuation example: er 9.9, h 0.5 mm, W 0.483 mm, tan d 0.001, 10 GHz: dielectric 0.255 Np/m,
-    // copper 1.08 Np/m by Rs/(Z0 W). The dielectric part to 1 %: the book's effective permittivity is of an older closed form, and static.
+    // copper 1.08 Np/m by Rs/(Z0 W). The dielectric part to 3 %: the book's effective permittivity is the static one,
+    // ours at 10 GHz is 0.2 higher, which is 2 % of the loss.
     let alumina = AsBuilt { loss_tangent: 1e-3, lossless: false, ..thick(9.9, 0.5e-3, 5e-6) };
     let mode = Strip::new(&alumina, 0.483e-3).at(10e9);
-    table.relative("alumina, dielectric", mode.dielectric_np_per_m, 0.255, 0.02);
+    table.relative("alumina, dielectric", mode.dielectric_np_per_m, 0.255, 0.03);
     // The book's simple law takes a uniform current over one width. Hammerstad & Jensen 1980 estimate the share that is left by the current on both sides of
     // the strip as exp(-1.2 (Z0 sqrt(eps_eff) / eta0)^0.7) = 0.581; an estimate: 15 %.
     table.relative("alumina, copper", mode.conductor_np_per_m, 0.581 * 1.079, 0.15);
