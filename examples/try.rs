@@ -10,6 +10,25 @@ fn order(from: f64, to: f64, n: usize, er: f64, h: f64, shape: ResponseShape, po
         housing: None, defaults: vec![] }
 }
 fn main() {
+    if std::env::args().nth(1).as_deref() == Some("sweep") {
+        let o = order(3.4e9, 3.8e9, 5, 3.0, 0.762e-3, ResponseShape::EqualRipple { ripple_db: 0.1 }, [50., 50.]);
+        let fam = stripwright::family::of(&o).unwrap();
+        let (g, _) = fam.first_guess(&o, 5).unwrap();
+        let layout = fam.layout(&g).unwrap();
+        let f: Vec<f64> = (0..4000).map(|i| 1e9 + 2.5e6 * i as f64).collect();
+        for _ in 0..5 {
+        let book = stripwright::line::Book::new(stripwright::line::AsBuilt::nominal(&o));
+        let t = std::time::Instant::now();
+        let c = stripwright::network::Circuit::new(&layout, &book, [50., 50.], stripwright::network::Planes::Feed).unwrap();
+        let t1 = t.elapsed();
+        let r = c.sweep(&f);
+        println!("plan {:?} sweep {:.3} us/point {}", t1, t.elapsed().as_secs_f64() * 1e6 / 4000., r.s[0][0]);
+        let t = std::time::Instant::now();
+        for x in &f[..400] { c.sweep(&[*x]); }
+        println!("single {:.3} us/point", t.elapsed().as_secs_f64() * 1e6 / 400.);
+        }
+        return;
+    }
     let mut s = 1u64; let mut r = || { s = s.wrapping_add(0x9E3779B97F4A7C15); let mut z = s; z = (z ^ (z >> 30)).wrapping_mul(0xBF58476D1CE4E5B9); z = (z ^ (z >> 27)).wrapping_mul(0x94D049BB133111EB); ((z ^ (z >> 31)) >> 11) as f64 / (1u64 << 53) as f64 };
     let count: usize = std::env::args().nth(1).map_or(60, |a| a.parse().unwrap());
     let (mut met, mut refused, mut bad) = (0, 0, 0);

@@ -27,7 +27,7 @@ const INNER_OHM: f64 = 50.0;
 /// Straight pieces that stand for a taper; more changes |S11| by less than 1e-4 on the launches of the embedded classes.
 const TAPER_PIECES: usize = 6;
 /// With fewer frequencies than this the constants are computed at each of them instead of being interpolated.
-const INTERPOLATE_FROM: usize = 160;
+const INTERPOLATE_FROM: usize = 48;
 
 /// What one scattering block of the circuit is.
 #[derive(Clone, Debug)]

@@ -5,6 +5,8 @@
 
 /// Times the damping is raised before an iteration gives up.
 const MAX_RAISES: usize = 8;
+/// An iteration that lessens the sum by less than this part is the last.
+const LEAST_GAIN: f64 = 1e-2;
 
 /// Moves `x` to lessen the sum of squares of `residuals`; returns the final sum. `None` residuals count as infinitely bad.
 ///
@@ -58,7 +60,7 @@ pub fn minimize(
                 _ => damping *= 6.0,
             }
         }
-        if sum >= before * (1.0 - 1e-4) {
+        if sum >= before * (1.0 - LEAST_GAIN) {
             break;
         }
     }

@@ -27,10 +27,12 @@ const FIT_ITERATIONS: usize = 25;
 const LEVEL_ITERATIONS: usize = 8;
 const ROUNDS: usize = 4;
 /// Sample points of the first stage per degree, over a quarter of the bandwidth more than the band on each side.
-const SAMPLES_PER_DEGREE: usize = 10;
+const SAMPLES_PER_DEGREE: usize = 7;
 const SAMPLE_REACH: f64 = 1.25;
 /// Finite-difference step of a knob: large against the rounding of the layout to 1 nm, small against the curvature.
 const KNOB_STEP: f64 = 1e-3;
+/// A tenth of what is allowed: nothing that can be etched is gained by more.
+const ENOUGH: f64 = 0.1;
 /// Passes over all dimensions that try their neighbours on the grid.
 const NEIGHBOUR_PASSES: usize = 3;
 
@@ -172,8 +174,7 @@ impl Search<'_> {
             }
             minimize(&mut x, &steps, &greatest, LEVEL_ITERATIONS, |x| self.level(x));
             self.keep(&x, &mut best);
-            // A tenth of what is allowed: nothing is gained by more.
-            if best.0 < 0.1 {
+            if best.0 < ENOUGH {
                 break;
             }
         }
@@ -233,6 +234,9 @@ fn snap(family: &dyn Family, refined: &Dimensions, goal: &Goal, book: &Book) -> 
     let mut best = ratio(&snapped);
     let grid_m = Nm::from_m(refined.order.shop.grid_m).m();
     for _ in 0..NEIGHBOUR_PASSES {
+        if best < ENOUGH {
+            break;
+        }
         let before = best;
         for index in 0..snapped.list.len() {
             for step_m in [grid_m, -grid_m] {

@@ -4,8 +4,10 @@ use crate::base::bisect;
 use crate::network::Circuit;
 use crate::order::ResponseShape;
 
-/// Scan points per degree over twice the bandwidth: some twenty on each lobe, so that a parabola through three pins its extremum.
-const SCAN_PER_DEGREE: usize = 40;
+/// The scan reaches half a bandwidth beyond each edge.
+const SCAN_REACH: f64 = 2.0;
+/// Scan points per degree: some fifteen on each lobe, so that a parabola through three pins its extremum.
+const SCAN_PER_DEGREE: usize = 30;
 /// Edges are found to this part of the bandwidth, far below the one percent asked for.
 const EDGE_OF_WIDTH: f64 = 1e-7;
 
@@ -71,7 +73,7 @@ impl Passband {
         let level = goal.edge_reflection();
         let at = |f: f64| circuit.sweep(&[f]).s[0][0].norm_sqr();
         let points = SCAN_PER_DEGREE * (goal.degree + 1);
-        let f: Vec<f64> = (0..=points).map(|i| goal.frequency_hz(4.0 * i as f64 / points as f64 - 2.0)).collect();
+        let f: Vec<f64> = (0..=points).map(|i| goal.frequency_hz(SCAN_REACH * (2.0 * i as f64 / points as f64 - 1.0))).collect();
         let r: Vec<f64> = circuit.sweep(&f).s.iter().map(|s| s[0].norm_sqr()).collect();
         let first = r.iter().position(|r| *r <= level)?;
         let last = r.iter().rposition(|r| *r <= level)?;
