@@ -4,6 +4,8 @@
 //! frequency and in their sizes. Every number outside the range of its source is a warning from `problems`.
 
 mod as_built;
+mod book;
+mod coplanar;
 mod coupled;
 mod dispersion;
 pub mod gap;
@@ -20,6 +22,8 @@ pub mod stripline;
 mod surface;
 
 pub use as_built::AsBuilt;
+pub use book::Book;
+pub use coplanar::Coplanar;
 pub use coupled::EvenOdd;
 pub use inverse::{OutOfReach, Unreachable, pair_for_impedances, width_for_impedance};
 pub use mode::Mode;
