@@ -88,6 +88,8 @@ impl Dispersion {
     }
 
     /// For a pair.
+    // 0.6366 is a digit string of the source, not two over pi.
+    #[allow(clippy::approx_constant)]
     pub(super) fn pair(u: f64, g: f64, er: f64) -> Dispersion {
         let p10 = 0.242 * (er - 1.0).max(0.0).powf(0.55);
         let p13 = 1.695 * p10 / (0.414 + 1.605 * p10);
