@@ -25,8 +25,8 @@ use crate::layout::Node;
 use crate::layout::Part;
 use crate::layout::Placed;
 use crate::line::AsBuilt;
-use crate::line::Pair;
 use crate::line::C_M_PER_S;
+use crate::line::Pair;
 use crate::line::Strip;
 use crate::line::open_end;
 use crate::line::pair_for_impedances;
@@ -197,8 +197,9 @@ impl Family for EdgeCoupled {
     fn knobs(&self, set: &Dimensions) -> Vec<Knob> {
         let sections = set.degree + 1;
         let symmetric = set.order.filter.ports_ohm[0] == set.order.filter.ports_ohm[1]
-            && (1..=sections)
-                .all(|k| ["width", "gap", "length"].iter().all(|what| set.value(&section(k, what)) == set.value(&section(sections + 1 - k, what))));
+            && (1..=sections).all(|k| {
+                ["width", "gap", "length"].iter().all(|what| set.value(&section(k, what)) == set.value(&section(sections + 1 - k, what)))
+            });
         let built = AsBuilt::nominal(&set.order).without_loss();
         let at = |k: usize, what: &str| set.list.iter().position(|d| d.name == section(k, what));
         let mirrored = |k: usize, count: usize| if symmetric && 2 * k != count + 1 { vec![k, count + 1 - k] } else { vec![k] };
@@ -249,7 +250,13 @@ fn impedances(inverter: f64, resonator_ohm: f64) -> (f64, f64) {
     (resonator_ohm * (1.0 + inverter + inverter * inverter), resonator_ohm * (1.0 - inverter + inverter * inverter))
 }
 
-fn section_guess(built: &AsBuilt, k: usize, [inverter, even_ohm, odd_ohm]: [f64; 3], [width_m, gap_m]: [f64; 2], center_hz: f64) -> [Dimension; 3] {
+fn section_guess(
+    built: &AsBuilt,
+    k: usize,
+    [inverter, even_ohm, odd_ohm]: [f64; 3],
+    [width_m, gap_m]: [f64; 2],
+    center_hz: f64,
+) -> [Dimension; 3] {
     let pair = Pair::new(built, width_m, gap_m);
     // A quarter wave of the mean of the two indices: the section's image phase passes 90 degrees there to first order in their difference.
     let index = 0.5 * (pair.even_at(center_hz).eps_eff.sqrt() + pair.odd_at(center_hz).eps_eff.sqrt());

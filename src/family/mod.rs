@@ -82,7 +82,12 @@ pub fn of(order: &Order) -> Result<&'static dyn Family, Problem> {
     let name = &order.filter.family;
     FAMILIES.iter().find(|family| family.name() == name).copied().ok_or_else(|| {
         let known: Vec<&str> = FAMILIES.iter().map(|family| family.name()).collect();
-        Problem::error("family-unknown", Place::Key("filter.family".into()), format!("no family is called \"{name}\""), format!("known are: {}", known.join(", ")))
+        Problem::error(
+            "family-unknown",
+            Place::Key("filter.family".into()),
+            format!("no family is called \"{name}\""),
+            format!("known are: {}", known.join(", ")),
+        )
     })
 }
 

@@ -257,18 +257,17 @@ impl Circuit {
 }
 
 fn not_joined() -> Problem {
-    Problem::error("layout-not-joined", Place::Whole, "the parts of the layout do not form one two-port", "this is a fault of the program: please report the order")
+    Problem::error(
+        "layout-not-joined",
+        Place::Whole,
+        "the parts of the layout do not form one two-port",
+        "this is a fault of the program: please report the order",
+    )
 }
 
 fn strip_constants(strip: &Strip, f_hz: f64) -> StripConstants {
     let mode = strip.at(f_hz);
-    [
-        mode.eps_eff.sqrt(),
-        mode.z0_ohm,
-        mode.alpha_np_per_m(),
-        open_end::radiation_conductance_s(strip, f_hz),
-        open_end::extension_m(strip),
-    ]
+    [mode.eps_eff.sqrt(), mode.z0_ohm, mode.alpha_np_per_m(), open_end::radiation_conductance_s(strip, f_hz), open_end::extension_m(strip)]
 }
 
 fn pair_constants(pair: &Pair, f_hz: f64) -> PairConstants {

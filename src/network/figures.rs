@@ -225,9 +225,11 @@ impl Reader<'_> {
         let band_hz = [asked.from_hz, asked.to_hz];
         // The least and the greatest of a quantity over the band, with their places.
         let range = |value: &dyn Fn(f64) -> f64| {
-            self.over(asked.from_hz, asked.to_hz).map(|f| (f, value(f))).fold(((0.0, f64::INFINITY), (0.0, f64::NEG_INFINITY)), |(least, most), point| {
-                (if point.1 < least.1 { point } else { least }, if point.1 > most.1 { point } else { most })
-            })
+            self.over(asked.from_hz, asked.to_hz)
+                .map(|f| (f, value(f)))
+                .fold(((0.0, f64::INFINITY), (0.0, f64::NEG_INFINITY)), |(least, most), point| {
+                    (if point.1 < least.1 { point } else { least }, if point.1 > most.1 { point } else { most })
+                })
         };
         let loss = |f: f64| self.loss_db(f);
         let ((at_hz, found), margin) = match limit {

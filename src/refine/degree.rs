@@ -88,7 +88,10 @@ fn hopeless(order: &Order, degree: usize) -> Option<String> {
             let nearest = x(requirement.from_hz).abs().min(x(requirement.to_hz).abs());
             let found_db = attenuation_db(order.filter.response, degree, nearest);
             (found_db < db - HOPELESS_DB).then(|| {
-                format!("rejection about {found_db:.1} dB without loss where at least {db} dB is asked, {}", band_text(requirement.from_hz, requirement.to_hz))
+                format!(
+                    "rejection about {found_db:.1} dB without loss where at least {db} dB is asked, {}",
+                    band_text(requirement.from_hz, requirement.to_hz)
+                )
             })
         })
     })

@@ -4,7 +4,7 @@
 //! each section's 4x4 impedance matrix (from even and odd), its two open ends folded in by elimination, then chain matrices.
 
 use num_complex::Complex64 as C;
-use stripwright::line::{AsBuilt, Coplanar, C_M_PER_S, Pair, Strip, open_end, step};
+use stripwright::line::{AsBuilt, C_M_PER_S, Coplanar, Pair, Strip, open_end, step};
 use stripwright::order::{LaunchShape, Order};
 
 type Chain = [C; 4];
@@ -71,7 +71,8 @@ fn step_chain(built: &AsBuilt, w1: f64, w2: f64, f: f64) -> Chain {
     let w = std::f64::consts::TAU * f;
     let series = |l: f64| [ONE, C::new(0.0, w * l), ZERO, ONE];
     let shunt = [ONE, ZERO, C::new(0.0, w * model.capacitance_f), ONE];
-    let [first, second] = if w1 > w2 { [model.wide_inductance_h, model.narrow_inductance_h] } else { [model.narrow_inductance_h, model.wide_inductance_h] };
+    let [first, second] =
+        if w1 > w2 { [model.wide_inductance_h, model.narrow_inductance_h] } else { [model.narrow_inductance_h, model.wide_inductance_h] };
     times(times(series(first), shunt), series(second))
 }
 
