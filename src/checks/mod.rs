@@ -31,3 +31,6 @@ pub struct Rule {
     /// Looks.
     pub run: fn(&Subject) -> Vec<Problem>,
 }
+
+/// Every rule, in the order in which they run.
+pub static RULES: &[Rule] = &[];
