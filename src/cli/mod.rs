@@ -1,5 +1,7 @@
 //! Arguments, printing and progress; one file per command.
 
+mod line;
+
 use std::process::ExitCode;
 
 use clap::{Parser, Subcommand};
@@ -19,7 +21,9 @@ struct Arguments {
 }
 
 #[derive(Subcommand, Debug)]
-enum Command {}
+enum Command {
+    Line(line::Arguments),
+}
 
 /// How a command talks: results to stdout, findings and progress to stderr.
 #[derive(Clone, Copy, Debug)]
@@ -54,5 +58,9 @@ impl From<Ending> for ExitCode {
 /// Reads the arguments and runs the command.
 pub fn run() -> ExitCode {
     let arguments = Arguments::parse();
-    match arguments.command {}
+    let voice = Voice { json: arguments.json, quiet: arguments.quiet };
+    match &arguments.command {
+        Command::Line(arguments) => line::run(arguments, voice),
+    }
+    .into()
 }
