@@ -2,6 +2,7 @@
 
 mod figures;
 mod response;
+pub mod touchstone;
 
 pub use figures::{Figures, Verdict};
 pub use response::{Method, Response};

@@ -5,3 +5,4 @@
 mod drawing;
 mod gerbers;
 mod sample;
+mod touchstone;
