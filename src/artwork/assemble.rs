@@ -68,7 +68,7 @@ struct Placed {
 /// the order asks for what cannot be drawn. Warnings: text that found no room or no letter.
 pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut problems = Vec::new();
-    let placed = place(order, layout).map_err(|problem| vec![problem])?;
+    let placed = place(order, layout)?;
     let Some(quarters) = quarters(order.board.port_side) else {
         return Err(vec![Problem::error(
             "ports-not-opposite",
@@ -85,10 +85,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             "launch = \"open\", or leave board.outline out",
         )]);
     }
-    let [low, high] = match outline(order, &placed, quarters) {
-        Ok(corners) => corners,
-        Err(problem) => return Err(vec![problem]),
-    };
+    let [low, high] = outline(order, &placed, quarters)?;
     let seat = Seat::new(quarters, low, high);
     let (one, other) = (seat.point(low), seat.point(high));
     let size = Point { x: one.x.max(other.x), y: one.y.max(other.y) };
@@ -117,7 +114,10 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             problems.push(problem);
         }
         let away = Nm::from_m((launch::GROUND_REACH_HEIGHTS * order.laminate.thickness_m).max(order.shop.gap_m));
-        wall = ground::wall(order, size, inside).difference(&ground::port_openings(&launches, away)).difference(&clearances).difference(&keep_outs);
+        wall = ground::wall(order, size, inside)
+            .difference(&ground::port_openings(&launches, away))
+            .difference(&clearances)
+            .difference(&keep_outs);
         let fence = ground::wall_fence(order, size, inside, &wall.union(&pads), &holes);
         holes.extend(fence);
     }
@@ -153,10 +153,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut openings = [Region::default(), Region::default()];
     if order.board.mask == Mask::ClearOfFilter {
         let corners: Vec<Point> = circuit.rings().flatten().copied().collect();
-        openings = [
-            mask::top(order, &board_area, &corners, &lands, &wall, &holes),
-            mask::bottom(order, &board_area, &lands, &holes),
-        ];
+        openings = [mask::top(order, &board_area, &corners, &lands, &wall, &holes), mask::bottom(order, &board_area, &lands, &holes)];
         layers.insert(Layer::Mask(Face::Top), shapes(&openings[0], Role::Opening, ""));
         layers.insert(Layer::Mask(Face::Bottom), shapes(&openings[1], Role::Opening, ""));
     }
@@ -189,8 +186,9 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
 }
 
 /// The circuit's copper, turned, with its feed ends made square.
-fn place(order: &Order, layout: &Layout) -> Result<Placed, Problem> {
-    let incomplete = |what: String| Problem::error("layout-incomplete", Place::Whole, what, "the layout must name its nodes and two ports");
+fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
+    let incomplete =
+        |what: String| vec![Problem::error("layout-incomplete", Place::Whole, what, "the layout must name its nodes and two ports")];
     let node = |i: usize| layout.nodes.get(i).copied().ok_or_else(|| incomplete(format!("a part names node {i}, and there is none")));
     let mut rings = Vec::new();
     for placed in &layout.parts {
@@ -234,7 +232,7 @@ fn level_deg(nodes: [Node; 2]) -> f64 {
 }
 
 /// Lower left and upper right corner of the board in the drawing's frame.
-fn outline(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], Problem> {
+fn outline(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], Vec<Problem>> {
     let request = &order.board;
     let shape = &request.launch.shape;
     let extents: [Extent; 2] = placed.mouths.map(|mouth| launch::extent(shape, &order.shop, request.outline, mouth.width()));
@@ -275,7 +273,7 @@ fn outline(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], P
             let size = on_board(size_m.map(Nm::from_m));
             if size[0] < needed[0] || size[1] < needed[1] {
                 let up = on_board(needed).map(|v| Nm((v.0 + SIZE_STEP.0 - 1) / SIZE_STEP.0 * SIZE_STEP.0));
-                return Err(Problem::error(
+                return Err(vec![Problem::error(
                     "board-too-small",
                     Place::Key("board.size".to_string()),
                     format!(
@@ -286,7 +284,7 @@ fn outline(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], P
                         size_m[1] * 1e3
                     ),
                     format!("size = [\"{:.1} mm\", \"{:.1} mm\"] or larger", up[0].mm(), up[1].mm()),
-                ));
+                )]);
             }
             size
         }
@@ -420,7 +418,8 @@ fn bars(outer: &Ring, voids: &[Ring]) -> Vec<Ring> {
 }
 
 fn shapes(region: &Region, role: Role, net: &str) -> Vec<Shape> {
-    let shape = |piece: &crate::artwork::shape::Piece| Shape { outer: piece.outer.clone(), voids: piece.voids.clone(), role, net: net.to_string() };
+    let shape =
+        |piece: &crate::artwork::shape::Piece| Shape { outer: piece.outer.clone(), voids: piece.voids.clone(), role, net: net.to_string() };
     region.pieces.iter().map(shape).collect()
 }
 

@@ -10,6 +10,7 @@ use crate::base::Nm;
 use crate::base::Point;
 use crate::layout::Node;
 use crate::order::LaunchShape;
+use crate::order::Order;
 use crate::order::Shop;
 
 /// Vias of a fence along one row; beyond this the pitch is a mistake.
@@ -115,6 +116,15 @@ pub(super) fn extent(shape: &LaunchShape, shop: &Shop, outline: bool, feed_width
     }
 }
 
+/// How far to either side of a port's middle its launch has copper, top or bottom.
+pub fn launch_half_width(order: &Order, feed_width: Nm) -> Nm {
+    let extent = extent(&order.board.launch.shape, &order.shop, order.board.outline, feed_width);
+    match order.board.launch.shape {
+        LaunchShape::Open => extent.half_width + Nm::from_m(GROUND_REACH_HEIGHTS * order.laminate.thickness_m),
+        LaunchShape::Pads { .. } | LaunchShape::EdgeCoax { .. } => extent.half_width,
+    }
+}
+
 /// Draws the launch between the board's edge at `edge_x` and the feed's mouth.
 pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: bool, mouth: Mouth, port: usize, edge_x: Nm) -> Launched {
     let middle = mouth.middle_y();
@@ -144,7 +154,12 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
             launched.signal.push(block(pull_back, pull_back + length, -half, half));
             launched.signal.push(block(pull_back + length, to_mouth, low, high));
             launched.touch = [at(pull_back, -half), at(pull_back, half)];
-            launched.lands.push(Land { at: at(pull_back + Nm(length.0 / 2), Nm::ZERO), size: [Nm(length.0 / 2 * 2), half + half], net, pin: pin(1) });
+            launched.lands.push(Land {
+                at: at(pull_back + Nm(length.0 / 2), Nm::ZERO),
+                size: [Nm(length.0 / 2 * 2), half + half],
+                net,
+                pin: pin(1),
+            });
         }
         LaunchShape::EdgeCoax {
             pad_length_m,
@@ -179,7 +194,8 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
                 pin: pin(1),
             });
             // Where the taper widens towards the feed, the ground pads end with the pad, so that the gap holds.
-            let ground_end = pull_back + Nm::from_m(if mouth.width().0 > 2 * half.0 { ground_length_m.min(pad_length_m) } else { ground_length_m });
+            let ground_end =
+                pull_back + Nm::from_m(if mouth.width().0 > 2 * half.0 { ground_length_m.min(pad_length_m) } else { ground_length_m });
             let (inner, ground_width) = (half + Nm::from_m(ground_gap_m), Nm::from_m(ground_width_m));
             let outer = inner + ground_width;
             let via = (Nm::from_m(via_hole_m), Nm::from_m(via_pad_m));

@@ -1,10 +1,12 @@
 //! What the board says about itself: title, name, revision, part number, what the artwork was made for, port numbers.
 
+use crate::artwork::shape::CHORD_ERROR;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::rectangle;
 use crate::artwork::text::Room;
 use crate::artwork::text::block;
 use crate::artwork::text::spelt_out;
+use crate::artwork::text::upright;
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Point;
@@ -62,7 +64,8 @@ fn short(value: f64) -> String {
 pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Region, Vec<Problem>) {
     let mut problems = Vec::new();
     let shop = &order.shop;
-    let least_stroke = Nm::from_m(shop.text_stroke_m);
+    // Round ends are chords: a little more keeps every place of a stroke at the shop's least.
+    let least_stroke = Nm::from_m(shop.text_stroke_m) + CHORD_ERROR + CHORD_ERROR;
     // The shop's stroke must leave room for counters, so that a coarse stroke asks for a greater height.
     let least_height = Nm::from_m(shop.text_height_m.max(shop.text_stroke_m / MAX_STROKE_SHARE));
     let mut heights: Vec<Nm> = HEIGHTS.into_iter().filter(|&h| h > least_height).collect();
@@ -79,7 +82,7 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
     for (i, &port) in ports.iter().enumerate() {
         let number = (i + 1).to_string();
         let height = heights.first().copied().unwrap_or(least_height);
-        let drawn = block(&[number.clone()], height, stroke(height));
+        let drawn = block(std::slice::from_ref(&number), height, stroke(height));
         let size = size(&drawn);
         match room.place(size, port).filter(|&at| near(at, port)) {
             Some(at) => put(drawn, at, size, room),
@@ -96,10 +99,16 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
             lines.rotate_right(1);
         }
         for &height in &heights {
-            let drawn = block(&lines, height, stroke(height));
-            let size = size(&drawn);
-            if let Some(at) = room.place(size, target) {
-                put(drawn, at, size, room);
+            let flat = block(&lines, height, stroke(height));
+            let [length, width] = size(&flat);
+            // Lying text reads better; on a narrow board it stands.
+            if let Some(at) = room.place([length, width], target) {
+                put(flat, at, [length, width], room);
+                written = count;
+                break 'fits;
+            }
+            if let Some(at) = room.place([width, length], target) {
+                put(upright(&flat), at, [width, length], room);
                 written = count;
                 break 'fits;
             }

@@ -48,6 +48,7 @@ pub(super) fn land_ring(land: &Land, by: Nm) -> Ring {
 }
 
 fn hole_openings(holes: &[Hole], clearance: Nm) -> Region {
-    let rings: Vec<Ring> = holes.iter().filter(|hole| !hole.is_plated()).map(|hole| disc(hole.at, Nm(hole.diameter.0 / 2) + clearance)).collect();
+    let rings: Vec<Ring> =
+        holes.iter().filter(|hole| !hole.is_plated()).map(|hole| disc(hole.at, Nm(hole.diameter.0 / 2) + clearance)).collect();
     Region::union_of(&rings)
 }

@@ -17,3 +17,4 @@ pub use assemble::board;
 pub use board::*;
 pub use compensate::compensated;
 pub use ground::highest_hz;
+pub use launch::launch_half_width;

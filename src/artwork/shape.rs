@@ -305,12 +305,7 @@ pub fn between_edges(one: Edge, other: Edge) -> Closest {
         let at = one.a;
         return Closest { distance_m: 0.0, from: at, to: at };
     }
-    let candidates = [
-        to_edge(one.a, other),
-        to_edge(one.b, other),
-        swapped(to_edge(other.a, one)),
-        swapped(to_edge(other.b, one)),
-    ];
+    let candidates = [to_edge(one.a, other), to_edge(one.b, other), swapped(to_edge(other.a, one)), swapped(to_edge(other.b, one))];
     candidates.into_iter().fold(candidates[0], |best, next| if next.distance_m < best.distance_m { next } else { best })
 }
 

@@ -19,6 +19,8 @@ use crate::base::Point;
 const CAPITAL_UNITS: f64 = 21.0;
 /// Free places are looked for on this raster.
 const RASTER: Nm = Nm(500_000);
+/// On large boards the raster is widened, so that no side has more places than this.
+const MAX_PLACES: i64 = 100;
 /// Between the lines of a block, as a share of the height.
 const LINE_SPACING: f64 = 0.7;
 
@@ -145,6 +147,14 @@ pub(super) fn block(lines: &[String], height: Nm, stroke: Nm) -> Region {
     all
 }
 
+/// The block turned a quarter counter-clockwise; lower left corner at the origin.
+pub(super) fn upright(block: &Region) -> Region {
+    let mut turned = block.mapped(|p| Point { x: -p.y, y: p.x });
+    let low = turned.bounds().map_or(Point::default(), |[low, _]| low);
+    turned.shift(-low.x, -low.y);
+    turned
+}
+
 /// The room text may take, and what it must keep clear of.
 pub(super) struct Room {
     /// Lower left corner.
@@ -171,8 +181,10 @@ impl Room {
     /// The lower left corner of the free place for a block of this size that lies nearest to `target`.
     pub fn place(&self, size: [Nm; 2], target: Point) -> Option<Point> {
         let (last_x, last_y) = (self.high.x - size[0], self.high.y - size[1]);
-        let mut places: Vec<(i128, Point)> = raster(self.low.y, last_y)
-            .flat_map(|y| raster(self.low.x, last_x).map(move |x| Point { x, y }))
+        let step = |low: Nm, high: Nm| Nm(RASTER.0.max((high - low).0 / MAX_PLACES));
+        let (step_x, step_y) = (step(self.low.x, self.high.x), step(self.low.y, self.high.y));
+        let mut places: Vec<(i128, Point)> = raster(self.low.y, last_y, step_y)
+            .flat_map(|y| raster(self.low.x, last_x, step_x).map(move |x| Point { x, y }))
             .map(|p| {
                 let middle = p.shifted(Nm(size[0].0 / 2), Nm(size[1].0 / 2));
                 let (dx, dy) = (i128::from((middle.x - target.x).0), i128::from((middle.y - target.y).0));
@@ -190,11 +202,11 @@ impl Room {
     }
 }
 
-/// From `first` to `last` in steps of the raster, `last` itself included.
-fn raster(first: Nm, last: Nm) -> impl Iterator<Item = Nm> {
-    let steps = if last < first { -1 } else { (last - first).0 / RASTER.0 };
-    let end = (steps >= 0 && (last - first).0 % RASTER.0 != 0).then_some(last);
-    (0..=steps).map(move |i| Nm(first.0 + i * RASTER.0)).chain(end)
+/// From `first` to `last` in steps, `last` itself included.
+fn raster(first: Nm, last: Nm, step: Nm) -> impl Iterator<Item = Nm> {
+    let steps = if last < first { -1 } else { (last - first).0 / step.0 };
+    let end = (steps >= 0 && (last - first).0 % step.0 != 0).then_some(last);
+    (0..=steps).map(move |i| Nm(first.0 + i * step.0)).chain(end)
 }
 
 /// Whether the area of a ring and a box share a point.

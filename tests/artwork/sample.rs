@@ -120,7 +120,11 @@ pub fn order() -> Order {
             ports_ohm: [50.0, 50.0],
             own: BTreeMap::new(),
         },
-        requirements: vec![Requirement { from_hz: 3.4e9, to_hz: 4.0e9, limits: vec![Limit::RejectionAtLeast { db: 20.0, below_center: false }] }],
+        requirements: vec![Requirement {
+            from_hz: 3.4e9,
+            to_hz: 4.0e9,
+            limits: vec![Limit::RejectionAtLeast { db: 20.0, below_center: false }],
+        }],
         laminate: Laminate {
             class: "ceramic-ptfe-3.0".into(),
             about: "ceramic-filled PTFE".into(),
