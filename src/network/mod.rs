@@ -5,6 +5,7 @@ mod curve;
 mod figures;
 mod join;
 mod response;
+pub mod touchstone;
 
 pub use circuit::{Circuit, Planes};
 pub use figures::{Figures, Verdict, passband_hz, sweep_hz};
