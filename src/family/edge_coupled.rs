@@ -299,7 +299,7 @@ fn mending(inverter: f64) -> String {
 /// A quantity of the family's own; the order room has already put in the default.
 fn own_number(order: &Order, key: &str) -> f64 {
     match order.filter.own.get(key) {
-        Some(OwnValue::Number(value)) => *value,
+        Some(OwnValue::Number(value, _)) => *value,
         _ => KEYS
             .iter()
             .find(|k| k.name == key)
