@@ -71,7 +71,86 @@ fn order(from: f64, to: f64, n: usize, er: f64, h: f64, shape: ResponseShape, po
         defaults: vec![],
     }
 }
+fn svg(b: &stripwright::artwork::Board) -> String {
+    use stripwright::artwork::*;
+    let w = b.outline.outer.iter().map(|p| p.x.mm()).fold(0., f64::max);
+    let h = b.outline.outer.iter().map(|p| p.y.mm()).fold(0., f64::max);
+    let mut o = format!(
+        "<svg xmlns='http://www.w3.org/2000/svg' width='{}' height='{}' viewBox='0 0 {w} {h}'><rect width='{w}' height='{h}' fill='#eee'/>",
+        w * 30.,
+        h * 30.
+    );
+    let path = |s: &Shape| {
+        let mut d = String::new();
+        for r in std::iter::once(&s.outer).chain(&s.voids) {
+            for (i, p) in r.iter().enumerate() {
+                d += &format!("{}{} {} ", if i == 0 { "M" } else { "L" }, p.x.mm(), h - p.y.mm());
+            }
+            d += "Z ";
+        }
+        d
+    };
+    for (l, shapes) in &b.layers {
+        if *l == Layer::Copper(2) {
+            continue;
+        }
+        for s in shapes {
+            let c = match (l, s.role) {
+                (Layer::Copper(_), Role::Ground) => "#888",
+                (Layer::Copper(_), _) => "#c73",
+                (Layer::Legend(_), _) => "#06c",
+                _ => "none",
+            };
+            o += &format!(
+                "<path d='{}' fill='{c}' fill-rule='evenodd' stroke='{}' stroke-width='0.03'/>",
+                path(s),
+                if matches!(l, Layer::Mask(_)) { "#0a0" } else { "none" }
+            );
+        }
+    }
+    for x in &b.holes {
+        o += &format!("<circle cx='{}' cy='{}' r='{}' fill='#fff'/>", x.at.x.mm(), h - x.at.y.mm(), x.diameter.mm() / 2.);
+    }
+    o + "</svg>"
+}
 fn main() {
+    if std::env::args().nth(1).as_deref() == Some("draw") {
+        let mut o = order(3.4e9, 3.8e9, 4, 3.0, 0.762e-3, ResponseShape::EqualRipple { ripple_db: 0.1 }, [50., 50.]);
+        o.title = "Receive preselector, mooring-buoy telemetry".into();
+        o.name = "buoy-preselector".into();
+        o.board.level = std::env::args().nth(2).is_some();
+        o.board.launch = Launch {
+            class: "c".into(),
+            about: "".into(),
+            shape: LaunchShape::EdgeCoax {
+                pad_length_m: 4e-3,
+                pad_width_m: 1.27e-3,
+                pull_back_m: 0.1e-3,
+                ground_gap_m: 0.5e-3,
+                ground_length_m: 4e-3,
+                ground_width_m: 3.5e-3,
+                taper_length_m: 1e-3,
+                via_hole_m: 0.4e-3,
+                via_pad_m: 0.8e-3,
+                via_pitch_m: 1.2e-3,
+                board_thickness_m: [0.5e-3, 1.8e-3],
+                up_to_hz: 12e9,
+            },
+        };
+        let t = std::time::Instant::now();
+        let (made, chosen) = stripwright::make(&o).unwrap();
+        println!("{:?}", t.elapsed());
+        for f in &made.findings {
+            println!("{f}");
+        }
+        println!("{:#?}", made.figures);
+        println!("{:?} {:?}", chosen.refined.before_snapping, chosen.refined.after_snapping);
+        for d in &made.dimensions.list {
+            println!("{} {:.4} {:.4} {:?}", d.name, d.value_m * 1e3, d.first_guess_m * 1e3, d.corrections_m);
+        }
+        std::fs::write("/tmp/b.svg", svg(&made.board)).unwrap();
+        return;
+    }
     if std::env::args().nth(1).as_deref() == Some("sweep") {
         let o = order(3.4e9, 3.8e9, 5, 3.0, 0.762e-3, ResponseShape::EqualRipple { ripple_db: 0.1 }, [50., 50.]);
         let fam = stripwright::family::of(&o).unwrap();

@@ -23,9 +23,11 @@ use crate::artwork::launch::Mouth;
 use crate::artwork::legend;
 use crate::artwork::mask;
 use crate::artwork::nets;
+use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::between_mouths;
+use crate::artwork::shape::bounds;
 use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
 use crate::artwork::text::Room;
@@ -110,7 +112,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut wall = Region::default();
     if let Some(inside_m) = order.housing.and_then(|housing| housing.inside_m) {
         let inside = inside_m.map(Nm::from_m);
-        if let Some(problem) = housing_too_small(&circuit, inside, size) {
+        if let Some(problem) = housing_too_small(&circuit, placed.planes.map(|plane| seat.point(plane.middle())), &seat, inside, size) {
             problems.push(problem);
         }
         let away = Nm::from_m((launch::GROUND_REACH_HEIGHTS * order.laminate.thickness_m).max(order.shop.gap_m));
@@ -329,12 +331,15 @@ fn mounting_holes(order: &Order, size: Point, problems: &mut Vec<Problem>) -> Ve
     holes
 }
 
-/// An error when the circuit does not lie within the housing.
-fn housing_too_small(circuit: &Region, inside: [Nm; 2], size: Point) -> Option<Problem> {
-    // The feeds pass through the wall, so only what is not at a port counts: across, all of it.
-    let [low, high] = circuit.bounds()?;
+/// An error when the circuit does not lie within the housing: across, all of it; along, what is not a feed, since feeds pass the wall.
+fn housing_too_small(circuit: &Region, planes: [Point; 2], seat: &Seat, inside: [Nm; 2], size: Point) -> Option<Problem> {
+    let fed = |piece: &&Piece| planes.iter().any(|&plane| piece.contains(plane));
+    let resonators = bounds(circuit.pieces.iter().filter(|piece| !fed(piece)).flat_map(|piece| piece.outer.iter().copied()));
+    let whole = circuit.bounds()?;
+    let along = resonators.unwrap_or(whole);
+    let (x, y) = if seat.is_upright() { (whole, along) } else { (along, whole) };
     let middle = Point::new(size.x.0 / 2, size.y.0 / 2);
-    let needed = [(high.x - middle.x).max(middle.x - low.x), (high.y - middle.y).max(middle.y - low.y)].map(|v| v + v);
+    let needed = [(x[1].x - middle.x).max(middle.x - x[0].x), (y[1].y - middle.y).max(middle.y - y[0].y)].map(|v| v + v);
     (needed[0] > inside[0] || needed[1] > inside[1]).then(|| {
         Problem::error(
             "housing-too-small",
@@ -406,7 +411,7 @@ fn room(
 
 /// The four bars between a ring's box and its largest void's box.
 fn bars(outer: &Ring, voids: &[Ring]) -> Vec<Ring> {
-    let box_of = |ring: &Ring| crate::artwork::shape::bounds(ring.iter().copied());
+    let box_of = |ring: &Ring| bounds(ring.iter().copied());
     let largest = voids.iter().filter_map(box_of).max_by_key(|[low, high]| i128::from((high.x - low.x).0) * i128::from((high.y - low.y).0));
     let (Some([a, b]), Some([c, d])) = (box_of(outer), largest) else { return vec![outer.clone()] };
     vec![
@@ -418,8 +423,7 @@ fn bars(outer: &Ring, voids: &[Ring]) -> Vec<Ring> {
 }
 
 fn shapes(region: &Region, role: Role, net: &str) -> Vec<Shape> {
-    let shape =
-        |piece: &crate::artwork::shape::Piece| Shape { outer: piece.outer.clone(), voids: piece.voids.clone(), role, net: net.to_string() };
+    let shape = |piece: &Piece| Shape { outer: piece.outer.clone(), voids: piece.voids.clone(), role, net: net.to_string() };
     region.pieces.iter().map(shape).collect()
 }
 

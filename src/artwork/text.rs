@@ -97,13 +97,33 @@ fn has_strokes(c: char) -> bool {
     !HersheyRenderer::render_text(c.encode_utf8(&mut [0; 4]), HersheyFont::Romans).is_empty()
 }
 
-/// A line of text as area: its capitals `height` high, standing on y = 0, beginning at x = 0.
+/// A line of text as area: its capitals `height` high, standing on y = 0, beginning at x = 0. Letters keep a stroke apart.
 pub(super) fn line(text: &str, height: Nm, stroke: Nm) -> Region {
     // The strokes' centre lines are drawn smaller by one stroke, so that the letter as a whole has the height.
     let scale = (height - stroke).0 as f64 / CAPITAL_UNITS;
+    let mut drawn = Region::default();
+    let (mut cursor, mut taken) = (0.0, i64::MIN / 2);
+    for c in text.chars() {
+        let mut letter = letter(c, scale, stroke);
+        letter.shift(Nm((cursor * scale).round() as i64), Nm::ZERO);
+        if let Some([low, high]) = letter.bounds() {
+            // The font is spaced for thin strokes: where thick ones would meet, the letter and all after it move on.
+            let overlap = (taken + stroke.0 - low.x.0).max(0);
+            letter.shift(Nm(overlap), Nm::ZERO);
+            cursor += overlap as f64 / scale;
+            taken = high.x.0 + overlap;
+            drawn.pieces.extend(letter.pieces);
+        }
+        cursor += advance_units(c);
+    }
+    drawn
+}
+
+/// One letter, its left bearing at x = 0.
+fn letter(c: char, scale: f64, stroke: Nm) -> Region {
     let half = stroke.0 as f64 * 0.5;
     let mut path = BezPath::new();
-    for (i, p) in HersheyRenderer::render_text(text, HersheyFont::Romans).iter().enumerate() {
+    for (i, p) in HersheyRenderer::render_text(c.encode_utf8(&mut [0; 4]), HersheyFont::Romans).iter().enumerate() {
         // The font's y runs down; its capitals stand on y = 9 of a box centred on zero.
         let at = kurbo::Point::new(f64::from(p.x) * scale + half, (BASELINE_UNITS - f64::from(p.y)) * scale + half);
         if p.pen && i > 0 { path.line_to(at) } else { path.move_to(at) }
@@ -122,6 +142,12 @@ pub(super) fn line(text: &str, height: Nm, stroke: Nm) -> Region {
     });
     // Windings are kept: a stroke's outline around a counter (the inside of an O) is a void, not a solid.
     Region::wound(&rings)
+}
+
+/// From one letter to the next in the font's units: how far an `I` moves when the letter stands before it.
+fn advance_units(c: char) -> f64 {
+    let first = |text: &str| HersheyRenderer::render_text(text, HersheyFont::Romans).last().map_or(0, |p| p.x);
+    f64::from(first(&format!("{c}I")) - first("I"))
 }
 
 /// Where the capitals of the font stand, in its units.

@@ -10,16 +10,22 @@ use crate::artwork::compensated;
 use crate::artwork::shape::Closest;
 use crate::artwork::shape::Edge;
 use crate::artwork::shape::between_edges;
-use crate::artwork::shape::edges;
 use crate::base::Nm;
+use crate::base::Point;
 use crate::checks::Subject;
 use crate::order::Compensation;
 
 /// Corners are rounded once to 1 nm, so that a turned strip may measure this much less than it was drawn, metres.
 pub(super) const ROUNDING_M: f64 = 2e-9;
 
-/// Cosine of the greatest angle between an edge's normal and the way to the edge it faces: 60 degrees.
-const FACING: f64 = 0.5;
+/// Edges whose normals lie within 10 degrees of the way between them face each other: a strip, a taper. On a round piece this measures at
+/// least 0.985 of its diameter.
+const FACING: f64 = 0.985;
+/// Corners across a neck face each other when their edges' normals lie within 60 degrees of the way, and no step along either edge
+/// shortens it.
+const NECK_FACING: f64 = 0.5;
+/// Cosine below which a step along an edge does not shorten the way.
+const ACROSS: f64 = 0.05;
 
 /// The finished geometry, and the artwork when the order lets it carry the etch compensation; each with what to call it.
 pub(super) fn artworks<'a>(subject: &'a Subject) -> Vec<(&'static str, Cow<'a, Board>)> {
@@ -49,31 +55,52 @@ pub(super) struct Narrow {
     pub space: Option<Closest>,
 }
 
+/// An edge with the corners before and after it.
+#[derive(Clone, Copy)]
+struct Known {
+    edge: Edge,
+    before: Point,
+    after: Point,
+}
+
 /// Looks only at places narrower than `below_m`.
+///
+/// Edges that meet at a corner are the business of the acute-angle rule.
 pub(super) fn narrow(shape: &Shape, below_m: f64) -> Narrow {
-    // Edges that meet at a corner are the business of the acute-angle rule.
-    let rings = std::iter::once(&shape.outer).chain(&shape.voids);
-    let mut sorted = edges(rings);
-    sorted.sort_by_key(|edge| (edge.a.x.min(edge.b.x), edge.a, edge.b));
+    let mut sorted: Vec<Known> = std::iter::once(&shape.outer)
+        .chain(&shape.voids)
+        .flat_map(|ring| {
+            let n = ring.len();
+            (0..n).map(move |i| Known {
+                edge: Edge { a: ring[i], b: ring[(i + 1) % n] },
+                before: ring[(i + n - 1) % n],
+                after: ring[(i + 2) % n],
+            })
+        })
+        .collect();
+    sorted.sort_by_key(|known| (known.edge.a.x.min(known.edge.b.x), known.edge.a, known.edge.b));
     let mut found = Narrow::default();
-    for (i, &one) in sorted.iter().enumerate() {
-        let reach = one.a.x.max(one.b.x) + Nm::from_m(below_m);
-        for &other in sorted[i + 1..].iter().take_while(|other| other.a.x.min(other.b.x) <= reach) {
-            if one.a == other.b || one.b == other.a {
+    for (i, one) in sorted.iter().enumerate() {
+        let reach = one.edge.a.x.max(one.edge.b.x) + Nm::from_m(below_m);
+        for other in sorted[i + 1..].iter().take_while(|other| other.edge.a.x.min(other.edge.b.x) <= reach) {
+            if one.edge.a == other.edge.b || one.edge.b == other.edge.a {
                 continue;
             }
-            let closest = between_edges(one, other);
+            let closest = between_edges(one.edge, other.edge);
             if closest.distance_m >= below_m || closest.distance_m == 0.0 {
                 continue;
             }
-            let (to_other, to_one) = (facing(one, &closest, 1.0), facing(other, &closest, -1.0));
-            let slot = if to_other >= FACING && to_one >= FACING {
-                &mut found.copper
-            } else if to_other <= -FACING && to_one <= -FACING {
-                &mut found.space
-            } else {
+            let way = vector(closest.from, closest.to);
+            let back = (-way.0, -way.1);
+            // The copper lies left of an edge: positive when the way runs into copper at both ends.
+            let (here, there) = (cosine(normal(one.edge), way), cosine(normal(other.edge), back));
+            let inwards = here.signum();
+            let weaker = (here * inwards).min(there * inwards);
+            let is_neck = || weaker >= NECK_FACING && stands_across(one, closest.from, way) && stands_across(other, closest.to, back);
+            if weaker < FACING && !is_neck() {
                 continue;
-            };
+            }
+            let slot = if inwards > 0.0 { &mut found.copper } else { &mut found.space };
             if slot.is_none_or(|best| closest.distance_m < best.distance_m) {
                 *slot = Some(closest);
             }
@@ -82,11 +109,28 @@ pub(super) fn narrow(shape: &Shape, below_m: f64) -> Narrow {
     found
 }
 
-/// Cosine between the edge's normal into the copper and the way along the closest stretch (backwards for `sign` -1).
-fn facing(edge: Edge, closest: &Closest, sign: f64) -> f64 {
-    let vector = |a: crate::base::Point, b: crate::base::Point| ((b.x - a.x).0 as f64, (b.y - a.y).0 as f64);
-    let (ex, ey) = vector(edge.a, edge.b);
-    let (wx, wy) = vector(closest.from, closest.to);
-    // The copper lies left of an edge.
-    sign * (-ey * wx + ex * wy) / (ex.hypot(ey) * wx.hypot(wy)).max(f64::MIN_POSITIVE)
+/// Whether no step from `at` along the ring goes along `way`.
+fn stands_across(known: &Known, at: Point, way: (f64, f64)) -> bool {
+    let steps = if at == known.edge.a {
+        [known.before, known.edge.b]
+    } else if at == known.edge.b {
+        [known.edge.a, known.after]
+    } else {
+        return true;
+    };
+    steps.iter().all(|&to| cosine(vector(at, to), way) <= ACROSS)
+}
+
+fn vector(a: Point, b: Point) -> (f64, f64) {
+    ((b.x - a.x).0 as f64, (b.y - a.y).0 as f64)
+}
+
+/// Normal of an edge into the copper.
+fn normal(edge: Edge) -> (f64, f64) {
+    let (x, y) = vector(edge.a, edge.b);
+    (-y, x)
+}
+
+fn cosine(a: (f64, f64), b: (f64, f64)) -> f64 {
+    (a.0 * b.0 + a.1 * b.1) / (a.0.hypot(a.1) * b.0.hypot(b.1)).max(f64::MIN_POSITIVE)
 }

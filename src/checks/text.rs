@@ -18,6 +18,8 @@ pub(super) const RULE: Rule = Rule {
 
 /// Rounded stroke ends are chords at most half a micrometre from the true curve, on either side.
 const CHORDS_M: f64 = 1e-6;
+/// A round piece measures at least this share of its diameter.
+const ROUND: f64 = 0.985;
 
 fn run(subject: &Subject) -> Vec<Problem> {
     let shop = &subject.dimensions.order.shop;
@@ -25,7 +27,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
     for (layer, shapes) in &subject.board.layers {
         let text: Vec<_> = shapes.iter().filter(|shape| shape.role == Role::Text).collect();
         let Some(first) = text.first() else { continue };
-        let thinnest = text.iter().filter_map(|shape| measure::narrow(shape, shop.text_stroke_m - CHORDS_M).copper);
+        let thinnest = text.iter().filter_map(|shape| measure::narrow(shape, ROUND * shop.text_stroke_m - CHORDS_M).copper);
         if let Some(thin) = thinnest.min_by(|a, b| a.distance_m.total_cmp(&b.distance_m)) {
             found.push(Problem::error(
                 RULE.code,

@@ -32,6 +32,12 @@ pub struct Dimensions {
 }
 
 impl Dimension {
+    /// A first guess with the electrical targets it serves.
+    pub fn guess(name: String, value_m: f64, serves: &[(&str, f64)]) -> Dimension {
+        let serves = serves.iter().map(|(what, value)| ((*what).to_string(), *value)).collect();
+        Dimension { name, value_m, first_guess_m: value_m, serves, corrections_m: Vec::new() }
+    }
+
     /// Moves the value by a named, signed amount and keeps the record.
     pub fn correct(&mut self, name: &str, amount_m: f64) {
         self.value_m += amount_m;

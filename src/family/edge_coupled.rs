@@ -12,6 +12,7 @@ use super::Family;
 use super::Knob;
 use super::Moves;
 use super::Structure;
+use super::feeds;
 use crate::base::Dimensionality;
 use crate::base::Nm;
 use crate::base::Outcome;
@@ -30,7 +31,6 @@ use crate::line::Pair;
 use crate::line::Strip;
 use crate::line::open_end;
 use crate::line::pair_for_impedances;
-use crate::line::width_for_impedance;
 use crate::order::Band;
 use crate::order::Key;
 use crate::order::Order;
@@ -73,10 +73,9 @@ impl Structure for EdgeCoupled {
         KEYS
     }
 
-    fn names(&self, _order: &Order, degree: usize) -> Vec<String> {
+    fn names(&self, order: &Order, degree: usize) -> Vec<String> {
         let sections = (1..=degree + 1).flat_map(|k| ["width", "gap", "length"].map(|what| section(k, what)));
-        let feeds = [1, 2].into_iter().flat_map(|port| [format!("feed {port} width"), format!("feed {port} length")]);
-        sections.chain(feeds).collect()
+        sections.chain(feeds::names(order)).collect()
     }
 
     fn layout(&self, set: &Dimensions) -> Result<Layout, Vec<Problem>> {
@@ -86,21 +85,22 @@ impl Structure for EdgeCoupled {
             .map(|k| Ok([value(section(k, "width"))?, value(section(k, "gap"))?, value(section(k, "length"))?]))
             .collect::<Result<Vec<_>, Problem>>()
             .map_err(|problem| vec![problem])?;
-        let feed = |port: usize| -> Result<[Nm; 2], Vec<Problem>> {
-            let read = |what| value(format!("feed {port} {what}")).map_err(|problem| vec![problem]);
-            Ok([read("width")?, read("length")?])
-        };
+        let feed = |port| feeds::read(set, port).map_err(|problem| vec![problem]);
         let (first_feed, last_feed) = (feed(1)?, feed(2)?);
-        let (Some(first), Some(last)) = (sections.first(), sections.last()) else { return Err(Vec::new()) };
+        let Some(first) = sections.first() else { return Err(Vec::new()) };
 
         // The feed's upper edge, which faces the first gap, is in line with the first strip's.
         let mut x = Nm::ZERO;
-        let mut low = first_feed[0] - first[0];
-        let start = build.mouth(x, Nm::ZERO, first_feed[0], false);
-        build.place(Part::Launch { port: 1 }, vec![start], vec![]);
-        x = x + first_feed[1];
-        let mut arriving = build.mouth(x, Nm::ZERO, first_feed[0], true);
-        build.place(Part::Lines { widths: vec![first_feed[0]], gaps: vec![], length: first_feed[1] }, vec![start, arriving], feed_names(1));
+        let mut low = first_feed.width - first[0];
+        let start = build.mouth(x, Nm::ZERO, first_feed.width, false);
+        build.place(Part::Launch { port: 1, shape: first_feed.launch }, vec![start], vec![]);
+        x = x + first_feed.length;
+        let mut arriving = build.mouth(x, Nm::ZERO, first_feed.width, true);
+        build.place(
+            Part::Lines { widths: vec![first_feed.width], gaps: vec![], length: first_feed.length },
+            vec![start, arriving],
+            feeds::line_names(1),
+        );
         for (index, [width, gap, length]) in sections.iter().copied().enumerate() {
             let k = index + 1;
             let (lower, upper) = ((low, low + width), (low + width + gap, low + width + gap + width));
@@ -118,15 +118,18 @@ impl Structure for EdgeCoupled {
             build.place(Part::OpenEnd, vec![open_far], vec![]);
             // Through a step the next strip keeps in line the edge whose neighbour would otherwise be touched: a wider one grows
             // away from the open end below it, a narrower one leaves the upper edge where the next open end faces it.
-            let next = sections.get(k).map_or(last_feed[0], |next| next[0]);
+            let next = sections.get(k).map_or(last_feed.width, |next| next[0]);
             low = if k == sections.len() || width <= next { upper.0 } else { upper.1 - next };
             (x, arriving) = (far_x, leaving);
         }
-        let near = build.joined(arriving, x, (low, low + last_feed[0]));
-        let end = build.mouth(x + last_feed[1], low, low + last_feed[0], true);
-        build.place(Part::Lines { widths: vec![last_feed[0]], gaps: vec![], length: last_feed[1] }, vec![near, end], feed_names(2));
-        build.place(Part::Launch { port: 2 }, vec![end], vec![]);
-        debug_assert_eq!(last.len(), 3);
+        let near = build.joined(arriving, x, (low, low + last_feed.width));
+        let end = build.mouth(x + last_feed.length, low, low + last_feed.width, true);
+        build.place(
+            Part::Lines { widths: vec![last_feed.width], gaps: vec![], length: last_feed.length },
+            vec![near, end],
+            feeds::line_names(2),
+        );
+        build.place(Part::Launch { port: 2, shape: last_feed.launch }, vec![end], vec![]);
 
         let mut layout =
             Layout { nodes: build.nodes, parts: build.parts, ports: vec![start, end], turn_deg: 0.0, expected_nets: set.degree + 2 };
@@ -172,24 +175,14 @@ impl Family for EdgeCoupled {
                 Err(unreachable) => problems.push(Problem::error(
                     "coupling-out-of-reach",
                     Place::Key("filter.passband".into()),
-                    format!("section {k} wants Z0e {even_ohm:.2} ohm and Z0o {odd_ohm:.2} ohm: {unreachable}"),
+                    format!("section {k} wants Z0e {even_ohm:.2} ohm and Z0o {odd_ohm:.2} ohm: {}", unreachable.message),
                     mending(inverter),
                 )),
             }
         }
-        for (port, z0_ohm) in [1, 2].into_iter().zip(order.filter.ports_ohm) {
-            match width_for_impedance(&built, z0_ohm, center_hz) {
-                Ok(width_m) => {
-                    list.push(guess(format!("feed {port} width"), width_m, &[("Z0 ohm", z0_ohm)]));
-                    list.push(guess(format!("feed {port} length"), own_number(order, "feed-length"), &[]));
-                }
-                Err(unreachable) => problems.push(Problem::error(
-                    "impedance-out-of-reach",
-                    Place::Key("filter.port".into()),
-                    format!("no feed line of {z0_ohm} ohm: {unreachable}"),
-                    "choose another laminate thickness or port impedance",
-                )),
-            }
+        match feeds::guess(order, &built, own_number(order, "feed-length"), center_hz) {
+            Ok(ports) => list.extend(ports),
+            Err(found) => problems.extend(found),
         }
         if problems.is_empty() { Ok((Dimensions { order: order.clone(), degree, list }, problems)) } else { Err(problems) }
     }
@@ -224,15 +217,6 @@ fn section(k: usize, what: &str) -> String {
     format!("section {k} {what}")
 }
 
-fn feed_names(port: usize) -> Vec<String> {
-    vec![format!("feed {port} width"), format!("feed {port} length")]
-}
-
-fn guess(name: String, value_m: f64, serves: &[(&str, f64)]) -> Dimension {
-    let serves = serves.iter().map(|(what, value)| ((*what).to_string(), *value)).collect();
-    Dimension { name, value_m, first_guess_m: value_m, serves, corrections_m: Vec::new() }
-}
-
 /// J over the resonators' admittance of inverter k (1 to n+1), Cohn 1958; a port is seen through the quarter wave of the resonator's
 /// impedance that belongs to its section, which turns `Zport` into `Zr^2/Zport`.
 fn inverter(g: &[f64], k: usize, fraction: f64, resonator_ohm: f64, ports_ohm: [f64; 2]) -> f64 {
@@ -262,10 +246,10 @@ fn section_guess(
     let index = 0.5 * (pair.even_at(center_hz).eps_eff.sqrt() + pair.odd_at(center_hz).eps_eff.sqrt());
     let quarter_m = C_M_PER_S / (4.0 * center_hz * index);
     let end_m = open_end::extension_m(&Strip::new(built, width_m));
-    let mut length = guess(section(k, "length"), quarter_m, &[("electrical length deg", 90.0)]);
+    let mut length = Dimension::guess(section(k, "length"), quarter_m, &[("electrical length deg", 90.0)]);
     length.correct("open end", -end_m);
     let targets = [("J/Y", inverter), ("Z0e ohm", even_ohm), ("Z0o ohm", odd_ohm)];
-    [guess(section(k, "width"), width_m, &targets), guess(section(k, "gap"), gap_m, &targets), length]
+    [Dimension::guess(section(k, "width"), width_m, &targets), Dimension::guess(section(k, "gap"), gap_m, &targets), length]
 }
 
 /// How width and gap of section k follow its inverter value, relative over relative.

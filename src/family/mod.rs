@@ -1,6 +1,7 @@
 //! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
 
 mod edge_coupled;
+mod feeds;
 
 use crate::base::Outcome;
 use crate::base::Place;

@@ -4,6 +4,7 @@ use super::AsBuilt;
 use super::C_M_PER_S;
 use super::hammerstad_roughness_factor;
 use super::surface_resistance_ohm;
+use crate::base::bisect;
 
 /// Conductor-backed coplanar line, quasi-static.
 ///
@@ -37,6 +38,13 @@ impl Coplanar {
         let eps_eff = (1.0 + built.permittivity * q) / (1.0 + q);
         let z0_ohm = 60.0 * std::f64::consts::PI / eps_eff.sqrt() / (air + backed);
         Coplanar { z0_ohm, eps_eff, width_m, built: built.clone() }
+    }
+
+    /// The gap to the grounds (m) that gives an impedance, or the nearer end of the allowed range when none does.
+    pub fn gap_for_impedance(built: &AsBuilt, width_m: f64, z0_ohm: f64, [least_m, most_m]: [f64; 2]) -> f64 {
+        // Impedance grows with the gap.
+        let excess = |gap_m: f64| Coplanar::new(built, width_m, gap_m).z0_ohm - z0_ohm;
+        bisect(excess, least_m, most_m, 1e-9).unwrap_or(if excess(least_m) > 0.0 { least_m } else { most_m })
     }
 
     /// Attenuation: dielectric by filling, conductor by a current spread evenly over the pad (Pozar, "Microwave Engineering", the

@@ -63,12 +63,12 @@ pub struct Circuit {
 }
 
 /// Whether the launches belong to the response.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Planes<'a> {
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Planes {
     /// Reference planes where launch meets feed; launches left out.
     Feed,
     /// Reference planes at the board's edge; each launch is a two-port of its pad and taper.
-    Edge(&'a LaunchShape),
+    Edge,
 }
 
 impl Circuit {
@@ -108,8 +108,8 @@ impl Circuit {
                 }
                 Part::OpenEnd => Block::OpenEnd { strip: circuit.strip(book, width(placed.nodes[0])) },
                 Part::Step => step_block(&book.strip(width(placed.nodes[0])), &book.strip(width(placed.nodes[1]))),
-                Part::Launch { port } => {
-                    if let Planes::Edge(shape) = planes {
+                Part::Launch { port, shape } => {
+                    if planes == Planes::Edge {
                         let end = circuit.launch(book, shape, placed.nodes[0], width(placed.nodes[0]), &mut nodes, &mut fresh);
                         if let Some(place) = external.get_mut(port - 1) {
                             *place = end;

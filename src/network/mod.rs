@@ -5,6 +5,7 @@ mod curve;
 mod figures;
 mod join;
 mod response;
+pub mod touchstone;
 
 pub use circuit::{Circuit, Planes};
 pub use figures::{Figures, Verdict, passband_hz, sweep_hz};
@@ -31,6 +32,6 @@ pub fn predict(order: &Order, layout: &Layout) -> Result<Response, Problem> {
 /// Those of [`Circuit::new`].
 pub fn predict_at(order: &Order, layout: &Layout, f_hz: &[f64]) -> Result<Response, Problem> {
     let book = Book::new(AsBuilt::nominal(order));
-    let circuit = Circuit::new(layout, &book, order.filter.ports_ohm, Planes::Edge(&order.board.launch.shape))?;
+    let circuit = Circuit::new(layout, &book, order.filter.ports_ohm, Planes::Edge)?;
     Ok(circuit.sweep(f_hz))
 }

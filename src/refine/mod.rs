@@ -33,6 +33,8 @@ const SAMPLE_REACH: f64 = 1.25;
 const KNOB_STEP: f64 = 1e-3;
 /// A tenth of what is allowed: nothing that can be etched is gained by more.
 const ENOUGH: f64 = 0.1;
+/// A neighbour on the grid is worth taking from this gain on, in parts of the allowed miss.
+const LEAST_GAIN: f64 = 2e-3;
 /// Passes over all dimensions that try their neighbours on the grid.
 const NEIGHBOUR_PASSES: usize = 3;
 
@@ -248,7 +250,7 @@ fn snap(family: &dyn Family, refined: &Dimensions, goal: &Goal, book: &Book) -> 
                 }
                 dimension.value_m = value_m;
                 let reached = ratio(&neighbour);
-                if reached < best {
+                if reached < best - LEAST_GAIN {
                     (best, snapped) = (reached, neighbour);
                     break;
                 }

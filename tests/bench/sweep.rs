@@ -27,7 +27,7 @@ fn main() {
         // Planning and the fit of the line constants are part of the time.
         let start = Instant::now();
         let book = Book::new(AsBuilt::nominal(&order));
-        let circuit = Circuit::new(&layout, &book, order.filter.ports_ohm, Planes::Edge(&order.board.launch.shape)).unwrap();
+        let circuit = Circuit::new(&layout, &book, order.filter.ports_ohm, Planes::Edge).unwrap();
         swept = Some((circuit.sweep(&f_hz), circuit));
         best = best.min(start.elapsed().as_secs_f64());
     }

@@ -92,15 +92,15 @@ pub fn response(order: &Order, text: &toml::Table, degree: usize, f: f64) -> (C,
     let value = |name: String| (value(text, &name) * 1e9).round() * 1e-9;
     let width = |k: usize| value(format!("section {k} width"));
     let mut chain = [ONE, ZERO, ZERO, ONE];
-    let launch = |feed_m: f64, outwards: bool| {
+    let launch = |port: usize, feed_m: f64, outwards: bool| {
         let mut pieces: Vec<Chain> = Vec::new();
-        if let LaunchShape::EdgeCoax { pad_length_m, pad_width_m, taper_length_m, ground_gap_m, .. } = order.board.launch.shape {
+        if let LaunchShape::EdgeCoax { pad_length_m, pad_width_m, taper_length_m, .. } = order.board.launch.shape {
             const PIECES: usize = 60;
             for i in 0..PIECES {
                 let w = feed_m + (pad_width_m - feed_m) * (i as f64 + 0.5) / PIECES as f64;
                 pieces.push(strip_line(&Strip::new(&built, w), f, taper_length_m / PIECES as f64));
             }
-            let pad = Coplanar::new(&built, pad_width_m, ground_gap_m);
+            let pad = Coplanar::new(&built, pad_width_m, value(format!("launch {port} ground gap")));
             pieces.push(line(gamma(pad.eps_eff, pad.alpha_np_per_m(f), f) * pad_length_m, pad.z0_ohm));
         }
         if !outwards {
@@ -109,7 +109,7 @@ pub fn response(order: &Order, text: &toml::Table, degree: usize, f: f64) -> (C,
         pieces.into_iter().fold([ONE, ZERO, ZERO, ONE], times)
     };
     let feeds = [1, 2].map(|port| (value(format!("feed {port} width")), value(format!("feed {port} length"))));
-    chain = times(chain, launch(feeds[0].0, false));
+    chain = times(chain, launch(1, feeds[0].0, false));
     chain = times(chain, strip_line(&Strip::new(&built, feeds[0].0), f, feeds[0].1));
     let mut arriving = feeds[0].0;
     for k in 1..=degree + 1 {
@@ -121,7 +121,7 @@ pub fn response(order: &Order, text: &toml::Table, degree: usize, f: f64) -> (C,
     }
     chain = times(chain, step_chain(&built, arriving, feeds[1].0, f));
     chain = times(chain, strip_line(&Strip::new(&built, feeds[1].0), f, feeds[1].1));
-    chain = times(chain, launch(feeds[1].0, true));
+    chain = times(chain, launch(2, feeds[1].0, true));
     let [z1, z2] = order.filter.ports_ohm;
     let [a, b, c, d] = chain;
     let all = a * z2 + b + c * z1 * z2 + d * z1;
