@@ -1,8 +1,13 @@
 //! Arguments, printing and progress; one file per command.
 
+use std::io::Write;
 use std::process::ExitCode;
 
-use clap::{Parser, Subcommand};
+use clap::{CommandFactory, Parser, Subcommand};
+
+mod list;
+mod new;
+pub mod problems;
 
 /// From a filter requirement, a laminate and a board house's limits to a printed microwave filter.
 #[derive(Parser, Debug)]
@@ -19,7 +24,15 @@ struct Arguments {
 }
 
 #[derive(Subcommand, Debug)]
-enum Command {}
+enum Command {
+    New(new::New),
+    List(list::List),
+    /// Writes the completion script of a shell to stdout.
+    Completions {
+        /// The shell.
+        shell: clap_complete::Shell,
+    },
+}
 
 /// How a command talks: results to stdout, findings and progress to stderr.
 #[derive(Clone, Copy, Debug)]
@@ -54,5 +67,29 @@ impl From<Ending> for ExitCode {
 /// Reads the arguments and runs the command.
 pub fn run() -> ExitCode {
     let arguments = Arguments::parse();
-    match arguments.command {}
+    let voice = Voice { json: arguments.json, quiet: arguments.quiet };
+    let ending = match &arguments.command {
+        Command::New(arguments) => new::run(arguments, voice),
+        Command::List(arguments) => list::run(arguments, voice),
+        Command::Completions { shell } => {
+            let mut script = Vec::new();
+            clap_complete::generate(*shell, &mut Arguments::command(), "stripwright", &mut script);
+            results(&String::from_utf8_lossy(&script))
+        }
+    };
+    ending.into()
+}
+
+/// Writes results to stdout. A reader that stops listening (a pipe into `head`) is no failure; a full disk is.
+pub fn results(text: &str) -> Ending {
+    let mut out = std::io::stdout().lock();
+    match out.write_all(text.as_bytes()).and_then(|()| out.flush()) {
+        Ok(()) => Ending::Done,
+        Err(error) if error.kind() == std::io::ErrorKind::BrokenPipe => Ending::Done,
+        Err(error) => {
+            // Where stderr fails too there is nobody left to tell.
+            let _ = writeln!(std::io::stderr(), "error: the results cannot be written: {error}");
+            Ending::NothingMade
+        }
+    }
 }

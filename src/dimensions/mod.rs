@@ -1,5 +1,9 @@
 //! The synthesized dimension set: named physical numbers, each with its first guess, its target and its corrections.
 
+mod file;
+
+pub use file::{read, write};
+
 use crate::order::Order;
 
 /// One named physical number.
