@@ -6,6 +6,7 @@ use std::path::PathBuf;
 use super::Ending;
 use super::Voice;
 use super::read::Drawing;
+use super::results;
 use super::table;
 use crate::base::Dimensionality;
 use crate::base::Place;
@@ -63,15 +64,14 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
             return drawing.refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
         }
     }
-    if voice.json {
-        table::print_json(&table::figures_json(order, &figures, Some(&shown)));
+    let written = if voice.json {
+        table::print_json(&table::figures_json(order, &figures, Some(&shown)))
+    } else if arguments.from.is_some() {
+        results(&(table::figures_text(order, &figures) + &table::response_text(&shown)))
     } else {
-        table::print_figures(order, &figures);
-        if arguments.from.is_some() || arguments.to.is_some() {
-            table::print_response(&shown);
-        }
-    }
-    if figures.all_met() { Ending::Done } else { Ending::Unmet }
+        results(&table::figures_text(order, &figures))
+    };
+    if written == Ending::Done && !figures.all_met() { Ending::Unmet } else { written }
 }
 
 /// The frequencies asked for; `None` when neither end is given.
