@@ -96,9 +96,7 @@ pub fn copper(job: &Job, number: u8, out: &mut dyn Write) -> io::Result<()> {
         let (function, aperture) = match *pad {
             Pad::Round(HoleUse::Via, size) => (ApertureFunction::ViaPad, Aperture::Circle(Circle::new(size.mm()))),
             Pad::Round(HoleUse::Mounting, size) => (ApertureFunction::WasherPad, Aperture::Circle(Circle::new(size.mm()))),
-            Pad::Land(x, y) => {
-                (ApertureFunction::SmdPad(SmdPadType::CopperDefined), Aperture::Rectangle(Rectangular::new(x.mm(), y.mm())))
-            }
+            Pad::Land(x, y) => (ApertureFunction::SmdPad(SmdPadType::CopperDefined), Aperture::Rectangle(Rectangular::new(x.mm(), y.mm()))),
         };
         pen.define(code, function, aperture)?;
     }

@@ -51,7 +51,10 @@ fn two_port_s_as_real_and_imaginary() {
 fn a_bare_option_line_and_a_noise_block() {
     let text = "#\n2 .95 -26 3.57 157 .04 76 .66 -14\n22 .60 -144 1.30 40 .14 40 .56 -85\n! NOISE PARAMETERS\n4 .7 .64 69 .38\n18 2.7 .46 -33 .40\n";
     let file = read(text, 2).unwrap();
-    assert_eq!((file.parameter, file.reference_ohm.as_slice(), file.f_hz.as_slice()), ('S', [50.0, 50.0].as_slice(), [2e9, 22e9].as_slice()));
+    assert_eq!(
+        (file.parameter, file.reference_ohm.as_slice(), file.f_hz.as_slice()),
+        ('S', [50.0, 50.0].as_slice(), [2e9, 22e9].as_slice())
+    );
     assert!((file.values[0][1].norm() - 3.57).abs() < EXACT && (file.values[0][2].norm() - 0.04).abs() < EXACT);
     assert_eq!(file.noise, [[4e9, 0.7, 0.64, 69.0, 0.38], [18e9, 2.7, 0.46, -33.0, 0.40]]);
 }
@@ -71,10 +74,8 @@ fn four_ports_row_by_row_over_several_lines() {
 fn what_is_written_reads_back() {
     // Not reciprocal and not symmetric, so that a swapped order shows; a zero and a frequency that is no whole hertz besides.
     let c = Complex64::new;
-    let s = vec![
-        [c(0.1, 0.2), c(0.3, -0.4), c(-0.5, 0.6), c(0.7, 0.01)],
-        [c(0.0, 0.0), c(1.0 / 3.0, 0.0), c(0.0, -2.0 / 3.0), c(1e-9, 0.0)],
-    ];
+    let s =
+        vec![[c(0.1, 0.2), c(0.3, -0.4), c(-0.5, 0.6), c(0.7, 0.01)], [c(0.0, 0.0), c(1.0 / 3.0, 0.0), c(0.0, -2.0 / 3.0), c(1e-9, 0.0)]];
     for z0_ohm in [[50.0, 50.0], [50.0, 75.0]] {
         let response = Response { method: Method::Network, z0_ohm, f_hz: vec![1.0e9, 1.0e9 + 1.0 / 3.0], s: s.clone() };
         let mut text = Vec::new();
