@@ -37,6 +37,8 @@ const PLOT_HEIGHT_MM: f64 = 82.0;
 const AXIS_MM: f64 = 12.0;
 /// Thickness of the hatched strip on the forbidden side of a limit.
 const STRIP_MM: f64 = 2.6;
+/// Distance of the hatch's lines along the axis.
+const HATCH_MM: f64 = 1.2;
 /// The level axis goes down to the deepest limit and this much below it, within its least and greatest.
 const BELOW_LIMITS_DB: f64 = 20.0;
 const LEAST_DEPTH_DB: f64 = 50.0;
@@ -95,10 +97,6 @@ pub fn draw(job: &Job) -> String {
         "<svg xmlns=\"http://www.w3.org/2000/svg\" width=\"{w}mm\" height=\"{h}mm\" viewBox=\"0 0 {w} {h}\" font-family=\"sans-serif\">\n\
          <title>{title}</title>\n\
          <defs>\n\
-         <pattern id=\"met\" width=\"1.3\" height=\"1.3\" patternUnits=\"userSpaceOnUse\" patternTransform=\"rotate(45)\">\
-         <rect width=\"0.35\" height=\"1.3\" fill=\"{MET}\"/></pattern>\n\
-         <pattern id=\"missed\" width=\"1.3\" height=\"1.3\" patternUnits=\"userSpaceOnUse\" patternTransform=\"rotate(45)\">\
-         <rect width=\"0.7\" height=\"1.3\" fill=\"{MISSED}\"/></pattern>\n\
          <clipPath id=\"plot\"><rect x=\"{x}\" y=\"{t}\" width=\"{pw}\" height=\"{ph}\"/></clipPath>\n\
          </defs>\n\
          <rect width=\"{w}\" height=\"{h}\" fill=\"{PAPER}\"/>\n{body}</svg>\n",
@@ -162,6 +160,21 @@ impl Svg {
     fn line(&mut self, from: [f64; 2], to: [f64; 2], color: &str, width: f64) {
         let [x1, y1, x2, y2] = [from[0], from[1], to[0], to[1]].map(|v| number(v, 3));
         self.add(format_args!("<path d=\"M{x1} {y1}L{x2} {y2}\" stroke=\"{color}\" stroke-width=\"{width}\" fill=\"none\"/>"));
+    }
+
+    /// Slanted lines in a box; a missed limit's are heavier, so that it shows in grey print as well.
+    fn hatch(&mut self, low: [f64; 2], high: [f64; 2], color: &str, is_met: bool) {
+        let (height, width) = (high[1] - low[1], if is_met { 0.22 } else { 0.5 });
+        let mut d = String::new();
+        let lines = ((high[0] - low[0] + height) / HATCH_MM).floor() as usize;
+        for i in 1..=lines {
+            // Rises to the right from the lower edge; cut at both ends of the box.
+            let foot = low[0] - height + HATCH_MM * i as f64;
+            let (x1, x2) = (foot.max(low[0]), (foot + height).min(high[0]));
+            let [a, b, c, e] = [x1, high[1] - (x1 - foot), x2, high[1] - (x2 - foot)].map(|v| number(v, 2));
+            let _ = write!(d, "M{a} {b}L{c} {e}");
+        }
+        self.add(format_args!("<path d=\"{d}\" stroke=\"{color}\" stroke-width=\"{width}\" fill=\"none\"/>"));
     }
 
     fn rectangle(&mut self, x: f64, y: f64, size: [f64; 2], fill: &str, more: &str) {
@@ -327,16 +340,24 @@ impl Plot {
         let y = self.y(level_db);
         // Above 0 dB there is no room; the strip then shows what is left.
         let strip = if above { [(y - STRIP_MM).max(self.top), y] } else { [y, y + STRIP_MM] };
-        let (name, tone) = if verdict.is_met() { ("met", MET) } else { ("missed", MISSED) };
+        let tone = if verdict.is_met() { MET } else { MISSED };
         let veil = if above { [self.top, y] } else { [y, self.bottom] };
         svg.rectangle(band[0], veil[0], [band[1] - band[0], veil[1] - veil[0]], tone, "fill-opacity=\"0.05\"");
-        svg.rectangle(band[0], strip[0], [band[1] - band[0], strip[1] - strip[0]], &format!("url(#{name})"), "");
+        svg.hatch([band[0], strip[0]], [band[1], strip[1]], tone, verdict.is_met());
         svg.line([band[0], y], [band[1], y], color, 0.5);
         if !verdict.is_met() {
+            let level_db = self.found(job, verdict, color);
             let x = self.x(verdict.at_hz.clamp(self.f_hz[0], self.f_hz[1]));
             let (x, y) = (number(x, 3), number(self.y(level_db), 3));
             svg.add(format_args!("<circle cx=\"{x}\" cy=\"{y}\" r=\"1.4\" fill=\"none\" stroke=\"{MISSED}\" stroke-width=\"0.5\"/>"));
         }
+    }
+
+    /// The level of the bound curve where its limit was missed most.
+    fn found(&self, job: &Job, verdict: &Verdict, color: &str) -> f64 {
+        let response = job.bundle.response;
+        let index = response.f_hz.partition_point(|f_hz| *f_hz < verdict.at_hz).min(response.s.len().saturating_sub(1));
+        response.s.get(index).map_or(0.0, |s| -level_db(if color == REFLECTED { s[0] } else { s[1] })).clamp(-self.depth_db, 0.0)
     }
 
     fn key(&self, svg: &mut Svg) {
@@ -347,8 +368,8 @@ impl Plot {
             svg.text(x + 8.5, y, 3.0, INK, "", name);
             x += 22.0;
         }
-        for (pattern, name) in [("met", "limit, met"), ("missed", "limit, missed")] {
-            svg.rectangle(x, y - STRIP_MM, [7.0, STRIP_MM], &format!("url(#{pattern})"), "");
+        for (is_met, tone, name) in [(true, MET, "limit, met"), (false, MISSED, "limit, missed")] {
+            svg.hatch([x, y - STRIP_MM], [x + 7.0, y], tone, is_met);
             svg.text(x + 8.5, y, 3.0, INK, "", name);
             x += 30.0;
         }
@@ -377,8 +398,8 @@ fn figures(svg: &mut Svg, job: &Job, y: f64, right: f64) -> f64 {
         ("centre", ghz(figures.center_hz)),
         ("3 dB bandwidth", figures.edges_3db_hz.map_or_else(none, |[a, b]| format!("{} MHz", number((b - a) * 1e-6, 1)))),
         ("loss at centre", format!("{:.2} dB", figures.center_loss_db)),
-        ("worst loss in band", format!("{:.2} dB", figures.worst_loss_db)),
-        ("return loss in band", format!("{:.1} dB", figures.return_loss_db)),
+        ("worst in band", format!("{:.2} dB", figures.worst_loss_db)),
+        ("return loss", format!("{:.1} dB", figures.return_loss_db)),
         ("delay at centre", format!("{:.2} ns", figures.group_delay_s * 1e9)),
         ("next passband", figures.spurious_hz.map_or_else(none, ghz)),
     ];
@@ -399,12 +420,12 @@ fn verdicts(svg: &mut Svg, job: &Job, mut y: f64, right: f64) -> f64 {
         let (tone, word) = if verdict.is_met() { (MET, "met") } else { (MISSED, "missed") };
         svg.rectangle(MARGIN_MM, y - 2.5, [2.6, 2.6], tone, "rx=\"0.5\"");
         let band = verdict.band_hz.map(|f_hz| number(f_hz * 1e-9, 4));
-        svg.text(MARGIN_MM + 4.6, y, 3.0, INK, "", &format!("{} to {} GHz", band[0], band[1]));
-        svg.text(MARGIN_MM + 42.0, y, 3.0, INK, "", &limit_text(verdict.limit));
+        svg.text(MARGIN_MM + 4.6, y, 2.8, INK, "", &format!("{} to {} GHz", band[0], band[1]));
+        svg.text(MARGIN_MM + 36.0, y, 2.8, INK, "", &limit_text(verdict.limit));
         let found = format!("found {} at {} GHz", amount(verdict.limit, verdict.found), number(verdict.at_hz * 1e-9, 4));
-        svg.text(MARGIN_MM + 98.0, y, 3.0, INK, "", &found);
+        svg.text(MARGIN_MM + 92.0, y, 2.8, INK, "", &found);
         let by = format!("{word} by {}", amount(verdict.limit, verdict.margin.abs()));
-        svg.text(right, y, 3.0, tone, "text-anchor=\"end\" font-weight=\"600\"", &by);
+        svg.text(right, y, 2.8, tone, "text-anchor=\"end\" font-weight=\"600\"", &by);
         y += 5.2;
     }
     y
@@ -416,7 +437,7 @@ pub(super) fn limit_text(limit: Limit) -> String {
         Limit::InsertionLossAtMost(db) => format!("insertion loss at most {} dB", number(db, 3)),
         Limit::ReturnLossAtLeast(db) => format!("return loss at least {} dB", number(db, 3)),
         Limit::RejectionAtLeast { db, below_center: false } => format!("rejection at least {} dB", number(db, 3)),
-        Limit::RejectionAtLeast { db, below_center: true } => format!("rejection at least {} dB below the centre", number(db, 3)),
+        Limit::RejectionAtLeast { db, below_center: true } => format!("rejection at least {} dB below centre", number(db, 3)),
         Limit::RippleAtMost(db) => format!("ripple at most {} dB", number(db, 3)),
         Limit::GroupDelayVariationAtMost(s) => format!("group delay variation at most {} ns", number(s * 1e9, 4)),
     }
