@@ -42,12 +42,16 @@ use crate::order::Mask;
 use crate::order::Order;
 use crate::order::TextOn;
 
+/// A board may be this much longer than circuit and launches, at each port, before the feeds' run is worth a word.
+const MAX_FEED_RUN: Nm = Nm(250_000);
+
 /// The circuit in the drawing's frame, level and with square feed ends, before it is seated on the board.
 pub(super) struct Placed {
     pub circuit: Region,
     bends: Vec<Ring>,
     planes: [Node; 2],
     pub mouths: [Mouth; 2],
+    pub shapes: [LaunchShape; 2],
     turn: Turn,
     angle_deg: f64,
 }
@@ -68,7 +72,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             "port-side = [\"left\", \"right\"]",
         )]);
     };
-    if !order.board.outline && matches!(order.board.launch.shape, LaunchShape::EdgeCoax { .. }) {
+    if !order.board.outline && placed.shapes.iter().any(|shape| matches!(shape, LaunchShape::EdgeCoax { .. })) {
         return Err(vec![Problem::error(
             "launch-without-edge",
             Place::Key("board.launch".to_string()),
@@ -85,9 +89,11 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let launches: Vec<Launched> = (0..2)
         .map(|i| {
             let (shop, height_m) = (&order.shop, order.laminate.thickness_m);
-            launch::draw(&order.board.launch.shape, shop, height_m, order.board.outline, placed.mouths[i], i + 1, edges[i]).seated(&seat)
+            launch::draw(&placed.shapes[i], shop, height_m, order.board.outline, placed.mouths[i], i + 1, edges[i]).seated(&seat)
         })
         .collect();
+
+    problems.extend(feed_lengthened(order, &placed, edges));
 
     let circuit = placed.circuit.mapped(|p| seat.point(p));
     let joined: Vec<Ring> = placed.bends.iter().map(|ring| seat.ring(ring)).chain(launches.iter().flat_map(|l| l.signal.clone())).collect();
@@ -159,6 +165,9 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     }
 
     let on_board = |p: Point| seat.point(placed.turn.point(p));
+    let mut called: Vec<Callout> =
+        callouts(layout).into_iter().map(|c| Callout { from: on_board(c.from), to: on_board(c.to), ..c }).collect();
+    called.extend(launch_gaps(layout, &launches));
     Ok((
         Board {
             outline: Shape { outer: rectangle(Point::default(), size), voids: Vec::new(), role: Role::Ground, net: String::new() },
@@ -168,7 +177,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             lands,
             ports,
             circuit: circuit.bounds().unwrap_or_default(),
-            callouts: callouts(layout).into_iter().map(|c| Callout { from: on_board(c.from), to: on_board(c.to), ..c }).collect(),
+            callouts: called,
             turn_deg: placed.angle_deg + 90.0 * f64::from(quarters),
             expected_nets: layout.expected_nets,
         },
@@ -203,6 +212,8 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
         return Err(incomplete(format!("{} ports, not two", layout.ports.len())));
     };
     let nodes = [node(first)?, node(second)?];
+    let launch = |port: usize| layout.launch(port).copied().ok_or_else(|| incomplete(format!("port {port} has no launch")));
+    let shapes = [launch(1)?, launch(2)?];
     let circuit = Region::union_of(&rings);
     if circuit.pieces.is_empty() {
         return Err(incomplete("no copper at all".to_string()));
@@ -212,7 +223,7 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
     let circuit = if angle_deg == 0.0 { circuit } else { circuit.mapped(|p| turn.point(p)) };
     let planes = nodes.map(|node| turn.node(node));
     let (one, other) = (launch::square_mouth(planes[0], -1), launch::square_mouth(planes[1], 1));
-    Ok(Placed { circuit, bends: one.1.into_iter().chain(other.1).collect(), planes, mouths: [one.0, other.0], turn, angle_deg })
+    Ok(Placed { circuit, bends: one.1.into_iter().chain(other.1).collect(), planes, mouths: [one.0, other.0], shapes, turn, angle_deg })
 }
 
 /// The turn that brings both ports to one height.
@@ -220,6 +231,27 @@ fn level_deg(nodes: [Node; 2]) -> f64 {
     let [a, b] = nodes.map(|node| node.middle());
     let (dx, dy) = ((b.x - a.x).m(), (b.y - a.y).m());
     if dy == 0.0 { 0.0 } else { -dy.atan2(dx).to_degrees() }
+}
+
+/// A warning when the board is so long that the feeds must run on to reach their launches.
+fn feed_lengthened(order: &Order, placed: &Placed, edges: [Nm; 2]) -> Option<Problem> {
+    let runs = [0, 1].map(|i| {
+        let mouth = &placed.mouths[i];
+        (mouth.low.x - edges[i]).abs() - launch::extent(&placed.shapes[i], &order.shop, order.board.outline, mouth.width()).length
+    });
+    let longest = runs[0].max(runs[1]);
+    (longest > MAX_FEED_RUN).then(|| {
+        Problem::warning(
+            "feed-lengthened",
+            Place::Key("board.size".to_string()),
+            format!(
+                "the feeds run on by {:.2} mm and {:.2} mm from their reference planes to reach the launches at the board's edges; the predicted response leaves this out",
+                runs[0].mm(),
+                runs[1].mm()
+            ),
+            "board.margin in place of board.size makes the board as long as the circuit, or raise the feed lengths in the dimension set",
+        )
+    })
 }
 
 /// The mounting holes as ordered; one that is not wholly on the board is an error.
@@ -283,6 +315,20 @@ fn housing_too_small(circuit: &Region, planes: [Point; 2], seat: &Seat, inside: 
 /// The keep-outs as rings.
 fn keep_out_rings(order: &Order) -> Vec<Ring> {
     order.board.keep_outs.iter().map(|k| rectangle(Point::from_m(k.from_m[0], k.from_m[1]), Point::from_m(k.to_m[0], k.to_m[1]))).collect()
+}
+
+/// The gap of each launch whose part is drawn from a dimension named a gap.
+fn launch_gaps(layout: &Layout, launches: &[Launched]) -> Vec<Callout> {
+    let mut called = Vec::new();
+    for placed in &layout.parts {
+        let Part::Launch { port, .. } = placed.part else { continue };
+        let gap = port.checked_sub(1).and_then(|i| launches.get(i)).and_then(|launch| launch.gap);
+        let name = placed.serves.iter().find(|name| name.split(' ').any(|word| word == "gap"));
+        if let (Some([from, to]), Some(name)) = (gap, name) {
+            called.push(Callout { dimension: name.clone(), from, to });
+        }
+    }
+    called
 }
 
 /// The ports on the board, with the net their copper has.

@@ -17,8 +17,7 @@ const SIZE_STEP: Nm = Nm(100_000);
 /// Lower left and upper right corner of the board in the drawing's frame.
 pub(super) fn corners(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], Vec<Problem>> {
     let request = &order.board;
-    let shape = &request.launch.shape;
-    let extents: [Extent; 2] = placed.mouths.map(|mouth| launch::extent(shape, &order.shop, request.outline, mouth.width()));
+    let extents: [Extent; 2] = [0, 1].map(|i| launch::extent(&placed.shapes[i], &order.shop, request.outline, placed.mouths[i].width()));
     let Some([low, high]) = placed.circuit.bounds() else { return Ok([Point::default(); 2]) };
     let clearance = if request.outline { Nm::from_m(order.shop.edge_clearance_m) } else { Nm::ZERO };
     let margin = match request.size {
