@@ -17,20 +17,18 @@ use crate::artwork::frame::Turn;
 use crate::artwork::frame::quarters;
 use crate::artwork::ground;
 use crate::artwork::launch;
-use crate::artwork::launch::Extent;
 use crate::artwork::launch::Launched;
 use crate::artwork::launch::Mouth;
 use crate::artwork::legend;
 use crate::artwork::mask;
 use crate::artwork::nets;
+use crate::artwork::outline;
 use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::between_mouths;
 use crate::artwork::shape::bounds;
-use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
-use crate::artwork::text::Room;
 use crate::base::Nm;
 use crate::base::Outcome;
 use crate::base::Place;
@@ -39,26 +37,21 @@ use crate::base::Problem;
 use crate::layout::Layout;
 use crate::layout::Node;
 use crate::layout::Part;
-use crate::order::BoardSize;
 use crate::order::LaunchShape;
 use crate::order::Mask;
 use crate::order::Order;
 use crate::order::TextOn;
 
-/// A board sized from a margin is rounded up to this.
-const SIZE_STEP: Nm = Nm(100_000);
-/// Legend print keeps this far from lands, holes and strips.
-const LEGEND_CLEARANCE: Nm = Nm(300_000);
-/// Etched text keeps this many laminate thicknesses, and at least this far, from the strips of the circuit.
-const ETCHED_TEXT_HEIGHTS: f64 = 3.0;
-const ETCHED_TEXT_M: f64 = 1e-3;
+/// A board may be this much longer than circuit and launches, at each port, before the feeds' run is worth a word.
+const MAX_FEED_RUN: Nm = Nm(250_000);
 
 /// The circuit in the drawing's frame, level and with square feed ends, before it is seated on the board.
-struct Placed {
-    circuit: Region,
+pub(super) struct Placed {
+    pub circuit: Region,
     bends: Vec<Ring>,
     planes: [Node; 2],
-    mouths: [Mouth; 2],
+    pub mouths: [Mouth; 2],
+    pub shapes: [LaunchShape; 2],
     turn: Turn,
     angle_deg: f64,
 }
@@ -66,7 +59,7 @@ struct Placed {
 /// Draws the board: everything that can be made, finished size, origin at the lower left corner.
 ///
 /// # Errors
-/// `layout-incomplete`, `ports-not-opposite`, `launch-without-edge`, `board-too-small`, `housing-too-small`, `hole-off-the-board`:
+/// `layout-incomplete`, `ports-not-opposite`, `launch-without-edge`, `board-too-small`, `no-room-for-wall`, `housing-too-small`, `hole-off-the-board`:
 /// the order asks for what cannot be drawn. Warnings: text that found no room or no letter.
 pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut problems = Vec::new();
@@ -79,7 +72,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             "port-side = [\"left\", \"right\"]",
         )]);
     };
-    if !order.board.outline && matches!(order.board.launch.shape, LaunchShape::EdgeCoax { .. }) {
+    if !order.board.outline && placed.shapes.iter().any(|shape| matches!(shape, LaunchShape::EdgeCoax { .. })) {
         return Err(vec![Problem::error(
             "launch-without-edge",
             Place::Key("board.launch".to_string()),
@@ -87,7 +80,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             "launch = \"open\", or leave board.outline out",
         )]);
     }
-    let [low, high] = outline(order, &placed, quarters)?;
+    let [low, high] = outline::corners(order, &placed, quarters)?;
     let seat = Seat::new(quarters, low, high);
     let (one, other) = (seat.point(low), seat.point(high));
     let size = Point { x: one.x.max(other.x), y: one.y.max(other.y) };
@@ -96,9 +89,11 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let launches: Vec<Launched> = (0..2)
         .map(|i| {
             let (shop, height_m) = (&order.shop, order.laminate.thickness_m);
-            launch::draw(&order.board.launch.shape, shop, height_m, order.board.outline, placed.mouths[i], i + 1, edges[i]).seated(&seat)
+            launch::draw(&placed.shapes[i], shop, height_m, order.board.outline, placed.mouths[i], i + 1, edges[i]).seated(&seat)
         })
         .collect();
+
+    problems.extend(feed_lengthened(order, &placed, edges));
 
     let circuit = placed.circuit.mapped(|p| seat.point(p));
     let joined: Vec<Ring> = placed.bends.iter().map(|ring| seat.ring(ring)).chain(launches.iter().flat_map(|l| l.signal.clone())).collect();
@@ -160,7 +155,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
         layers.insert(Layer::Mask(Face::Bottom), shapes(&openings[1], Role::Opening, ""));
     }
     if order.board.text != TextOn::None {
-        let mut room = room(order, size, &circuit, &signal, &top_ground, &openings[0], &launches, &holes);
+        let mut room = legend::room(order, size, &circuit, &[&signal, &top_ground, &openings[0], &keep_outs], &launches, &holes);
         let (text, warnings) = legend::drawn(order, &mut room, touch);
         problems.extend(warnings);
         let layer = if order.board.text == TextOn::Copper { Layer::Copper(1) } else { Layer::Legend(Face::Top) };
@@ -170,6 +165,9 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     }
 
     let on_board = |p: Point| seat.point(placed.turn.point(p));
+    let mut called: Vec<Callout> =
+        callouts(layout).into_iter().map(|c| Callout { from: on_board(c.from), to: on_board(c.to), ..c }).collect();
+    called.extend(launch_gaps(layout, &launches));
     Ok((
         Board {
             outline: Shape { outer: rectangle(Point::default(), size), voids: Vec::new(), role: Role::Ground, net: String::new() },
@@ -179,7 +177,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             lands,
             ports,
             circuit: circuit.bounds().unwrap_or_default(),
-            callouts: callouts(layout).into_iter().map(|c| Callout { from: on_board(c.from), to: on_board(c.to), ..c }).collect(),
+            callouts: called,
             turn_deg: placed.angle_deg + 90.0 * f64::from(quarters),
             expected_nets: layout.expected_nets,
         },
@@ -214,6 +212,8 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
         return Err(incomplete(format!("{} ports, not two", layout.ports.len())));
     };
     let nodes = [node(first)?, node(second)?];
+    let launch = |port: usize| layout.launch(port).copied().ok_or_else(|| incomplete(format!("port {port} has no launch")));
+    let shapes = [launch(1)?, launch(2)?];
     let circuit = Region::union_of(&rings);
     if circuit.pieces.is_empty() {
         return Err(incomplete("no copper at all".to_string()));
@@ -223,7 +223,7 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
     let circuit = if angle_deg == 0.0 { circuit } else { circuit.mapped(|p| turn.point(p)) };
     let planes = nodes.map(|node| turn.node(node));
     let (one, other) = (launch::square_mouth(planes[0], -1), launch::square_mouth(planes[1], 1));
-    Ok(Placed { circuit, bends: one.1.into_iter().chain(other.1).collect(), planes, mouths: [one.0, other.0], turn, angle_deg })
+    Ok(Placed { circuit, bends: one.1.into_iter().chain(other.1).collect(), planes, mouths: [one.0, other.0], shapes, turn, angle_deg })
 }
 
 /// The turn that brings both ports to one height.
@@ -233,69 +233,25 @@ fn level_deg(nodes: [Node; 2]) -> f64 {
     if dy == 0.0 { 0.0 } else { -dy.atan2(dx).to_degrees() }
 }
 
-/// Lower left and upper right corner of the board in the drawing's frame.
-fn outline(order: &Order, placed: &Placed, quarters: u8) -> Result<[Point; 2], Vec<Problem>> {
-    let request = &order.board;
-    let shape = &request.launch.shape;
-    let extents: [Extent; 2] = placed.mouths.map(|mouth| launch::extent(shape, &order.shop, request.outline, mouth.width()));
-    let Some([low, high]) = placed.circuit.bounds() else { return Ok([Point::default(); 2]) };
-    let clearance = if request.outline { Nm::from_m(order.shop.edge_clearance_m) } else { Nm::ZERO };
-    let margin = match request.size {
-        BoardSize::Margin(margin_m) => Nm::from_m(margin_m),
-        BoardSize::Fixed(_) => clearance,
-    };
-    // Along the ports: the launches, and whatever of the circuit reaches beyond a feed's end.
-    let feeds = [placed.mouths[0].low.x, placed.mouths[1].low.x];
-    let beyond = |reach: Nm, launch: Nm| if reach > Nm::ZERO { launch.max(reach + clearance) } else { launch };
-    let mut left = feeds[0] - beyond(feeds[0] - low.x, extents[0].length);
-    let mut right = feeds[1] + beyond(high.x - feeds[1], extents[1].length);
-    // Across: the circuit with its margin, the launches with the clearance to the edge; the middle moved by the port offset.
-    let sides = placed.mouths.iter().zip(extents).map(|(mouth, extent)| {
-        let middle = Nm((mouth.low.y.0 + mouth.high.y.0) / 2);
-        [middle - extent.half_width - clearance, middle + extent.half_width + clearance]
+/// A warning when the board is so long that the feeds must run on to reach their launches.
+fn feed_lengthened(order: &Order, placed: &Placed, edges: [Nm; 2]) -> Option<Problem> {
+    let runs = [0, 1].map(|i| {
+        let mouth = &placed.mouths[i];
+        (mouth.low.x - edges[i]).abs() - launch::extent(&placed.shapes[i], &order.shop, order.board.outline, mouth.width()).length
     });
-    let (bottom, top) = sides.fold((low.y - margin, high.y + margin), |(b, t), [from, to]| (b.min(from), t.max(to)));
-    let sign = if matches!(quarters, 0 | 3) { 1 } else { -1 };
-    let middle_y = Nm((low.y.0 + high.y.0).div_euclid(2)) - Nm(sign * Nm::from_m(request.port_offset_m).0);
-    let half = (middle_y - bottom).max(top - middle_y);
-    let upright = quarters % 2 == 1;
-    let needed = [right - left, half + half];
-    let on_board = |size: [Nm; 2]| if upright { [size[1], size[0]] } else { size };
-    // A wall stands on the board, and the launches reach through it.
-    let walled = order.housing.and_then(|housing| housing.inside_m).map(|inside_m| {
-        let inside = on_board(inside_m.map(Nm::from_m));
-        inside.map(|v| v + ground::WALL_WIDTH + ground::WALL_WIDTH + clearance + clearance)
-    });
-    let size = match request.size {
-        BoardSize::Margin(_) => {
-            let with_wall = walled.map_or(needed, |walled| [needed[0].max(walled[0]), needed[1].max(walled[1])]);
-            with_wall.map(|v| Nm((v.0 + SIZE_STEP.0 - 1) / SIZE_STEP.0 * SIZE_STEP.0))
-        }
-        BoardSize::Fixed(size_m) => {
-            let size = on_board(size_m.map(Nm::from_m));
-            if size[0] < needed[0] || size[1] < needed[1] {
-                let up = on_board(needed).map(|v| Nm((v.0 + SIZE_STEP.0 - 1) / SIZE_STEP.0 * SIZE_STEP.0));
-                return Err(vec![Problem::error(
-                    "board-too-small",
-                    Place::Key("board.size".to_string()),
-                    format!(
-                        "circuit and launches need {:.3} mm x {:.3} mm, the board is {:.3} mm x {:.3} mm",
-                        on_board(needed)[0].mm(),
-                        on_board(needed)[1].mm(),
-                        size_m[0] * 1e3,
-                        size_m[1] * 1e3
-                    ),
-                    format!("size = [\"{:.1} mm\", \"{:.1} mm\"] or larger", up[0].mm(), up[1].mm()),
-                )]);
-            }
-            size
-        }
-    };
-    let spare = size[0] - (right - left);
-    left = left - Nm(spare.0 / 2);
-    right = left + size[0];
-    let bottom = middle_y - Nm(size[1].0 / 2);
-    Ok([Point { x: left, y: bottom }, Point { x: right, y: bottom + size[1] }])
+    let longest = runs[0].max(runs[1]);
+    (longest > MAX_FEED_RUN).then(|| {
+        Problem::warning(
+            "feed-lengthened",
+            Place::Key("board.size".to_string()),
+            format!(
+                "the feeds run on by {:.2} mm and {:.2} mm from their reference planes to reach the launches at the board's edges; the predicted response leaves this out",
+                runs[0].mm(),
+                runs[1].mm()
+            ),
+            "board.margin in place of board.size makes the board as long as the circuit, or raise the feed lengths in the dimension set",
+        )
+    })
 }
 
 /// The mounting holes as ordered; one that is not wholly on the board is an error.
@@ -361,6 +317,20 @@ fn keep_out_rings(order: &Order) -> Vec<Ring> {
     order.board.keep_outs.iter().map(|k| rectangle(Point::from_m(k.from_m[0], k.from_m[1]), Point::from_m(k.to_m[0], k.to_m[1]))).collect()
 }
 
+/// The gap of each launch whose part is drawn from a dimension named a gap.
+fn launch_gaps(layout: &Layout, launches: &[Launched]) -> Vec<Callout> {
+    let mut called = Vec::new();
+    for placed in &layout.parts {
+        let Part::Launch { port, .. } = placed.part else { continue };
+        let gap = port.checked_sub(1).and_then(|i| launches.get(i)).and_then(|launch| launch.gap);
+        let name = placed.serves.iter().find(|name| name.split(' ').any(|word| word == "gap"));
+        if let (Some([from, to]), Some(name)) = (gap, name) {
+            called.push(Callout { dimension: name.clone(), from, to });
+        }
+    }
+    called
+}
+
 /// The ports on the board, with the net their copper has.
 fn ports(placed: &Placed, launches: &[Launched], seat: &Seat, strips: &[Shape]) -> Vec<Port> {
     launches
@@ -376,50 +346,6 @@ fn ports(placed: &Placed, launches: &[Launched], seat: &Seat, strips: &[Shape]) 
             Port { number: i + 1, edge, plane: seat.node(plane), net }
         })
         .collect()
-}
-
-/// Where text may stand.
-#[allow(clippy::too_many_arguments)]
-fn room(
-    order: &Order,
-    size: Point,
-    circuit: &Region,
-    signal: &Region,
-    ground: &Region,
-    openings: &Region,
-    launches: &[Launched],
-    holes: &[Hole],
-) -> Room {
-    let etched = order.board.text == TextOn::Copper;
-    let shop = &order.shop;
-    let edge = Nm::from_m(shop.edge_clearance_m.max(0.5e-3));
-    let clear = if etched { Nm::from_m(shop.gap_m.max(0.3e-3)) } else { LEGEND_CLEARANCE };
-    let from_circuit = if etched { Nm::from_m((ETCHED_TEXT_HEIGHTS * order.laminate.thickness_m).max(ETCHED_TEXT_M)) } else { clear };
-    let outer = |region: &Region, by: Nm| region.offset(by).pieces.into_iter().map(|piece| piece.outer).collect::<Vec<_>>();
-    let mut obstacles = outer(circuit, from_circuit);
-    obstacles.extend(outer(signal, clear));
-    // A wall's ring encloses free room: only its copper counts, not what it encloses, so it is taken apart into bars by the pads' rings.
-    for piece in ground.offset(clear).pieces {
-        if piece.voids.is_empty() { obstacles.push(piece.outer) } else { obstacles.extend(bars(&piece.outer, &piece.voids)) }
-    }
-    obstacles.extend(openings.pieces.iter().map(|piece| piece.outer.clone()));
-    obstacles.extend(launches.iter().map(|launch| launch.footprint.clone()));
-    obstacles.extend(holes.iter().map(|hole| disc(hole.at, Nm(hole.diameter.max(hole.pad).0 / 2) + clear)));
-    obstacles.extend(keep_out_rings(order));
-    Room::new(Point { x: edge, y: edge }, Point { x: size.x - edge, y: size.y - edge }, obstacles)
-}
-
-/// The four bars between a ring's box and its largest void's box.
-fn bars(outer: &Ring, voids: &[Ring]) -> Vec<Ring> {
-    let box_of = |ring: &Ring| bounds(ring.iter().copied());
-    let largest = voids.iter().filter_map(box_of).max_by_key(|[low, high]| i128::from((high.x - low.x).0) * i128::from((high.y - low.y).0));
-    let (Some([a, b]), Some([c, d])) = (box_of(outer), largest) else { return vec![outer.clone()] };
-    vec![
-        rectangle(a, Point { x: b.x, y: c.y }),
-        rectangle(Point { x: a.x, y: d.y }, b),
-        rectangle(a, Point { x: c.x, y: b.y }),
-        rectangle(Point { x: d.x, y: a.y }, b),
-    ]
 }
 
 fn shapes(region: &Region, role: Role, net: &str) -> Vec<Shape> {

@@ -53,6 +53,8 @@ pub(super) struct Launched {
     pub lands: Vec<Land>,
     /// Where the connector touches: lower and upper corner.
     pub touch: [Point; 2],
+    /// Across the gap between signal pad and a ground pad, where there is one.
+    pub gap: Option<[Point; 2]>,
     /// The whole launch with the gaps, for what must keep clear.
     pub footprint: Ring,
 }
@@ -117,9 +119,9 @@ pub(super) fn extent(shape: &LaunchShape, shop: &Shop, outline: bool, feed_width
 }
 
 /// How far to either side of a port's middle its launch has copper, top or bottom.
-pub fn launch_half_width(order: &Order, feed_width: Nm) -> Nm {
-    let extent = extent(&order.board.launch.shape, &order.shop, order.board.outline, feed_width);
-    match order.board.launch.shape {
+pub fn launch_half_width(order: &Order, shape: &LaunchShape, feed_width: Nm) -> Nm {
+    let extent = extent(shape, &order.shop, order.board.outline, feed_width);
+    match shape {
         LaunchShape::Open => extent.half_width + Nm::from_m(GROUND_REACH_HEIGHTS * order.laminate.thickness_m),
         LaunchShape::Pads { .. } | LaunchShape::EdgeCoax { .. } => extent.half_width,
     }
@@ -198,6 +200,8 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
                 pull_back + Nm::from_m(if mouth.width().0 > 2 * half.0 { ground_length_m.min(pad_length_m) } else { ground_length_m });
             let (inner, ground_width) = (half + Nm::from_m(ground_gap_m), Nm::from_m(ground_width_m));
             let outer = inner + ground_width;
+            let halfway = Nm((pull_back.0 + pad_end.0) / 2);
+            launched.gap = Some([at(halfway, half), at(halfway, inner)]);
             let via = (Nm::from_m(via_hole_m), Nm::from_m(via_pad_m));
             let rows = fence_rows(inner, outer, via, Nm::from_m(shop.hole_to_hole_m));
             // Hole walls keep the shop's clearance to the routed edge too.
@@ -267,6 +271,7 @@ impl Launched {
             holes: self.holes.into_iter().map(|hole| Hole { at: seat.point(hole.at), ..hole }).collect(),
             lands: self.lands.into_iter().map(|land| Land { at: seat.point(land.at), size: seat.size(land.size), ..land }).collect(),
             touch: self.touch.map(|p| seat.point(p)),
+            gap: self.gap.map(|ends| ends.map(|p| seat.point(p))),
             footprint: seat.ring(&self.footprint),
         }
     }

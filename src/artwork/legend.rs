@@ -1,7 +1,12 @@
 //! What the board says about itself: title, name, revision, part number, what the artwork was made for, port numbers.
 
+use crate::artwork::Hole;
+use crate::artwork::launch::Launched;
 use crate::artwork::shape::CHORD_ERROR;
+use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
+use crate::artwork::shape::Ring;
+use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
 use crate::artwork::text::Room;
 use crate::artwork::text::block;
@@ -12,6 +17,7 @@ use crate::base::Place;
 use crate::base::Point;
 use crate::base::Problem;
 use crate::order::Order;
+use crate::order::TextOn;
 
 /// Heights tried from the most readable down; the shop's least comes last.
 const HEIGHTS: [Nm; 3] = [Nm(1_800_000), Nm(1_400_000), Nm(1_000_000)];
@@ -21,6 +27,29 @@ const STROKE_SHARE: f64 = 0.12;
 const MAX_STROKE_SHARE: f64 = 0.2;
 /// A port's number stands within this distance of the port or not at all.
 const PORT_NUMBER_REACH: Nm = Nm(20_000_000);
+
+/// Legend print keeps this far from lands, holes and strips.
+const LEGEND_CLEARANCE_M: f64 = 0.3e-3;
+/// Text keeps at least this far from the board's edge.
+const EDGE_M: f64 = 0.5e-3;
+/// Etched text keeps this many laminate thicknesses, and at least this far, from the strips of the circuit.
+const ETCHED_TEXT_HEIGHTS: f64 = 3.0;
+const ETCHED_TEXT_M: f64 = 1e-3;
+
+/// Where text may stand: clear of the circuit, of `others` (launches, ground, mask openings, keep-outs), of holes and of the edge.
+pub(super) fn room(order: &Order, size: Point, circuit: &Region, others: &[&Region], launches: &[Launched], holes: &[Hole]) -> Room {
+    let etched = order.board.text == TextOn::Copper;
+    let shop = &order.shop;
+    let edge = Nm::from_m(shop.edge_clearance_m.max(EDGE_M));
+    let clear = Nm::from_m(if etched { shop.gap_m.max(LEGEND_CLEARANCE_M) } else { LEGEND_CLEARANCE_M });
+    let etched_clear = Nm::from_m((ETCHED_TEXT_HEIGHTS * order.laminate.thickness_m).max(ETCHED_TEXT_M));
+    let mut obstacles = circuit.offset(if etched { etched_clear } else { clear }).pieces;
+    obstacles.extend(others.iter().flat_map(|region| region.offset(clear).pieces));
+    let mut rings: Vec<Ring> = launches.iter().map(|launch| launch.footprint.clone()).collect();
+    rings.extend(holes.iter().map(|hole| disc(hole.at, Nm(hole.diameter.max(hole.pad).0 / 2) + clear)));
+    obstacles.extend(rings.into_iter().map(|outer| Piece { outer, voids: Vec::new() }));
+    Room::new(Point { x: edge, y: edge }, Point { x: size.x - edge, y: size.y - edge }, obstacles)
+}
 
 /// The lines, most wanted first, spelt in letters the font has.
 fn lines(order: &Order, problems: &mut Vec<Problem>) -> Vec<String> {
@@ -76,7 +105,7 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
         let mut region = region;
         region.shift(at.x, at.y);
         area.pieces.extend(region.pieces);
-        room.take(rectangle(at, at.shifted(size[0], size[1])));
+        room.take(Piece { outer: rectangle(at, at.shifted(size[0], size[1])), voids: Vec::new() });
     };
     let mut missing_ports = Vec::new();
     for (i, &port) in ports.iter().enumerate() {

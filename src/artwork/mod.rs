@@ -10,6 +10,7 @@ mod launch;
 mod legend;
 mod mask;
 mod nets;
+mod outline;
 pub mod shape;
 mod text;
 

@@ -367,11 +367,6 @@ enum Within {
     Outside,
 }
 
-/// Whether the point is inside the ring or on it.
-pub fn ring_contains(ring: &Ring, at: Point) -> bool {
-    side_of_ring(ring, at) != Within::Outside
-}
-
 fn side_of_ring(ring: &Ring, at: Point) -> Within {
     let mut inside = false;
     for (&a, &b) in ring.iter().zip(ring.iter().cycle().skip(1)) {

@@ -9,9 +9,13 @@ use vector_text_hershey::HersheyFont;
 use vector_text_hershey::HersheyRenderer;
 
 use crate::artwork::shape::CHORD_ERROR;
+use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::bounds;
+use crate::artwork::shape::edges;
+use crate::artwork::shape::rectangle;
+use crate::artwork::shape::turn;
 use crate::base::Nm;
 use crate::base::Point;
 
@@ -187,21 +191,19 @@ pub(super) struct Room {
     pub low: Point,
     /// Upper right corner.
     pub high: Point,
-    obstacles: Vec<(Ring, [Point; 2])>,
+    obstacles: Vec<(Piece, [Point; 2])>,
 }
 
 impl Room {
     /// A room with its obstacles, each already grown by the distance text keeps from it.
-    pub fn new(low: Point, high: Point, obstacles: impl IntoIterator<Item = Ring>) -> Room {
-        let obstacles = obstacles.into_iter().filter_map(|ring| bounds(ring.iter().copied()).map(|box_| (ring, box_))).collect();
+    pub fn new(low: Point, high: Point, obstacles: Vec<Piece>) -> Room {
+        let obstacles = obstacles.into_iter().filter_map(boxed).collect();
         Room { low, high, obstacles }
     }
 
     /// Takes up some room.
-    pub fn take(&mut self, ring: Ring) {
-        if let Some(box_) = bounds(ring.iter().copied()) {
-            self.obstacles.push((ring, box_));
-        }
+    pub fn take(&mut self, piece: Piece) {
+        self.obstacles.extend(boxed(piece));
     }
 
     /// The lower left corner of the free place for a block of this size that lies nearest to `target`.
@@ -222,8 +224,8 @@ impl Room {
     }
 
     fn is_free(&self, low: Point, high: Point) -> bool {
-        self.obstacles.iter().all(|(ring, [from, to])| {
-            to.x < low.x || from.x > high.x || to.y < low.y || from.y > high.y || !ring_meets_box(ring, low, high)
+        self.obstacles.iter().all(|(piece, [from, to])| {
+            to.x < low.x || from.x > high.x || to.y < low.y || from.y > high.y || !piece_meets_box(piece, low, high)
         })
     }
 }
@@ -235,11 +237,16 @@ fn raster(first: Nm, last: Nm, step: Nm) -> impl Iterator<Item = Nm> {
     (0..=steps).map(move |i| Nm(first.0 + i * step.0)).chain(end)
 }
 
-/// Whether the area of a ring and a box share a point.
-fn ring_meets_box(ring: &Ring, low: Point, high: Point) -> bool {
-    let corners = crate::artwork::shape::rectangle(low, high);
-    ring.iter().zip(ring.iter().cycle().skip(1)).any(|(&a, &b)| edge_meets_box(a, b, low, high, &corners))
-        || crate::artwork::shape::ring_contains(ring, low)
+fn boxed(piece: Piece) -> Option<(Piece, [Point; 2])> {
+    let corners = bounds(piece.outer.iter().copied())?;
+    Some((piece, corners))
+}
+
+/// Whether a piece and a box share a point.
+fn piece_meets_box(piece: &Piece, low: Point, high: Point) -> bool {
+    let corners = rectangle(low, high);
+    let rings = std::iter::once(&piece.outer).chain(&piece.voids);
+    edges(rings).iter().any(|edge| edge_meets_box(edge.a, edge.b, low, high, &corners)) || piece.contains(low)
 }
 
 fn edge_meets_box(a: Point, b: Point, low: Point, high: Point, corners: &Ring) -> bool {
@@ -247,6 +254,6 @@ fn edge_meets_box(a: Point, b: Point, low: Point, high: Point, corners: &Ring) -
         return false;
     }
     // Apart when all corners lie strictly on one side of the edge's line.
-    let sides: Vec<i128> = corners.iter().map(|&c| crate::artwork::shape::turn(a, b, c)).collect();
+    let sides: Vec<i128> = corners.iter().map(|&c| turn(a, b, c)).collect();
     !(sides.iter().all(|&s| s > 0) || sides.iter().all(|&s| s < 0))
 }

@@ -4,6 +4,7 @@ use crate::artwork::Role;
 use crate::artwork::launch_half_width;
 use crate::artwork::shape::between_edges;
 use crate::artwork::shape::edges;
+use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Point;
 use crate::base::Problem;
@@ -27,7 +28,8 @@ fn run(subject: &Subject) -> Vec<Problem> {
     // Copper of a launch is where it must be: along the edge, this far to either side of the port.
     let at_launch = |p: Point| {
         board.ports.iter().any(|port| {
-            let (middle, half) = (port.edge.middle(), launch_half_width(order, port.plane.width()));
+            let middle = port.edge.middle();
+            let half = subject.layout.launch(port.number).map_or(Nm::ZERO, |shape| launch_half_width(order, shape, port.plane.width()));
             (p.x - middle.x).abs() <= half && (p.y - middle.y).abs() <= half
         })
     };

@@ -17,12 +17,14 @@ pub(super) const RULE: Rule = Rule {
 fn run(subject: &Subject) -> Vec<Problem> {
     let launch = &subject.dimensions.order.board.launch;
     let mut found = Vec::new();
-    let (pad_width_m, gap_m) = match launch.shape {
-        LaunchShape::Open => return found,
-        LaunchShape::Pads { pad_width_m, .. } => (pad_width_m, None),
-        LaunchShape::EdgeCoax { pad_width_m, ground_gap_m, .. } => (pad_width_m, Some(ground_gap_m)),
-    };
+    let mut is_edge_coax = false;
     for port in &subject.board.ports {
+        let (pad_width_m, gap_m) = match subject.layout.launch(port.number) {
+            None | Some(LaunchShape::Open) => continue,
+            Some(&LaunchShape::Pads { pad_width_m, .. }) => (pad_width_m, None),
+            Some(&LaunchShape::EdgeCoax { pad_width_m, ground_gap_m, .. }) => (pad_width_m, Some(ground_gap_m)),
+        };
+        is_edge_coax |= gap_m.is_some();
         let (feed_m, at) = (port.plane.width().m(), Place::Board(port.plane.middle()));
         let (feed, pad) = (feed_m * 1e3, pad_width_m * 1e3);
         match gap_m {
@@ -44,7 +46,6 @@ fn run(subject: &Subject) -> Vec<Problem> {
             _ => {}
         }
     }
-    let is_edge_coax = gap_m.is_some();
     if is_edge_coax && !subject.board.holes.iter().any(|hole| hole.purpose == HoleUse::Via) {
         found.push(Problem::error(
             RULE.code,

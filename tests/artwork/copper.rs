@@ -2,12 +2,13 @@
 
 use geo::{Area, Contains, Coord, Distance, Euclidean, LineString, Polygon, Validation};
 use stripwright::artwork::shape::{Region, ring_faults};
-use stripwright::artwork::{Board, Callout, Face, Layer, Role, Shape, board, compensated};
+use stripwright::artwork::{Board, Callout, Face, Layer, Role, Shape, compensated};
 use stripwright::base::{Nm, Point};
 use stripwright::layout::{Layout, Part};
 use stripwright::order::{Compensation, LaunchShape, Mask, Order, TextOn};
 
 use crate::sample;
+use crate::sample::board;
 
 /// Nanometres as f64 are exact up to 9 million metres, so `geo` judges the very corners.
 fn polygon(shape: &Shape) -> Polygon<f64> {
@@ -130,7 +131,14 @@ fn call_outs_measure_what_the_layout_says() {
     for (name, order) in variants() {
         let layout = sample::degree_3();
         let board = made(&order, &layout);
-        assert_eq!(board.callouts.len(), 1 + 3 * 4, "{name}");
+        let launch_gap = board.callouts.iter().find(|c| c.dimension == "launch 1 ground gap");
+        // A feed's width, three dimensions for each of four sections, and the gap of the launch that serves one.
+        assert_eq!(board.callouts.len(), 1 + 3 * 4 + usize::from(launch_gap.is_some()), "{name}");
+        if let LaunchShape::EdgeCoax { ground_gap_m, .. } = order.board.launch.shape {
+            let gap = launch_gap.unwrap();
+            let long = ((gap.to.x - gap.from.x).m()).hypot((gap.to.y - gap.from.y).m());
+            assert!((long - ground_gap_m).abs() < 2e-9, "{name}: {long}");
+        }
         for placed in &layout.parts {
             let Part::Lines { widths, gaps, length } = &placed.part else { continue };
             for dimension in &placed.serves {

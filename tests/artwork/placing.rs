@@ -3,11 +3,12 @@
 use std::time::{Duration, Instant};
 
 use stripwright::artwork::shape::{Region, bounds};
-use stripwright::artwork::{Board, Face, Layer, Role, board};
+use stripwright::artwork::{Board, Face, Layer, Role};
 use stripwright::base::{Nm, Place, Point};
 use stripwright::order::*;
 
 use crate::sample;
+use crate::sample::board;
 
 fn sides(order: &mut Order, sides: [Side; 2]) -> Board {
     order.board.port_side = sides;
@@ -24,7 +25,8 @@ fn quarter_turns_turn_everything_exactly() {
     order.board.text = TextOn::None;
     let level = sides(&mut order, [Side::Left, Side::Right]);
     let [width, height] = [level.outline.outer[2].x, level.outline.outer[2].y];
-    let turns: [([Side; 2], fn(Point, Nm, Nm) -> Point); 3] = [
+    type Map = fn(Point, Nm, Nm) -> Point;
+    let turns: [([Side; 2], Map); 3] = [
         ([Side::Bottom, Side::Top], |p, _, h| Point { x: h - p.y, y: p.x }),
         ([Side::Right, Side::Left], |p, w, h| Point { x: w - p.x, y: h - p.y }),
         ([Side::Top, Side::Bottom], |p, w, _| Point { x: p.y, y: w - p.x }),
@@ -173,7 +175,9 @@ fn every_printable_letter_has_strokes() {
     order.title = (' '..='~').collect();
     order.board.size = BoardSize::Fixed([250e-3, 60e-3]);
     let (_, warnings) = board(&order, &sample::degree_3()).unwrap();
-    assert_eq!(warnings, vec![]);
+    let codes: Vec<_> = warnings.iter().map(|w| w.code).collect();
+    assert_eq!(codes, ["feed-lengthened"], "85 mm more than circuit and launches need at each end, and nothing else: {warnings:?}");
+    assert!(warnings[0].message.contains("84.90 mm"), "{}", warnings[0].message);
 }
 
 #[test]
@@ -212,6 +216,19 @@ fn a_hole_off_the_board_and_a_housing_too_small_are_refused() {
     order.housing = Some(Housing { lid_m: None, inside_m: Some([40e-3, 8e-3]) });
     let codes: Vec<_> = board(&order, &sample::degree_3()).unwrap_err().iter().map(|p| p.code).collect();
     assert_eq!(codes, ["hole-off-the-board", "housing-too-small"], "both are found in one run");
+}
+
+#[test]
+fn a_board_that_ends_within_the_wall_is_refused_and_one_within_the_housing_is_not() {
+    let mut order = sample::order();
+    order.housing = Some(Housing { lid_m: Some(10e-3), inside_m: Some([100e-3, 40e-3]) });
+    order.board.size = BoardSize::Fixed([102e-3, 30e-3]);
+    assert_eq!(board(&order, &sample::degree_3()).unwrap_err()[0].code, "no-room-for-wall");
+    order.board.size = BoardSize::Fixed([100e-3, 40e-3]);
+    let (within, _) = board(&order, &sample::degree_3()).unwrap();
+    order.housing = None;
+    let (without, _) = board(&order, &sample::degree_3()).unwrap();
+    assert_eq!(within, without, "no footprint on a board within the housing");
 }
 
 #[test]

@@ -2,7 +2,7 @@
 
 use std::collections::BTreeSet;
 
-use stripwright::artwork::{Board, Hole, HoleUse, Layer, Role, Shape, board};
+use stripwright::artwork::{Board, Hole, HoleUse, Layer, Role, Shape};
 use stripwright::base::{Nm, Place, Point, Problem, Severity};
 use stripwright::checks::{RULES, Subject, run};
 use stripwright::dimensions::Dimensions;
@@ -11,6 +11,7 @@ use stripwright::network::{Figures, Method, Response};
 use stripwright::order::*;
 
 use crate::sample;
+use crate::sample::board;
 
 fn found(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
     let dimensions = Dimensions { order: order.clone(), degree: 3, list: vec![] };
@@ -26,6 +27,7 @@ fn found(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
         spurious_hz: None,
         verdicts: vec![],
     };
+    let layout = &sample::launched(order, layout);
     run(&Subject { dimensions: &dimensions, layout, board, response: &response, figures: &figures })
 }
 

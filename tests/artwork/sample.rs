@@ -2,7 +2,8 @@
 
 use std::collections::BTreeMap;
 
-use stripwright::base::{Nm, Point};
+use stripwright::artwork::Board;
+use stripwright::base::{Nm, Outcome, Point};
 use stripwright::layout::{Layout, Node, Part, Placed};
 use stripwright::order::*;
 
@@ -23,7 +24,11 @@ pub fn staircase(feed_um: i64, widths_um: &[i64], gaps_um: &[i64], length_um: i6
     let (mut x, mut y, mut width) = (0, 0, feed_um * um);
     let port = add(&mut layout, mouth(x, y, width));
     layout.ports.push(port);
-    layout.parts.push(Placed { part: Part::Launch { port: 1 }, nodes: vec![port], serves: vec![] });
+    layout.parts.push(Placed {
+        part: Part::Launch { port: 1, shape: edge_coax().shape },
+        nodes: vec![port],
+        serves: vec!["launch 1 ground gap".into()],
+    });
     x += 5_000_000;
     let mut before = add(&mut layout, mouth(x, y, width));
     layout.parts.push(Placed {
@@ -65,8 +70,24 @@ pub fn staircase(feed_um: i64, widths_um: &[i64], gaps_um: &[i64], length_um: i6
         nodes: vec![start, end],
         serves: vec!["feed width".into()],
     });
-    layout.parts.push(Placed { part: Part::Launch { port: 2 }, nodes: vec![end], serves: vec![] });
+    layout.parts.push(Placed { part: Part::Launch { port: 2, shape: edge_coax().shape }, nodes: vec![end], serves: vec![] });
     layout.ports.push(end);
+    layout
+}
+
+/// The board of a layout whose launches are of the order's class, as a family makes it.
+pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
+    stripwright::artwork::board(order, &launched(order, layout))
+}
+
+/// The layout with launches of the order's class.
+pub fn launched(order: &Order, layout: &Layout) -> Layout {
+    let mut layout = layout.clone();
+    for placed in &mut layout.parts {
+        if let Part::Launch { shape, .. } = &mut placed.part {
+            *shape = order.board.launch.shape;
+        }
+    }
     layout
 }
 
