@@ -147,7 +147,7 @@ struct Head {
 fn head(t: &Table<'_>) -> Option<Head> {
     const LONGEST: usize = 100;
     let name = t.resolve("name", "\"my-filter\"", None, name);
-    let title = t.resolve("title", "\"...\"", name.clone(), |t, k| t.line(k, LONGEST));
+    let title = t.resolve("title", "\"...\"", Some(name.clone().unwrap_or_default()), |t, k| t.line(k, LONGEST));
     let part_number = t.line("part-number", LONGEST);
     let contact = t.line("contact", LONGEST);
     let acceptance_class = t.resolve("acceptance-class", "2", Some(2), |t, k| t.integer(k, 1, 3));

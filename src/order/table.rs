@@ -68,6 +68,11 @@ impl Context {
         }
     }
 
+    /// Takes a problem back that turned out to follow from another one.
+    fn retract(&self, code: &str, path: &str) {
+        self.problems.borrow_mut().retain(|p| p.code != code || !matches!(&p.place, Place::Span { key, .. } if key == path));
+    }
+
     /// Notes that a key can be resolved.
     pub fn meet(&self, path: &str) {
         if self.is_listed(path) {
@@ -157,6 +162,8 @@ pub struct Table<'a> {
     span: Range<usize>,
     context: &'a Context,
     known: RefCell<Vec<&'static str>>,
+    /// Stands in for a value of another type, which was reported: its keys are not missing.
+    stands_in: bool,
 }
 
 impl<'a> Table<'a> {
@@ -167,7 +174,7 @@ impl<'a> Table<'a> {
 
     /// A table at a path.
     fn at(entries: &'a DeTable<'a>, path: String, span: Range<usize>, context: &'a Context) -> Table<'a> {
-        Table { entries, path, span, context, known: RefCell::default() }
+        Table { entries, path, span, context, known: RefCell::default(), stands_in: false }
     }
 
     /// Path of the table.
@@ -226,6 +233,9 @@ impl<'a> Table<'a> {
 
     /// Reports that a key is missing; `example` is the value as it would be written.
     pub fn missing(&self, key: &str, example: &str) {
+        if self.stands_in {
+            return;
+        }
         let table = if self.path.is_empty() { "the file".to_string() } else { format!("[{}]", self.path) };
         let place = Place::Span { key: self.path_of(key), span: self.span.clone() };
         self.context.report(Problem::error(
@@ -470,7 +480,13 @@ impl<'a> Table<'a> {
 
     /// One of the allowed words, if there: its index.
     pub fn word(&self, key: &'static str, allowed: &[&str]) -> Option<usize> {
-        let text = self.string(key)?;
+        let value = self.get(key)?;
+        let Some(text) = value.get_ref().as_str() else {
+            let help = format!("write {key} = \"{}\"", allowed.first().unwrap_or(&""));
+            let message = format!("{key} is {}; due is one of {}, in quotes", kind_of(value.get_ref()), allowed.join(", "));
+            self.error("wrong-type", key, message, help);
+            return None;
+        };
         self.word_of(key, text, allowed)
     }
 
@@ -517,13 +533,18 @@ impl<'a> Table<'a> {
 
     /// A table inside; an empty one stands in when it was left out or is something else (which is reported).
     pub fn table(&self, key: &'static str) -> Table<'a> {
+        self.table_like(key, "{ ... }")
+    }
+
+    /// The same with an example of what the table would look like.
+    pub fn table_like(&self, key: &'static str, example: &str) -> Table<'a> {
         let path = self.path_of(key);
         match self.get(key).map(|value| (value.span(), value.get_ref())) {
             Some((span, DeValue::Table(inner))) => Table::at(inner, path, span, self.context),
             Some((span, other)) => {
-                let help = format!("write [{path}] or {key} = {{ ... }}");
+                let help = format!("write {key} = {example}, or its keys under a heading of their own");
                 self.error("wrong-type", key, format!("{key} is {}; due is a table", kind_of(other)), help);
-                Table::at(&EMPTY, path, span, self.context)
+                Table { stands_in: true, ..Table::at(&EMPTY, path, span, self.context) }
             }
             None => Table::at(&EMPTY, path, self.span.clone(), self.context),
         }
@@ -564,7 +585,11 @@ impl<'a> Table<'a> {
             }
             let all = || known.iter().copied().collect::<Vec<_>>().join(", ");
             let help = match nearest(name, known.iter().copied()) {
-                Some(near) => format!("did you mean \"{near}\"? known here: {}", all()),
+                Some(near) => {
+                    // A misspelt key is one mistake, not an unknown and a missing one.
+                    self.context.retract("key-missing", &self.path_of(near));
+                    format!("did you mean \"{near}\"? known here: {}", all())
+                }
                 None => format!("known here: {}", all()),
             };
             let table = if self.path.is_empty() { "the file".to_string() } else { format!("[{}]", self.path) };
