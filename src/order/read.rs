@@ -64,6 +64,9 @@ pub(crate) fn finish<T>(value: Option<T>, context: Context, source: &Source) -> 
 /// Reads the tables of an order out of a file that may hold more; `resolved` is its `[resolved]` table.
 pub(crate) fn read_into(root: &Table<'_>, resolved: &Table<'_>, source: &Source, families: &[FamilyKeys]) -> Option<Order> {
     let complete = root.has("resolved");
+    if complete {
+        root.context().set_complete();
+    }
     if let Some(listed) = resolved.strings("defaults") {
         root.context().set_listed(listed.into_iter().map(str::to_string).collect());
     }

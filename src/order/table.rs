@@ -1,6 +1,6 @@
 //! Typed reading of TOML tables that goes on after a mistake, so that one run finds them all.
 
-use std::cell::RefCell;
+use std::cell::{Cell, RefCell};
 use std::ops::Range;
 use std::sync::LazyLock;
 
@@ -51,6 +51,8 @@ impl Size {
 #[derive(Debug, Default)]
 pub struct Context {
     problems: RefCell<Vec<Problem>>,
+    /// The file carries every value itself.
+    complete: Cell<bool>,
     /// Key paths that the file itself lists as resolved.
     listed: RefCell<Vec<String>>,
     /// Key paths resolved by this run or listed and met.
@@ -84,6 +86,16 @@ impl Context {
     pub fn listed_but_never_met(&self) -> Vec<String> {
         let met = self.met.borrow();
         self.listed.borrow().iter().filter(|p| !met.contains(p)).cloned().collect()
+    }
+
+    /// The file has a table `[resolved]`, so it carries every value itself.
+    pub fn set_complete(&self) {
+        self.complete.set(true);
+    }
+
+    /// Whether the file carries every value itself.
+    pub fn is_complete(&self) -> bool {
+        self.complete.get()
     }
 
     /// Takes the list `[resolved] defaults` of the file.

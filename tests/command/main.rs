@@ -3,6 +3,7 @@
 
 mod class_file;
 mod commands;
+mod dimension_file;
 mod files;
 mod mistakes;
 
@@ -23,7 +24,7 @@ pub fn read_file(path: &Path) -> (Vec<Problem>, String) {
             Ok((_, warnings)) => (warnings, Some(source)),
             Err(problems) => (problems, Some(source)),
         },
-        Err(problem) => (vec![problem], None),
+        Err(problems) => (problems, None),
     };
     let text = problems.iter().map(|p| render(p, source.as_ref(), false)).collect();
     (problems, text)

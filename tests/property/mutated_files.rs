@@ -8,7 +8,7 @@ use stripwright::family::FAMILY_KEYS;
 use stripwright::order::{self, Classes, Source};
 
 /// Rounds per file; with the fixed seed the same ones every time.
-const ROUNDS: usize = 4_000;
+const ROUNDS: usize = 1_000;
 /// Pieces that stand for typical slips and for what parsers stumble over.
 const PIECES: &[&str] = &[
     "\"",
