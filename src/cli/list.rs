@@ -7,7 +7,7 @@ use super::{Ending, Voice, results};
 use crate::base::Dimensionality;
 use crate::base::format_quantity;
 use crate::checks::RULES;
-use crate::family::FAMILY_KEYS;
+use crate::family;
 use crate::order::Classes;
 use crate::order::LaunchShape;
 use crate::order::Passes;
@@ -70,7 +70,7 @@ fn lines(kind: Kind) -> Vec<Line> {
     let mm = |value_m| format_quantity(value_m, Dimensionality::Length, "mm");
     let ghz = |value_hz| format_quantity(value_hz, Dimensionality::Frequency, "GHz");
     match kind {
-        Kind::Families => FAMILY_KEYS
+        Kind::Families => family::keys()
             .iter()
             .map(|family| {
                 let passes = match family.passes {

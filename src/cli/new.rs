@@ -9,10 +9,8 @@ use clap::Args;
 use super::{Ending, Voice, problems, results};
 use crate::base::Place;
 use crate::base::Problem;
+use crate::family::FAMILIES;
 use crate::order::nearest;
-
-/// The starter order of each family.
-pub const STARTERS: &[(&str, &str)] = &[("edge-coupled", include_str!("../../templates/orders/edge-coupled.toml"))];
 
 /// Writes a commented starter order: an invented scenario that meets its own requirements, to be changed into yours.
 #[derive(Args, Debug)]
@@ -29,15 +27,15 @@ pub fn run(arguments: &New, voice: Voice) -> Ending {
         problems::print(&[Problem::error(code, Place::Whole, message, help)], None, voice);
         Ending::NothingMade
     };
-    let Some((_, text)) = STARTERS.iter().find(|s| s.0 == arguments.family) else {
-        let known = || STARTERS.iter().map(|s| s.0);
+    let Some(family) = FAMILIES.iter().find(|f| f.name() == arguments.family) else {
+        let known = || FAMILIES.iter().map(|f| f.name());
         let help =
             nearest(&arguments.family, known()).map_or("choose one of these".to_string(), |near| format!("did you mean \"{near}\"?"));
         let known: Vec<_> = known().collect();
         return refuse("family-unknown", format!("there is no family \"{}\"; known: {}", arguments.family, known.join(", ")), help);
     };
     let Some(path) = &arguments.file else {
-        return results(text);
+        return results(family.starter());
     };
     // Creating only what is not there yet leaves no moment between asking and writing.
     let mut file = match OpenOptions::new().write(true).create_new(true).open(path) {
@@ -54,7 +52,7 @@ pub fn run(arguments: &New, voice: Voice) -> Ending {
             return refuse("file-unwritable", format!("{} cannot be written: {error}", path.display()), help);
         }
     };
-    if let Err(error) = file.write_all(text.as_bytes()) {
+    if let Err(error) = file.write_all(family.starter().as_bytes()) {
         // Half an order is worse than none; this file is ours, it was not there before.
         drop(file);
         let _ = std::fs::remove_file(path);

@@ -60,6 +60,12 @@ pub fn write(dimensions: &Dimensions) -> String {
     out
 }
 
+/// Whether a file is meant as a dimension set rather than an order: it has `[[dimension]]` tables.
+pub fn is_dimension_file(source: &Source) -> bool {
+    let context = Context::default();
+    Table::root(parse(source, &context).get_ref(), &context).has("dimension")
+}
+
 /// Reads a dimension set; `expected` names the dimensions that the order's family draws from at a degree.
 ///
 /// Values off the shop's grid are snapped, with the warning `dimension-off-grid`.

@@ -1,6 +1,6 @@
 //! The user's own classes, in a file of theirs.
 
-use stripwright::family::FAMILY_KEYS;
+use stripwright::family;
 use stripwright::order::{self, Source};
 
 use crate::{changed, read_file};
@@ -43,13 +43,13 @@ fn folder(classes: &str) -> tempfile::TempDir {
 fn classes_of_the_users_own_file_are_found_first() {
     let folder = folder(CLASSES);
     let source = Source::open(&folder.path().join("order.toml")).unwrap();
-    let (order, _) = order::read(&source, FAMILY_KEYS).unwrap();
+    let (order, _) = order::read(&source, &family::keys()).unwrap();
     assert_eq!(order.laminate.permittivity, 1.12);
     assert_eq!(order.board.launch.about, "found before the embedded one");
     // The complete order stands without the class file, and is written to the same bytes.
     let text = order::write(&order);
     let alone = Source::from_text("elsewhere/order.toml", text.clone());
-    let (again, warnings) = order::read(&alone, FAMILY_KEYS).unwrap();
+    let (again, warnings) = order::read(&alone, &family::keys()).unwrap();
     assert_eq!(again, order);
     assert!(warnings.is_empty(), "{warnings:?}");
     assert_eq!(order::write(&again), text);

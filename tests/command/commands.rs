@@ -54,8 +54,8 @@ fn list_names_everything_one_line_each_and_as_json() {
 
 #[test]
 fn every_family_has_a_starter_order() {
-    for family in stripwright::family::FAMILY_KEYS {
-        assert_eq!(run(&["new", family.name]).0, 0, "{}", family.name);
+    for family in stripwright::family::FAMILIES {
+        assert_eq!(run(&["new", family.name()]).0, 0, "{}", family.name());
     }
 }
 

@@ -3,14 +3,14 @@
 use stripwright::base::Problem;
 use stripwright::cli::problems::render;
 use stripwright::dimensions::{self, Dimension, Dimensions};
-use stripwright::family::FAMILY_KEYS;
+use stripwright::family;
 use stripwright::order::{self, Source};
 
 const NAMES: [&str; 3] = ["section 1 width", "section 1 gap", "section 1 length"];
 
 /// The file of a set with three dimensions.
 fn file() -> String {
-    let (order, _) = order::read(&Source::from_text("order.toml", crate::STARTER), FAMILY_KEYS).unwrap();
+    let (order, _) = order::read(&Source::from_text("order.toml", crate::STARTER), &family::keys()).unwrap();
     let list = NAMES
         .iter()
         .zip([1.25e-3, 0.2e-3, 13.5e-3])
@@ -28,7 +28,7 @@ fn file() -> String {
 /// Reads a file: the values in millimetres if it was accepted, the problems, and what would be printed.
 fn read(text: &str) -> (Option<Vec<f64>>, Vec<Problem>, String) {
     let source = Source::from_text("dimensions.toml", text);
-    let read = dimensions::read(&source, FAMILY_KEYS, &|_, degree| {
+    let read = dimensions::read(&source, &family::keys(), &|_, degree| {
         assert_eq!(degree, 5);
         NAMES.map(str::to_string).to_vec()
     });
@@ -114,6 +114,6 @@ fn what_cannot_be_drawn_is_refused_with_its_line() {
 #[test]
 fn a_dimension_set_is_no_order() {
     let source = Source::from_text("dimensions.toml", file());
-    let problems = order::read(&source, FAMILY_KEYS).unwrap_err();
+    let problems = order::read(&source, &family::keys()).unwrap_err();
     assert!(problems.iter().any(|p| p.code == "not-an-order"), "{problems:#?}");
 }

@@ -5,13 +5,14 @@ mod class_file;
 mod commands;
 mod dimension_file;
 mod files;
+mod line;
 mod mistakes;
 
 use std::path::Path;
 
 use stripwright::base::Problem;
 use stripwright::cli::problems::render;
-use stripwright::family::FAMILY_KEYS;
+use stripwright::family;
 use stripwright::order::{self, Source};
 
 /// The starter order, the base that every test changes in one place.
@@ -20,7 +21,7 @@ pub const STARTER: &str = include_str!("../../templates/orders/edge-coupled.toml
 /// Reads an order file the way every command does: its problems and what would be printed.
 pub fn read_file(path: &Path) -> (Vec<Problem>, String) {
     let (problems, source) = match Source::open(path) {
-        Ok(source) => match order::read(&source, FAMILY_KEYS) {
+        Ok(source) => match order::read(&source, &family::keys()) {
             Ok((_, warnings)) => (warnings, Some(source)),
             Err(problems) => (problems, Some(source)),
         },

@@ -349,3 +349,19 @@ fn what_is_doubtful_but_possible_is_a_warning() {
         assert!(printed.contains(part), "{to:?}: {printed}");
     }
 }
+
+#[test]
+fn the_program_ends_with_2_and_says_the_same_on_stderr() {
+    let folder = tempfile::tempdir().unwrap();
+    for (from, to, _, code, parts) in CASES {
+        std::fs::write(folder.path().join("order.toml"), changed(from, to)).unwrap();
+        let mut command = assert_cmd::Command::cargo_bin("stripwright").unwrap();
+        let output = command.current_dir(folder.path()).args(["dimension", "order.toml"]).output().unwrap();
+        let stderr = String::from_utf8(output.stderr).unwrap();
+        assert_eq!((output.status.code(), output.stdout.len()), (Some(2), 0), "{to:?}: {stderr}");
+        assert!(stderr.contains(&format!("error: {code}")) && stderr.contains("[order.toml:"), "{to:?}: {stderr}");
+        for part in *parts {
+            assert!(stderr.contains(part), "{part:?}: {stderr}");
+        }
+    }
+}

@@ -4,7 +4,7 @@ use std::time::{Duration, Instant};
 
 use stripwright::cli::problems::render;
 use stripwright::dimensions::{self, Dimension, Dimensions};
-use stripwright::family::FAMILY_KEYS;
+use stripwright::family;
 use stripwright::order::{self, Classes, Source};
 
 /// Rounds per file; with the fixed seed the same ones every time.
@@ -114,7 +114,7 @@ fn names() -> Vec<String> {
 }
 
 fn dimension_file() -> String {
-    let (order, _) = order::read(&Source::from_text("order.toml", starter()), FAMILY_KEYS).unwrap();
+    let (order, _) = order::read(&Source::from_text("order.toml", starter()), &family::keys()).unwrap();
     let list = names()
         .into_iter()
         .map(|name| Dimension {
@@ -131,10 +131,10 @@ fn dimension_file() -> String {
 /// Reads a text in every way and prints what was found; returns how many problems there were.
 fn read_all(text: &str) -> usize {
     let source = Source::from_text("spoilt.toml", text);
-    let mut problems = match order::read(&source, FAMILY_KEYS) {
+    let mut problems = match order::read(&source, &family::keys()) {
         Ok((order, warnings)) => {
             // What passes must survive a round.
-            let again = order::read(&Source::from_text("again.toml", order::write(&order)), FAMILY_KEYS);
+            let again = order::read(&Source::from_text("again.toml", order::write(&order)), &family::keys());
             assert_eq!(again.map(|a| a.0), Ok(order), "{text}");
             warnings
         }
@@ -143,7 +143,7 @@ fn read_all(text: &str) -> usize {
             problems
         }
     };
-    problems.extend(dimensions::read(&source, FAMILY_KEYS, &|_, _| names()).map_or_else(|p| p, |d| d.1));
+    problems.extend(dimensions::read(&source, &family::keys(), &|_, _| names()).map_or_else(|p| p, |d| d.1));
     problems.extend(Classes::read(&source).1);
     for problem in problems.iter().take(5) {
         assert!(!render(problem, Some(&source), false).is_empty());

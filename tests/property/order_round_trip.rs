@@ -179,23 +179,23 @@ proptest! {
 #[test]
 fn defaults_are_remembered_over_any_number_of_rounds() {
     let starter = include_str!("../../templates/orders/edge-coupled.toml");
-    let (first, _) = order::read(&Source::from_text("order.toml", starter), stripwright::family::FAMILY_KEYS).unwrap();
+    let (first, _) = order::read(&Source::from_text("order.toml", starter), &stripwright::family::keys()).unwrap();
     for key in ["filter.degree", "laminate.permittivity", "laminate.copper.base", "shop.grid", "launch.pad-width", "board.text"] {
         assert!(first.defaults.iter().any(|d| d == key), "{key}");
     }
     assert!(!first.defaults.iter().any(|d| d == "laminate.thickness" || d == "filter.passband"));
     let text = order::write(&first);
-    let (second, warnings) = order::read(&Source::from_text("order.toml", text.clone()), stripwright::family::FAMILY_KEYS).unwrap();
+    let (second, warnings) = order::read(&Source::from_text("order.toml", text.clone()), &stripwright::family::keys()).unwrap();
     assert_eq!(warnings, []);
     assert_eq!(second, first);
     assert_eq!(order::write(&second), text);
     // A degree that was only chosen is no order for it.
     let chosen = text.replace("[filter]\n", "[filter]\ndegree = 7\n");
-    let (third, _) = order::read(&Source::from_text("order.toml", chosen), stripwright::family::FAMILY_KEYS).unwrap();
+    let (third, _) = order::read(&Source::from_text("order.toml", chosen), &stripwright::family::keys()).unwrap();
     assert_eq!(third.filter.degree, None);
     // A changed class beside values that stay is said, and the value in the file counts.
     let other = text.replace("class = \"ceramic-ptfe-3.0\"", "class = \"ptfe-glass-2.2\"");
-    let (fourth, warnings) = order::read(&Source::from_text("order.toml", other), stripwright::family::FAMILY_KEYS).unwrap();
+    let (fourth, warnings) = order::read(&Source::from_text("order.toml", other), &stripwright::family::keys()).unwrap();
     assert!(warnings.iter().any(|w| w.code == "resolved-differs" && w.message.contains("permittivity")), "{warnings:#?}");
     assert_eq!(fourth.laminate.permittivity, 3.0);
     assert!(!fourth.defaults.iter().any(|d| d == "laminate.permittivity"));
