@@ -3,8 +3,9 @@
 use std::path::Path;
 use std::sync::LazyLock;
 
+use super::context::{Context, parse};
 use super::source::Source;
-use super::table::{Context, Size, Table, parse};
+use super::table::{Size, Table};
 use super::types::{Laminate, Launch, Shop};
 use super::{laminate, launch, shop};
 use crate::base::Dimensionality;

@@ -3,9 +3,10 @@
 use std::collections::BTreeMap;
 
 use super::classes::Classes;
+use super::context::{Context, parse};
 use super::requirement::{self, FREQUENCY};
 use super::source::Source;
-use super::table::{Context, Size, Table, nearest, parse};
+use super::table::{Size, Table, nearest};
 use super::types::{Band, FamilyKeys, Filter, Key, Laminate, Launch, Order, OwnKind, OwnValue, Passes, ResponseShape, Shop};
 use super::{board, laminate, launch, shop};
 use crate::base::Dimensionality;
