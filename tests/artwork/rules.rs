@@ -14,6 +14,10 @@ use crate::sample;
 use crate::sample::board;
 
 fn found(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
+    found_in(order, &sample::launched(order, layout), board)
+}
+
+pub fn found_in(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
     let dimensions = Dimensions { order: order.clone(), degree: 3, list: vec![] };
     let response = Response { method: Method::Network, z0_ohm: [50.0; 2], f_hz: vec![], s: vec![] };
     let figures = Figures {
@@ -27,7 +31,6 @@ fn found(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
         spurious_hz: None,
         verdicts: vec![],
     };
-    let layout = &sample::launched(order, layout);
     run(&Subject { dimensions: &dimensions, layout, board, response: &response, figures: &figures })
 }
 
