@@ -7,16 +7,16 @@ mod sample;
 
 use std::path::Path;
 
-use stripwright::package::{Placing, put};
+use stripwright::package::{How, put};
 
 fn main() {
     let parent = std::env::args().nth(1).expect("a folder");
     let mut order = sample::order();
     order.date = Some("2026-05-04".into());
-    let placing = Placing { parent: Path::new(&parent), replace: true, withhold: false, source: None };
-    println!("{}", put(&sample::Sample::by_hand(order.clone()).bundle(), &placing).unwrap().display());
+    let (parent, how) = (Path::new(&parent), How { replace: true, ..How::default() });
+    println!("{}", put(&sample::Sample::by_hand(order.clone()).bundle(), parent, how).unwrap().display());
     order.name = "drawn".into();
     order.board.mask = stripwright::order::Mask::ClearOfFilter;
     order.board.mounting_holes = vec![stripwright::order::MountingHole { at_m: [3.0e-3, 3.0e-3], diameter_m: 2.2e-3 }];
-    println!("{}", put(&sample::Sample::drawn(order).bundle(), &placing).unwrap().display());
+    println!("{}", put(&sample::Sample::drawn(order).bundle(), parent, how).unwrap().display());
 }

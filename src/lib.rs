@@ -9,7 +9,7 @@
 //! | [`base`] | problems, quantities with units, whole nanometres, root finding, small dense elimination |
 //! | [`order`] | what is wanted; laminate, shop and launch classes |
 //! | [`prototype`] | g-values and degree |
-//! | [`line`] | one strip, coupled strips, discontinuities as built |
+//! | [`mod@line`] | one strip, coupled strips, discontinuities as built |
 //! | [`dimensions`] | the dimension set and its file |
 //! | [`layout`] | parts, nodes, placing and joining |
 //! | [`family`] | requirement -> prototype -> dimensions -> layout, one file each |

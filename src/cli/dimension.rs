@@ -5,6 +5,7 @@ use std::path::PathBuf;
 use super::Ending;
 use super::Voice;
 use super::read::Ordered;
+use super::results;
 use super::table;
 use crate::base::Place;
 use crate::base::Problem;
@@ -31,20 +32,26 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         Err(problems) => return ordered.refuse(&problems, voice),
     };
     let text = dimensions::write(&chosen.refined.dimensions);
-    match &arguments.file {
+    let written = match &arguments.file {
         Some(path) => {
-            let written = std::fs::OpenOptions::new().write(true).create_new(true).open(path).and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
+            let written = std::fs::OpenOptions::new()
+                .write(true)
+                .create_new(true)
+                .open(path)
+                .and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
             if let Err(error) = written {
                 let help = "choose another file name or folder; nothing is overwritten";
-                return ordered.refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+                return ordered
+                    .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
             }
             voice.say(&format!("wrote {}", path.display()));
+            Ending::Done
         }
         None if voice.json => table::print_json(&json(&chosen)),
-        None => print!("{text}"),
-    }
+        None => results(&text),
+    };
     say_reached(&chosen, voice);
-    Ending::Done
+    written
 }
 
 /// One line each on the degree, on what refinement reached and on what the grid left.

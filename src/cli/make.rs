@@ -8,11 +8,13 @@ use super::dimension::say_reached;
 use super::problems;
 use super::read::Drawing;
 use super::read::Ordered;
+use super::results;
 use super::table;
 use crate::Made;
 use crate::order::Source;
 use crate::package;
 use crate::package::Bundle;
+use crate::package::How;
 
 /// Makes the whole package of an order: synthesis, refinement, artwork, checks, prediction, files for the board house
 #[derive(clap::Args, Debug)]
@@ -56,9 +58,9 @@ pub fn run_make(arguments: &MakeArguments, voice: Voice) -> Ending {
         Ok(chosen) => chosen,
         Err(found) => return ordered.refuse(&found, voice),
     };
-    progress.step("drawing and predicting");
+    progress.set_message("drawing and predicting");
     let drawn = crate::draw(&chosen.refined.dimensions);
-    progress.done();
+    progress.finish_and_clear();
     match drawn {
         Ok(made) => {
             say_reached(&chosen, voice);
@@ -91,22 +93,24 @@ fn finish(made: &Made, target: &Target, source: &Source, voice: Voice) -> Ending
         figures: &made.figures,
         findings: &made.findings,
     };
-    let how = package::How { replace: target.replace, withhold: rules_broken && !target.despite_rules };
+    let withhold = rules_broken && !target.despite_rules;
+    let how = How { replace: target.replace, withhold, source: Some(&source.path) };
     let folder = match package::put(&bundle, &target.out, how) {
         Ok(folder) => folder,
         Err(problem) => return super::read::refuse(&[problem], None, voice),
     };
     let order = &made.dimensions.order;
-    if voice.json {
+    let written = if voice.json {
         let mut value = table::figures_json(order, &made.figures, None);
         value["package"] = folder.display().to_string().into();
         value["degree"] = made.dimensions.degree.into();
-        value["board_house_files_withheld"] = how.withhold.into();
-        value["findings"] = made.findings.iter().map(|p| problems::json(p, Some(source))).collect();
-        table::print_json(&value);
+        value["board_house_files_withheld"] = withhold.into();
+        value["findings"] = made.findings.iter().map(|p| problems::to_json(p, Some(source))).collect();
+        table::print_json(&value)
     } else {
-        table::print_figures(order, &made.figures);
-        println!("\n  package: {}{}", folder.display(), if how.withhold { "  (files for the board house withheld: a design rule is broken)" } else { "" });
-    }
-    if made.figures.all_met() && !rules_broken { Ending::Done } else { Ending::Unmet }
+        let note = if withhold { "  (files for the board house withheld: a design rule is broken)" } else { "" };
+        results(&format!("{}\n  package: {}{note}\n", table::figures_text(order, &made.figures), folder.display()))
+    };
+    let met = made.figures.all_met() && !rules_broken;
+    if written == Ending::Done && !met { Ending::Unmet } else { written }
 }

@@ -6,6 +6,7 @@ use std::path::PathBuf;
 use super::Ending;
 use super::Voice;
 use super::read::Drawing;
+use super::results;
 use super::table;
 use crate::base::Dimensionality;
 use crate::base::Place;
@@ -60,18 +61,18 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         });
         if let Err(error) = written {
             let help = "choose another file name or folder; nothing is overwritten";
-            return drawing.refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+            return drawing
+                .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
         }
     }
-    if voice.json {
-        table::print_json(&table::figures_json(order, &figures, Some(&shown)));
+    let written = if voice.json {
+        table::print_json(&table::figures_json(order, &figures, Some(&shown)))
+    } else if arguments.from.is_some() {
+        results(&(table::figures_text(order, &figures) + &table::response_text(&shown)))
     } else {
-        table::print_figures(order, &figures);
-        if arguments.from.is_some() || arguments.to.is_some() {
-            table::print_response(&shown);
-        }
-    }
-    if figures.all_met() { Ending::Done } else { Ending::Unmet }
+        results(&table::figures_text(order, &figures))
+    };
+    if written == Ending::Done && !figures.all_met() { Ending::Unmet } else { written }
 }
 
 /// The frequencies asked for; `None` when neither end is given.
@@ -79,7 +80,8 @@ fn frequencies(arguments: &Arguments) -> Result<Option<Vec<f64>>, Vec<Problem>> 
     const MOST: usize = 1_000_000;
     let problem = |message: String, help: &str| vec![Problem::error("frequencies-not-a-sweep", Place::Whole, message, help)];
     let end = |text: &Option<String>, name: &str| match text {
-        Some(text) => parse_quantity(text, Dimensionality::Frequency).map_err(|message| problem(format!("--{name}: {message}"), "write it as --from \"1.2 GHz\"")),
+        Some(text) => parse_quantity(text, Dimensionality::Frequency)
+            .map_err(|message| problem(format!("--{name}: {message}"), "write it as --from \"1.2 GHz\"")),
         None => Err(problem(format!("--{name} is missing"), "give both --from and --to")),
     };
     if arguments.from.is_none() && arguments.to.is_none() {

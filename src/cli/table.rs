@@ -1,17 +1,21 @@
 //! Figures and verdicts as a table for people and as JSON for programs.
 
+use std::fmt::Write as _;
+
 use serde_json::Value;
 use serde_json::json;
 
+use super::Ending;
+use super::results;
 use crate::network::Figures;
 use crate::network::Response;
 use crate::network::Verdict;
 use crate::order::Limit;
 use crate::order::Order;
 
-/// Prints a JSON value on stdout, indented.
-pub fn print_json(value: &Value) {
-    println!("{value:#}");
+/// Writes a JSON value to stdout, indented.
+pub fn print_json(value: &Value) -> Ending {
+    results(&format!("{value:#}\n"))
 }
 
 fn ghz(f_hz: f64) -> String {
@@ -19,20 +23,24 @@ fn ghz(f_hz: f64) -> String {
 }
 
 fn band(edges: Option<[f64; 2]>) -> String {
-    edges.map_or_else(|| "not within the sweep".into(), |[low, high]| format!("{} to {}  ({:.1} MHz)", ghz(low), ghz(high), (high - low) / 1e6))
+    edges.map_or_else(
+        || "not within the sweep".into(),
+        |[low, high]| format!("{} to {}  ({:.1} MHz)", ghz(low), ghz(high), (high - low) / 1e6),
+    )
 }
 
-/// Prints the figures and a verdict for each requirement.
-pub fn print_figures(order: &Order, figures: &Figures) {
-    println!("{}, revision {}: {}", order.name, order.revision, order.title);
-    println!("predicted by the network model, launches included, planes at the board's edge\n");
+/// The figures and a verdict for each requirement, as text.
+pub fn figures_text(order: &Order, figures: &Figures) -> String {
+    let mut text = String::new();
+    let _ = writeln!(text, "{}, revision {}: {}", order.name, order.revision, order.title);
+    let _ = writeln!(text, "predicted by the network model, launches included, planes at the board's edge\n");
     for verdict in &figures.verdicts {
         let word = if verdict.is_met() { "met   " } else { "MISSED" };
         let [low, high] = verdict.band_hz;
-        println!("  {word}  {:.4} to {:.4} GHz  {}  (margin {})", low / 1e9, high / 1e9, verdict.describe(), margin(verdict));
+        let _ = writeln!(text, "  {word}  {:.4} to {:.4} GHz  {}  (margin {})", low / 1e9, high / 1e9, verdict.describe(), margin(verdict));
     }
     if !figures.verdicts.is_empty() {
-        println!();
+        text.push('\n');
     }
     let rows = [
         ("centre", ghz(figures.center_hz)),
@@ -45,8 +53,9 @@ pub fn print_figures(order: &Order, figures: &Figures) {
         ("nearest spurious passband", figures.spurious_hz.map_or_else(|| "none within the sweep".into(), ghz)),
     ];
     for (name, value) in rows {
-        println!("  {name:<30}{value}");
+        let _ = writeln!(text, "  {name:<30}{value}");
     }
+    text
 }
 
 fn margin(verdict: &Verdict) -> String {
@@ -56,13 +65,15 @@ fn margin(verdict: &Verdict) -> String {
     }
 }
 
-/// Prints a response, one line a frequency.
-pub fn print_response(response: &Response) {
-    println!("\n  {:>12}  {:>9}  {:>9}  {:>9}", "GHz", "|S21| dB", "|S11| dB", "|S22| dB");
+/// A response as text, one line a frequency.
+pub fn response_text(response: &Response) -> String {
+    let mut text = String::new();
+    let _ = writeln!(text, "\n  {:>12}  {:>9}  {:>9}  {:>9}", "GHz", "|S21| dB", "|S11| dB", "|S22| dB");
     for (i, f) in response.f_hz.iter().enumerate() {
         let level = |s: usize| -crate::network::level_db(response.s[i][s]);
-        println!("  {:>12.6}  {:>9.3}  {:>9.3}  {:>9.3}", f / 1e9, level(1), level(0), level(3));
+        let _ = writeln!(text, "  {:>12.6}  {:>9.3}  {:>9.3}  {:>9.3}", f / 1e9, level(1), level(0), level(3));
     }
+    text
 }
 
 /// The figures as JSON, with the response when given.
@@ -91,7 +102,8 @@ pub fn figures_json(order: &Order, figures: &Figures, response: Option<&Response
     });
     if let Some(response) = response {
         let pairs = |s: usize| response.s.iter().map(|m| [m[s].re, m[s].im]).collect::<Vec<_>>();
-        value["response"] = json!({ "z0_ohm": response.z0_ohm, "f_hz": response.f_hz, "s11": pairs(0), "s21": pairs(1), "s12": pairs(2), "s22": pairs(3) });
+        value["response"] =
+            json!({ "z0_ohm": response.z0_ohm, "f_hz": response.f_hz, "s11": pairs(0), "s21": pairs(1), "s12": pairs(2), "s22": pairs(3) });
     }
     value
 }

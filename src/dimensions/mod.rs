@@ -1,5 +1,9 @@
 //! The synthesized dimension set: named physical numbers, each with its first guess, its target and its corrections.
 
+mod file;
+
+pub use file::{is_dimension_file, read, write};
+
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Problem;

@@ -146,6 +146,10 @@ impl Family for EdgeCoupled {
         Passes::Band
     }
 
+    fn starter(&self) -> &'static str {
+        include_str!("../../templates/orders/edge-coupled.toml")
+    }
+
     fn degrees(&self) -> (usize, usize) {
         (1, 12)
     }

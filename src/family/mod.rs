@@ -39,6 +39,9 @@ pub trait Family: Structure {
     /// Its kind of band.
     fn passes(&self) -> Passes;
 
+    /// Its commented starter order, an invented scenario.
+    fn starter(&self) -> &'static str;
+
     /// Least and greatest degree it draws.
     fn degrees(&self) -> (usize, usize);
 

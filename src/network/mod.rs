@@ -9,7 +9,7 @@ pub mod touchstone;
 
 pub use circuit::{Circuit, Planes};
 pub use figures::{Figures, Verdict, passband_hz, sweep_hz};
-pub use response::{Method, Response};
+pub use response::{Method, Response, level_db};
 
 use crate::base::Problem;
 use crate::layout::Layout;

@@ -19,4 +19,4 @@ pub use source::{LARGEST_FILE, Source};
 pub use table::{Context, MOST_PROBLEMS, Size, Table, kind_of, nearest, parse};
 pub use types::*;
 pub use write::write;
-pub(crate) use write::{plain_number, quoted};
+pub(crate) use write::{plain_number, quoted, write_with_degree};

@@ -5,6 +5,8 @@ mod drill;
 mod dxf;
 mod gerber;
 mod job;
+mod note;
+mod preview;
 mod put;
 
 use std::io;
@@ -14,7 +16,7 @@ pub use contents::CONTENTS;
 pub use contents::Contents;
 pub use contents::Listed;
 pub use job::Job;
-pub use put::Placing;
+pub use put::How;
 pub use put::may_go;
 pub use put::put;
 pub use put::write_all;
@@ -145,10 +147,24 @@ pub static WRITERS: &[Writer] = &[
     },
     Writer {
         file: FileName::Ending(".dxf"),
-        about: "copper, edge and holes for mechanics and field solvers; for reference, the Gerber files govern",
+        about: "copper, edge and holes for mechanics; for reference only",
         for_board_house: true,
         applies: |_| true,
         write: dxf::write,
+    },
+    Writer {
+        file: FileName::Ending("-fabrication.txt"),
+        about: "fabrication note: stack, material, controlled features, drill table, what is not allowed, cautions",
+        for_board_house: true,
+        applies: |_| true,
+        write: note::write,
+    },
+    Writer {
+        file: FileName::Fixed("preview.svg"),
+        about: "the artwork at true scale and the predicted response",
+        for_board_house: false,
+        applies: |_| true,
+        write: preview::write,
     },
 ];
 

@@ -78,11 +78,9 @@ pub(super) fn hex(bytes: &[u8]) -> String {
     bytes.iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
-/// Where a package goes and what may happen to what is there.
-#[derive(Clone, Copy, Debug)]
-pub struct Placing<'a> {
-    /// The folder that holds packages; the package is a folder in it, called like the order.
-    pub parent: &'a Path,
+/// What may happen to what is there, and what is left out.
+#[derive(Clone, Copy, Debug, Default)]
+pub struct How<'a> {
     /// Whether a package that is there is replaced.
     pub replace: bool,
     /// Whether the files for the board house are left out: a design rule is broken.
@@ -91,19 +89,19 @@ pub struct Placing<'a> {
     pub source: Option<&'a Path>,
 }
 
-/// Makes the whole package and puts it in place; gives its folder.
+/// Makes the whole package and puts it in place, as a folder in `parent` called like the order; gives that folder.
 ///
 /// At any moment, a kill included, the folder is the old package or the new one, whole (where the system cannot exchange two names at once,
 /// there is a moment with neither; the next run puts the old one back).
 ///
 /// # Errors
 /// `package-exists`, `package-holds-foreign-files`, `package-busy`, `package-not-written`; whatever was there is then untouched.
-pub fn put(bundle: &Bundle, placing: &Placing) -> Result<PathBuf, Problem> {
+pub fn put(bundle: &Bundle, parent: &Path, how: How) -> Result<PathBuf, Problem> {
     let name = bundle.dimensions.order.name.as_str();
-    let target = placing.parent.join(name);
+    let target = parent.join(name);
     let failed = |what: &str, path: &Path, error: &io::Error| not_written(what, path, error);
-    fs::create_dir_all(placing.parent).map_err(|error| failed("cannot make the folder", placing.parent, &error))?;
-    let lock_path = placing.parent.join(format!(".{name}.lock"));
+    fs::create_dir_all(parent).map_err(|error| failed("cannot make the folder", parent, &error))?;
+    let lock_path = parent.join(format!(".{name}.lock"));
     let _lock = match Lock::take(&lock_path) {
         Ok(Some(lock)) => lock,
         Ok(None) => {
@@ -114,14 +112,14 @@ pub fn put(bundle: &Bundle, placing: &Placing) -> Result<PathBuf, Problem> {
                 "wait for it to end, or choose another folder with --out",
             ));
         }
-        Err(error) => return Err(failed("cannot write in", placing.parent, &error)),
+        Err(error) => return Err(failed("cannot write in", parent, &error)),
     };
-    let (fresh, aside) = (placing.parent.join(format!(".{name}.new")), placing.parent.join(format!(".{name}.old")));
-    tidy(&target, &fresh, &aside).map_err(|error| failed("cannot tidy up after a run that was killed, in", placing.parent, &error))?;
-    may_go(name, placing)?;
+    let (fresh, aside) = (parent.join(format!(".{name}.new")), parent.join(format!(".{name}.old")));
+    tidy(&target, &fresh, &aside).map_err(|error| failed("cannot tidy up after a run that was killed, in", parent, &error))?;
+    may_go(name, parent, how)?;
 
     let made = fs::create_dir(&fresh).and_then(|()| {
-        write_all(&mut Job::new(bundle), &fresh, placing.withhold)?;
+        write_all(&mut Job::new(bundle), &fresh, how.withhold)?;
         sync_folder(&fresh)
     });
     if let Err(error) = made {
@@ -130,12 +128,12 @@ pub fn put(bundle: &Bundle, placing: &Placing) -> Result<PathBuf, Problem> {
         return Err(failed("cannot write the package", &target, &error));
     }
     // Again, since writing took a while.
-    let moved = may_go(name, placing).and_then(|()| {
+    let moved = may_go(name, parent, how).and_then(|()| {
         let moved = if target.exists() { swap(&fresh, &target, &aside) } else { fs::rename(&fresh, &target) };
         moved.map_err(|error| failed("cannot put the package in place at", &target, &error))
     });
     if moved.is_ok() {
-        let _ = sync_folder(placing.parent);
+        let _ = sync_folder(parent);
         let _ = fs::remove_dir_all(&aside);
     }
     // Holds the replaced package after an exchange, the new one after a failure.
@@ -147,18 +145,18 @@ pub fn put(bundle: &Bundle, placing: &Placing) -> Result<PathBuf, Problem> {
 ///
 /// # Errors
 /// `package-exists`, `package-holds-foreign-files`.
-pub fn may_go(name: &str, placing: &Placing) -> Result<(), Problem> {
-    let target = placing.parent.join(name);
+pub fn may_go(name: &str, parent: &Path, how: How) -> Result<(), Problem> {
+    let target = parent.join(name);
     let Ok(found) = fs::symlink_metadata(&target) else { return Ok(()) };
     if !found.is_dir() {
         let message = format!("{} is there and is no folder", target.display());
         return Err(Problem::error("package-exists", Place::Whole, message, "move it away, or choose another folder with --out"));
     }
-    if !placing.replace {
+    if !how.replace {
         let message = format!("{} is there already", target.display());
         return Err(Problem::error("package-exists", Place::Whole, message, "--replace puts the new package in its place"));
     }
-    let foreign = foreign_files(&target, placing.source).map_err(|error| not_written("cannot read", &target, &error))?;
+    let foreign = foreign_files(&target, how.source).map_err(|error| not_written("cannot read", &target, &error))?;
     if foreign.is_empty() {
         return Ok(());
     }
@@ -168,7 +166,7 @@ pub fn may_go(name: &str, placing: &Placing) -> Result<(), Problem> {
         "package-holds-foreign-files",
         Place::Whole,
         format!("{} holds what its {CONTENTS} does not list or what was changed since: {shown}{more}", target.display()),
-        "move these files out of the folder; replacing the package would lose them",
+        "move these files out of the folder; rehow the package would lose them",
     ))
 }
 

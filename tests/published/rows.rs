@@ -25,8 +25,9 @@ impl Table {
         self.rows += 1;
         let miss = (ours - printed).abs();
         self.worst = self.worst.max(miss / tolerance);
-        // Written so that not-a-number is a miss.
-        if !(miss <= tolerance) {
+        // Not-a-number is no hit.
+        let hit = miss <= tolerance;
+        if !hit {
             self.misses
                 .push(format!("{row}: {ours} against {printed} ({:+.3} % off, {tolerance:.2e} allowed)", 100.0 * (ours / printed - 1.0)));
         }

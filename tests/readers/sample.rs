@@ -88,7 +88,15 @@ fn response() -> Response {
 }
 
 fn figures() -> Figures {
-    let limit = Limit::RejectionAtLeast { db: 20.0, below_center: false };
+    let verdict = |limit, from_hz: f64, to_hz: f64, found, at_hz, margin| Verdict {
+        requirement: 0,
+        limit,
+        band_hz: [from_hz, to_hz],
+        found,
+        at_hz,
+        margin,
+    };
+    let rejection = |db, below_center| Limit::RejectionAtLeast { db, below_center };
     Figures {
         center_hz: 3.0e9,
         center_loss_db: 1.01,
@@ -98,7 +106,13 @@ fn figures() -> Figures {
         return_loss_db: 16.4,
         group_delay_s: 3.1e-9,
         spurious_hz: Some(5.9e9),
-        verdicts: vec![Verdict { requirement: 0, limit, band_hz: [3.4e9, 4.0e9], found: 31.2, at_hz: 3.4e9, margin: 11.2 }],
+        verdicts: vec![
+            verdict(rejection(20.0, false), 3.4e9, 4.0e9, 31.2, 3.4e9, 11.2),
+            verdict(Limit::InsertionLossAtMost(2.5), 2.9e9, 3.1e9, 1.15, 2.9e9, 1.35),
+            verdict(Limit::ReturnLossAtLeast(14.0), 2.9e9, 3.1e9, 16.4, 3.0e9, 2.4),
+            verdict(rejection(45.0, true), 2.4e9, 2.7e9, 24.6, 2.7e9, -20.4),
+            verdict(Limit::GroupDelayVariationAtMost(2e-9), 2.95e9, 3.05e9, 0.4e-9, 2.95e9, 1.6e-9),
+        ],
     }
 }
 
