@@ -183,7 +183,7 @@ fn every_rule_is_found_on_a_board_made_to_break_it() {
             }
         })
     };
-    fires(&pad(1.5e-3), "launch-misfit", Warning);
+    fires(&pad(1.0e-3), "launch-misfit", Warning);
     fires(&pad(0.8e-3), "launch-misfit", Error);
     fires(
         &launch(&|shape| {
