@@ -34,10 +34,15 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
     let text = dimensions::write(&chosen.refined.dimensions);
     let written = match &arguments.file {
         Some(path) => {
-            let written = std::fs::OpenOptions::new().write(true).create_new(true).open(path).and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
+            let written = std::fs::OpenOptions::new()
+                .write(true)
+                .create_new(true)
+                .open(path)
+                .and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
             if let Err(error) = written {
                 let help = "choose another file name or folder; nothing is overwritten";
-                return ordered.refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+                return ordered
+                    .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
             }
             voice.say(&format!("wrote {}", path.display()));
             Ending::Done

@@ -14,7 +14,7 @@ use crate::Made;
 use crate::order::Source;
 use crate::package;
 use crate::package::Bundle;
-use crate::package::Placing;
+use crate::package::How;
 
 /// Makes the whole package of an order: synthesis, refinement, artwork, checks, prediction, files for the board house
 #[derive(clap::Args, Debug)]
@@ -94,8 +94,8 @@ fn finish(made: &Made, target: &Target, source: &Source, voice: Voice) -> Ending
         findings: &made.findings,
     };
     let withhold = rules_broken && !target.despite_rules;
-    let placing = Placing { parent: &target.out, replace: target.replace, withhold, source: Some(&source.path) };
-    let folder = match package::put(&bundle, &placing) {
+    let how = How { replace: target.replace, withhold, source: Some(&source.path) };
+    let folder = match package::put(&bundle, &target.out, how) {
         Ok(folder) => folder,
         Err(problem) => return super::read::refuse(&[problem], None, voice),
     };

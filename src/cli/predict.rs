@@ -61,7 +61,8 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         });
         if let Err(error) = written {
             let help = "choose another file name or folder; nothing is overwritten";
-            return drawing.refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+            return drawing
+                .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
         }
     }
     let written = if voice.json {
@@ -79,7 +80,8 @@ fn frequencies(arguments: &Arguments) -> Result<Option<Vec<f64>>, Vec<Problem>> 
     const MOST: usize = 1_000_000;
     let problem = |message: String, help: &str| vec![Problem::error("frequencies-not-a-sweep", Place::Whole, message, help)];
     let end = |text: &Option<String>, name: &str| match text {
-        Some(text) => parse_quantity(text, Dimensionality::Frequency).map_err(|message| problem(format!("--{name}: {message}"), "write it as --from \"1.2 GHz\"")),
+        Some(text) => parse_quantity(text, Dimensionality::Frequency)
+            .map_err(|message| problem(format!("--{name}: {message}"), "write it as --from \"1.2 GHz\"")),
         None => Err(problem(format!("--{name} is missing"), "give both --from and --to")),
     };
     if arguments.from.is_none() && arguments.to.is_none() {

@@ -13,7 +13,6 @@ use crate::layout::Layout;
 use crate::order;
 use crate::order::Order;
 use crate::order::Source;
-use crate::refine::Chosen;
 
 /// An order with the text it came from.
 pub struct Ordered {
@@ -44,8 +43,6 @@ pub struct Drawing {
     pub source: Source,
     /// The set.
     pub dimensions: Dimensions,
-    /// How it was synthesized; `None` when it was read.
-    pub chosen: Option<Chosen>,
 }
 
 impl Drawing {
@@ -57,7 +54,7 @@ impl Drawing {
         }
         let ordered = Ordered::open(path, voice)?;
         let chosen = crate::dimension(&ordered.order).map_err(|found| ordered.refuse(&found, voice))?;
-        Ok(Drawing { source: ordered.source, dimensions: chosen.refined.dimensions.clone(), chosen: Some(chosen) })
+        Ok(Drawing { source: ordered.source, dimensions: chosen.refined.dimensions })
     }
 
     /// Opens a dimension set; problems are printed.
@@ -70,7 +67,7 @@ impl Drawing {
         let (dimensions, warnings) =
             dimensions::read(&source, &family::keys(), &names).map_err(|found| refuse(&found, Some(&source), voice))?;
         problems::print(&warnings, Some(&source), voice);
-        Ok(Drawing { source, dimensions, chosen: None })
+        Ok(Drawing { source, dimensions })
     }
 
     /// The set's layout.

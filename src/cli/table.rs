@@ -23,7 +23,10 @@ fn ghz(f_hz: f64) -> String {
 }
 
 fn band(edges: Option<[f64; 2]>) -> String {
-    edges.map_or_else(|| "not within the sweep".into(), |[low, high]| format!("{} to {}  ({:.1} MHz)", ghz(low), ghz(high), (high - low) / 1e6))
+    edges.map_or_else(
+        || "not within the sweep".into(),
+        |[low, high]| format!("{} to {}  ({:.1} MHz)", ghz(low), ghz(high), (high - low) / 1e6),
+    )
 }
 
 /// The figures and a verdict for each requirement, as text.
@@ -99,7 +102,8 @@ pub fn figures_json(order: &Order, figures: &Figures, response: Option<&Response
     });
     if let Some(response) = response {
         let pairs = |s: usize| response.s.iter().map(|m| [m[s].re, m[s].im]).collect::<Vec<_>>();
-        value["response"] = json!({ "z0_ohm": response.z0_ohm, "f_hz": response.f_hz, "s11": pairs(0), "s21": pairs(1), "s12": pairs(2), "s22": pairs(3) });
+        value["response"] =
+            json!({ "z0_ohm": response.z0_ohm, "f_hz": response.f_hz, "s11": pairs(0), "s21": pairs(1), "s12": pairs(2), "s22": pairs(3) });
     }
     value
 }

@@ -12,6 +12,7 @@ use crate::base::Place;
 use crate::base::Problem;
 use crate::network::Method;
 use crate::network::Response;
+use crate::order::Order;
 
 /// The network data of a file.
 #[derive(Clone, Debug, PartialEq)]
@@ -38,6 +39,16 @@ impl Touchstone {
         let s = self.values.iter().map(|v| <[Complex64; 4]>::try_from(v.as_slice()).ok()).collect::<Option<Vec<_>>>()?;
         Some(Response { method: Method::Network, z0_ohm: [one, two], f_hz: self.f_hz.clone(), s })
     }
+}
+
+/// What a reader of a predicted response must know: order, method, reference planes, what is in it.
+pub fn comments(order: &Order) -> Vec<String> {
+    vec![
+        format!("{}, revision {}: {}", order.name, order.revision, order.title),
+        "predicted by the network model of the drawn layout, not measured".into(),
+        "reference planes: port 1 and port 2 at the board's edge, where the connector touches; connectors not included".into(),
+        "included: launch pads and tapers, feeds, steps, open ends with radiation estimate, dispersion, conductor loss with roughness, dielectric loss".into(),
+    ]
 }
 
 /// Writes a response in hertz, real and imaginary parts, twelve decimals. The comments come first, one line each.
