@@ -52,7 +52,7 @@ fn the_drawing_holds_the_board() {
             let voids: Vec<Ring> = shapes.iter().flat_map(|shape| shape.voids.clone()).collect();
             assert_eq!(rings.get(&format!("{name}_VOID")).cloned().unwrap_or_default(), voids);
         }
-        assert_eq!(rings["BOARD_OUTLINE"], [board.outline.outer.clone()]);
+        assert_eq!(rings["BOARD_OUTLINE"], std::slice::from_ref(&board.outline.outer));
         for (plated, name) in [(true, "DRILL_PTH"), (false, "DRILL_NPTH")] {
             let wanted: Vec<_> =
                 board.holes.iter().filter(|hole| hole.is_plated() == plated).map(|hole| (hole.at, hole.diameter.0)).collect();
