@@ -1,5 +1,6 @@
 //! Arguments, printing and progress; one file per command.
 
+mod check;
 mod dimension;
 mod line;
 mod list;
@@ -40,6 +41,7 @@ enum Command {
     Draw(make::DrawArguments),
     Predict(predict::Arguments),
     Line(line::Arguments),
+    Check(check::Arguments),
     List(list::List),
     /// Writes the completion script of a shell to stdout.
     Completions {
@@ -109,6 +111,7 @@ pub fn run() -> ExitCode {
         Command::Draw(arguments) => make::run_draw(arguments, voice),
         Command::Predict(arguments) => predict::run(arguments, voice),
         Command::Line(arguments) => line::run(arguments, voice),
+        Command::Check(arguments) => check::run(arguments, voice),
         Command::List(arguments) => list::run(arguments, voice),
         Command::Completions { shell } => {
             let mut script = Vec::new();

@@ -27,19 +27,19 @@ use crate::package::contents::Listed;
 const LOCK_WAIT: Duration = Duration::from_secs(20);
 const LOCK_POLL: Duration = Duration::from_millis(10);
 
-/// Writes every file of the package into `folder`, which must exist; `withheld` leaves out what only the board house needs.
-pub fn write_all(job: &mut Job, folder: &Path, withheld: bool) -> io::Result<()> {
+/// Writes every file of the package into the job's folder, which must exist; `withheld` leaves out what only the board house needs.
+pub fn write_all(job: &mut Job, withheld: bool) -> io::Result<()> {
     let name = job.order().name.clone();
     for writer in WRITERS.iter().filter(|writer| !(withheld && writer.for_board_house)) {
         if !(writer.applies)(job) {
             continue;
         }
         let file = writer.file_name(&name);
-        let (bytes, sha256) = write_one(&folder.join(&file), |out| (writer.write)(job, out))?;
+        let (bytes, sha256) = write_one(&job.folder.join(&file), |out| (writer.write)(job, out))?;
         job.written.push(Listed { file, about: writer.about.to_string(), for_board_house: writer.for_board_house, bytes, sha256 });
     }
     let contents = Contents::of(job, withheld);
-    write_one(&folder.join(CONTENTS), |out| contents.write(out))?;
+    write_one(&job.folder.join(CONTENTS), |out| contents.write(out))?;
     Ok(())
 }
 
@@ -74,7 +74,7 @@ impl<W: Write> Write for Counted<W> {
     }
 }
 
-pub(super) fn hex(bytes: &[u8]) -> String {
+fn hex(bytes: &[u8]) -> String {
     bytes.iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
@@ -119,7 +119,7 @@ pub fn put(bundle: &Bundle, parent: &Path, how: How) -> Result<PathBuf, Problem>
     may_go(name, parent, how)?;
 
     let made = fs::create_dir(&fresh).and_then(|()| {
-        write_all(&mut Job::new(bundle), &fresh, how.withhold)?;
+        write_all(&mut Job::new(bundle, &fresh), how.withhold)?;
         sync_folder(&fresh)
     });
     if let Err(error) = made {
@@ -197,8 +197,13 @@ fn foreign_files(folder: &Path, source: Option<&Path>) -> io::Result<Vec<String>
 
 /// Length and SHA-256 of a file.
 pub(super) fn checksum(path: &Path) -> io::Result<(u64, String)> {
+    checksum_of(fs::File::open(path)?)
+}
+
+/// Length and SHA-256 of what a reader gives.
+pub(super) fn checksum_of(mut from: impl io::Read) -> io::Result<(u64, String)> {
     let mut counted = Counted { out: io::sink(), hash: Sha256::new(), bytes: 0 };
-    io::copy(&mut fs::File::open(path)?, &mut counted)?;
+    io::copy(&mut from, &mut counted)?;
     Ok((counted.bytes, hex(&counted.hash.finalize())))
 }
 
