@@ -43,14 +43,13 @@ pub fn write_all(job: &mut Job, withheld: bool) -> io::Result<()> {
     Ok(())
 }
 
-/// Writes and syncs one new file; gives its length and checksum.
+/// Writes one new file; gives its length and checksum.
 fn write_one(path: &Path, write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> io::Result<(u64, String)> {
     let file = fs::File::create_new(path)?;
     let mut counted = Counted { out: BufWriter::new(&file), hash: Sha256::new(), bytes: 0 };
     write(&mut counted)?;
     counted.out.flush()?;
     let (bytes, sha256) = (counted.bytes, hex(&counted.hash.finalize()));
-    file.sync_all()?;
     Ok((bytes, sha256))
 }
 
@@ -120,7 +119,7 @@ pub fn put(bundle: &Bundle, parent: &Path, how: How) -> Result<PathBuf, Problem>
 
     let made = fs::create_dir(&fresh).and_then(|()| {
         write_all(&mut Job::new(bundle, &fresh), how.withhold)?;
-        sync_folder(&fresh)
+        sync_files(&fresh)
     });
     if let Err(error) = made {
         // What is left, if even this fails, is removed by the next run.
@@ -248,6 +247,15 @@ fn exchange(one: &Path, other: &Path) -> io::Result<bool> {
 #[cfg(not(target_os = "linux"))]
 fn exchange(_: &Path, _: &Path) -> io::Result<bool> {
     Ok(false)
+}
+
+/// Brings a package's files to the disk. All at the end: the first sync mostly carries the others, where one after each file would not.
+fn sync_files(folder: &Path) -> io::Result<()> {
+    for entry in fs::read_dir(folder)? {
+        // Opened for writing: some systems sync only what may be written.
+        fs::OpenOptions::new().write(true).open(entry?.path())?.sync_all()?;
+    }
+    sync_folder(folder)
 }
 
 /// Brings a folder's entries to the disk.
