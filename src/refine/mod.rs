@@ -23,9 +23,10 @@ pub use passband::{Goal, Miss, Passband};
 
 /// Iterations of the first stage, which fits |S11|^2 over the band to the prototype's.
 const FIT_ITERATIONS: usize = 25;
-/// Iterations of one round of the second stage, which levels the ripple, and rounds of both stages.
+/// Iterations of one round of the second stage, which levels the ripple.
 const LEVEL_ITERATIONS: usize = 8;
-const ROUNDS: usize = 4;
+/// One round of both stages each: how far, in edge levels, the weight of the ripple is tempered in the fit.
+const FLOORS: [f64; 5] = [0.3, 3.0, 0.1, 10.0, 1.0];
 /// Sample points of the first stage per degree, over a quarter of the bandwidth more than the band on each side.
 const SAMPLES_PER_DEGREE: usize = 7;
 const SAMPLE_REACH: f64 = 1.25;
@@ -169,9 +170,11 @@ impl Search<'_> {
         let greatest: Vec<f64> = self.knobs.iter().map(|k| k.greatest_step).collect();
         let mut x = vec![0.0; count];
         let mut best = (f64::INFINITY, x.clone());
-        for round in 0..ROUNDS {
-            if round == 0 || best.0 > 1.0 {
-                minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, 0.3 * 3f64.powi(round as i32)));
+        for floor in FLOORS {
+            // A fit that has stuck with two zeros in one is begun anew from the first guess, with another weight of the ripple.
+            if best.0 > 1.0 {
+                x.fill(0.0);
+                minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, floor));
                 self.keep(&x, &mut best);
             }
             minimize(&mut x, &steps, &greatest, LEVEL_ITERATIONS, |x| self.level(x));
