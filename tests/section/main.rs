@@ -1,0 +1,4 @@
+//! Cross-section solver against exact results and published values.
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
+
+mod scratch;
