@@ -91,6 +91,23 @@ fn graded_inverse(count: usize, length: f64) -> Vec<f64> {
         .collect()
 }
 
+/// 1 / (ds/du du) at the middle of each panel: turns its charge into the density that, squared and summed, integrates the square of a charge like
+/// r^(-1/3) by the midpoint rule in u (the panel's mean density would miss a quarter of the corner panel's share).
+pub(super) fn inverse_spread(count: usize, length: f64) -> impl Iterator<Item = f64> {
+    let step = 1.0 / count as f64;
+    (0..count).map(move |i| {
+        let (u, v) = ((i as f64 + 0.5) * step, 1.0 - (i as f64 + 0.5) * step);
+        let sum = u * u * u + v * v * v;
+        sum * sum / (3.0 * u * u * v * v * length * step)
+    })
+}
+
+impl Side {
+    pub(super) fn length(&self) -> f64 {
+        self.nodes.last().copied().unwrap_or(0.0)
+    }
+}
+
 impl Contour {
     /// The contour of a strip whose foot starts at `left_m`.
     pub(super) fn new(left_m: f64, width_m: f64, thickness_m: f64, undercut_m: f64, grid: Grid) -> Contour {

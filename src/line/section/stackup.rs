@@ -10,11 +10,10 @@ use super::geometry::CopperOf;
 use super::geometry::CrossSection;
 use super::geometry::HousingOf;
 use super::geometry::LayerOf;
-use super::geometry::fault;
-use super::geometry::mm;
 use super::green::{Kernel, Medium, OCTAVES_AT_MOST};
 use super::panels::{Grid, Interpolation};
-use super::solve::{Line, Pair, solve_pair, solve_single};
+use super::geometry::StripOf;
+use super::solve::{Line, Pair, Solved, solve_array, solve_pair, solve_single, too_wide};
 
 /// Cached lines and pairs at most; then the cache is emptied. A synthesis with refine needs some thousand.
 const CACHED_AT_MOST: usize = 20_000;
@@ -98,17 +97,9 @@ impl Stackup {
 
     /// Tables that reach over a whole of this width.
     pub(super) fn kernels(&self, reach_m: f64) -> Result<&Kernels, Problem> {
-        let too_wide = || {
-            fault(
-                "section-aspect",
-                "",
-                format!("strips over {} on this stackup need a larger table than is allowed", mm(reach_m)),
-                "leave out far strips, or merge a very thin top layer with its neighbour",
-            )
-        };
-        let octaves = Kernel::octaves_for(&self.dielectric, reach_m).ok_or_else(too_wide)?;
-        let air_octaves = Kernel::octaves_for(&self.air, reach_m).ok_or_else(too_wide)?;
-        let level = self.levels.get(octaves - 1).ok_or_else(too_wide)?;
+        let octaves = Kernel::octaves_for(&self.dielectric, reach_m).ok_or_else(|| too_wide(reach_m))?;
+        let air_octaves = Kernel::octaves_for(&self.air, reach_m).ok_or_else(|| too_wide(reach_m))?;
+        let level = self.levels.get(octaves - 1).ok_or_else(|| too_wide(reach_m))?;
         Ok(level.get_or_init(|| {
             // The largest reach of this level, so that the level alone settles the air table too.
             Kernels {
@@ -160,6 +151,26 @@ impl Stackup {
     /// As [`Stackup::symmetric_pair`].
     pub fn symmetric_pair_anew(&self, width_m: f64, gap_m: f64) -> Result<Pair, Problem> {
         solve_pair(self, width_m, gap_m)
+    }
+
+    /// Many strips, left to right, on fixed grids: smooth in every size.
+    ///
+    /// # Accuracy
+    /// C within 0.1 % of the row's largest element; `error_estimate` of the result. For more, [`super::solve`].
+    /// # Errors
+    /// The codes of [`CrossSection::check`]; `section-not-converged`.
+    pub fn array(&self, strips: &[StripOf]) -> Result<Solved, Problem> {
+        let section = CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() };
+        solve_array(self, &section)
+    }
+
+    pub(super) fn housing(&self) -> HousingOf {
+        HousingOf { lid_m: self.lid_m, wall_m: None }
+    }
+
+    /// Coarse and fine grid of the fast path; sheets have so few panels that both can be twice as fine.
+    pub(super) fn grids(&self) -> [Grid; 2] {
+        if self.copper.thickness_m > 0.0 { [COARSE, FINE] } else { [FINE, Grid::new(2 * FINE.width)] }
     }
 
     pub(super) fn varied(&self) -> &[[Box<Stackup>; 2]] {
