@@ -253,3 +253,16 @@ fn speed_array() {
     }
     println!("N9 array {} ms est {}", best * 1e3, st.array(&strips).unwrap().error_estimate);
 }
+#[test]
+#[ignore]
+fn coat_scratch() {
+    for (w, s, er, h, t, u, lid, wall) in [(1.2e-3, 0.2e-3, 3.0, 0.508e-3, 35e-6, 0.0, None, None), (1.2e-3, 0.2e-3, 3.0, 0.508e-3, 35e-6, 10e-6, None, None), (0.3e-3, 0.15e-3, 4.2, 0.2e-3, 35e-6, 10e-6, Some(2e-3), Some(0.5e-3)), (1.2e-3, 0.2e-3, 3.0, 0.508e-3, 0.0, 0.0, None, None), (1.2e-3, 0.2e-3, 3.0, 0.508e-3, 1e-6, 0.0, None, None)] {
+        for (cl, cc) in [(25e-6, 15e-6), (60e-6, 15e-6), (100e-6, 15e-6)] {
+        let mut sec = CrossSection::pair(vec![LayerOf::isotropic(er, 0.0, h)], CopperOf { thickness_m: t, undercut_m: u }, w, s, HousingOf { lid_m: lid, wall_m: wall });
+        let bare = solve(&sec, 1e-4).unwrap().pair().unwrap();
+        sec.coat = Some(CoatOf { permittivity: 3.5, loss_tangent: 0.02, on_laminate_m: cl, on_copper_m: cc });
+        let t0 = Instant::now();
+        match solve(&sec, 1e-4) { Ok(c) => { let p = c.pair().unwrap(); println!("coat t {t} cl {cl} even ratio {:.5} odd {:.5} k {:.5} -> {:.5} est {:.1e} {:?}", p.even.eps_eff() / bare.even.eps_eff(), p.odd.eps_eff() / bare.odd.eps_eff(), bare.coupling(), p.coupling(), c.error_estimate, t0.elapsed()) }, Err(p) => println!("{p}") }
+        }
+    }
+}

@@ -202,6 +202,18 @@ impl Table {
     }
 }
 
+impl Table {
+    /// dR/dx at x, to the accuracy of the cubics' second derivative: for the coat's correction only.
+    pub(super) fn slope(&self, pair: usize, x: f64) -> f64 {
+        let (distance, turn) = match self.fold_m {
+            Some(fold) if x.abs() > fold => ((2.0 * fold - x.abs()).max(0.0), -1.0),
+            _ => (x.abs(), 1.0),
+        };
+        let (c, d) = self.cubic(pair, distance);
+        turn * x.signum() * (2.0 * c[2] + 6.0 * d * c[3]) * self.inverse_first * self.inverse_first
+    }
+}
+
 /// Wave numbers with weights of the integral (1/pi) Int dk / (2k), or of its sum between walls.
 fn wave_numbers(medium: &Medium, reach_m: f64) -> Vec<(f64, f64)> {
     let pi = std::f64::consts::PI;

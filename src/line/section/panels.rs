@@ -65,7 +65,7 @@ pub(super) struct Interpolation {
 }
 
 /// s(u) with the smaller of s and 1 - s kept to full digits.
-fn graded(count: usize, length: f64) -> Vec<f64> {
+pub(super) fn graded(count: usize, length: f64) -> Vec<f64> {
     (0..=count)
         .map(|i| {
             let (u, v) = (i as f64 / count as f64, (count - i) as f64 / count as f64);
@@ -168,6 +168,6 @@ impl Interpolation {
     }
 }
 
-fn lagrange(nodes: &[f64], z: f64) -> Vec<f64> {
+pub(super) fn lagrange(nodes: &[f64], z: f64) -> Vec<f64> {
     (0..nodes.len()).map(|i| (0..nodes.len()).filter(|&j| j != i).map(|j| (z - nodes[j]) / (nodes[i] - nodes[j])).product()).collect()
 }

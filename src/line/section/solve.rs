@@ -151,7 +151,7 @@ pub fn solve(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
     }
     let mut solved = solve_bare(section, accuracy)?;
     if let Some(coat) = section.coat {
-        let coated = super::coat::coat_ratio(section, coat)?;
+        let coated = super::coat::coat_adds(section, coat)?;
         for (row, ratios) in solved.capacitance_f_per_m.iter_mut().zip(&coated.added_f_per_m) {
             for (value, added) in row.iter_mut().zip(ratios) {
                 *value += added;
