@@ -100,7 +100,14 @@ fn push_line(out: &mut Vec<Panel>, from: (f64, f64), to: (f64, f64), nodes: &[f6
     let along = ((to.0 - from.0) / length, (to.1 - from.1) / length);
     for pair in nodes.windows(2) {
         let start = length * pair[0];
-        out.push(Panel { x: from.0 + start * along.0, z: from.1 + start * along.1, along, length: length * (pair[1] - pair[0]), normal, kind });
+        out.push(Panel {
+            x: from.0 + start * along.0,
+            z: from.1 + start * along.1,
+            along,
+            length: length * (pair[1] - pair[0]),
+            normal,
+            kind,
+        });
     }
 }
 
@@ -130,7 +137,8 @@ fn coat_panels(section: &CrossSection, coat: CoatOf, count: usize) -> Result<Vec
     let height: f64 = section.layers.iter().map(|layer| layer.thickness_m).sum();
     let reach = section.housing.wall_m.unwrap_or(REACH * (height + thickness + coat.on_laminate_m + coat.on_copper_m));
     let half = 0.5 * section.span_m();
-    let edges: Vec<(f64, f64)> = section.left_edges_m().iter().zip(&section.strips).map(|(left, strip)| (*left, left + strip.width_m)).collect();
+    let edges: Vec<(f64, f64)> =
+        section.left_edges_m().iter().zip(&section.strips).map(|(left, strip)| (*left, left + strip.width_m)).collect();
     let outer = Kind::Coat(1.0, coat.permittivity);
     let lower = Kind::Coat(coat.permittivity, 1.0);
     let mut out = Vec::new();
@@ -310,7 +318,10 @@ impl Field {
                 (0..heights.len())
                     .filter(|&j| j != i)
                     .map(|j| {
-                        let rest: f64 = (0..heights.len()).filter(|&m| m != i && m != j).map(|m| (z - heights[m]) / (heights[i] - heights[m])).product();
+                        let rest: f64 = (0..heights.len())
+                            .filter(|&m| m != i && m != j)
+                            .map(|m| (z - heights[m]) / (heights[i] - heights[m]))
+                            .product();
                         rest / (heights[i] - heights[j])
                     })
                     .sum()
@@ -344,9 +355,16 @@ fn capacitance(room: &Room, panels: &[Panel], strips: usize, coat_permittivity: 
             above.push((row, normal_row));
         }
     }
-    let mut vectors: Vec<Vec<f64>> = (0..strips).map(|strip| panels.iter().map(|panel| if matches!(panel.kind, Kind::Metal(own, _) if own == strip) { 1.0 } else { 0.0 }).collect()).collect();
+    let mut vectors: Vec<Vec<f64>> = (0..strips)
+        .map(|strip| panels.iter().map(|panel| if matches!(panel.kind, Kind::Metal(own, _) if own == strip) { 1.0 } else { 0.0 }).collect())
+        .collect();
     if !solve_in_place(&mut matrix, &mut vectors) {
-        return Err(fault("section-not-converged", "coat", "the charges of the coat cannot be told apart".into(), "look for a coat that is very thin against the widths"));
+        return Err(fault(
+            "section-not-converged",
+            "coat",
+            "the charges of the coat cannot be told apart".into(),
+            "look for a coat that is very thin against the widths",
+        ));
     }
     let mut out = vec![vec![0.0; strips]; strips];
     for (driven, charges) in vectors.iter().enumerate() {

@@ -99,7 +99,9 @@ mod tests {
     fn the_solution_reproduces_the_right_side() {
         // Sizes below, at and beyond whole blocks.
         for size in [1, 3, 8, 13, 32, 51] {
-            let entry = |i: usize, j: usize| 1.0 / (1.0 + (i as f64 - j as f64).abs()) + if i == j { 2.0 } else { 0.01 * i as f64 / (1.0 + j as f64) };
+            let entry = |i: usize, j: usize| {
+                1.0 / (1.0 + (i as f64 - j as f64).abs()) + if i == j { 2.0 } else { 0.01 * i as f64 / (1.0 + j as f64) }
+            };
             let mut matrix = Square::zero(size);
             for row in 0..size {
                 for (column, value) in matrix.row_mut(row, 0, size).iter_mut().enumerate() {

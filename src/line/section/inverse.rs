@@ -14,6 +14,8 @@ const FINE_STEPS: usize = 12;
 const COARSE_TOLERANCE: f64 = 3e-3;
 /// Residual in ln Z0 that counts as reached.
 const TOLERANCE: f64 = 2e-5;
+/// Residual from which one more step is taken without looking: slopes good to some per cent land within `TOLERANCE`.
+const UNCHECKED: f64 = 2e-4;
 /// Largest change of ln(width) or ln(gap) in one step.
 const STEP_AT_MOST: f64 = 0.8;
 /// Step of the slopes in ln(width) and ln(gap).
@@ -91,6 +93,9 @@ impl Stackup {
             }
             let change = clipped(newton(&slopes, now).ok_or_else(unreachable)?);
             let next = clip([at[0] + change[0], at[1] + change[1]]);
+            if size(now) < UNCHECKED {
+                return Ok((next[0].exp(), next[1].exp()));
+            }
             let after = exact(next)?;
             slopes = broyden(slopes, [next[0] - at[0], next[1] - at[1]], [after[0] - now[0], after[1] - now[1]]);
             (at, now) = (next, after);
@@ -109,7 +114,14 @@ impl Stackup {
     /// # Errors
     /// `impedances-unreachable`.
     pub fn width_for(&self, z0_ohm: f64, start: Option<f64>) -> Result<f64, Problem> {
-        let unreachable = || fault("impedances-unreachable", "", format!("no width on this stackup gives {z0_ohm:.3} ohm"), "choose another impedance or another laminate thickness");
+        let unreachable = || {
+            fault(
+                "impedances-unreachable",
+                "",
+                format!("no width on this stackup gives {z0_ohm:.3} ohm"),
+                "choose another impedance or another laminate thickness",
+            )
+        };
         if !(z0_ohm.is_finite() && z0_ohm > 0.0) {
             return Err(unreachable());
         }
@@ -125,7 +137,9 @@ impl Stackup {
         // Secant steps, first on the coarse grid; Z0 falls with the width, slope between -1 and 0.
         let mut slope = -0.6;
         for fine in [false, true] {
-            let value_at = |at: f64| if fine { self.single(at.exp()).map(|line| line.mode) } else { single_roughly(self, at.exp()) }.map(|mode| residual(&mode));
+            let value_at = |at: f64| {
+                if fine { self.single(at.exp()).map(|line| line.mode) } else { single_roughly(self, at.exp()) }.map(|mode| residual(&mode))
+            };
             let mut now = value_at(at).map_err(|_| unreachable())?;
             let goal = if fine { TOLERANCE } else { COARSE_TOLERANCE };
             for _ in 0..COARSE_STEPS {
@@ -185,7 +199,8 @@ fn size(residual: Vector) -> f64 {
 
 fn newton(slopes: &Slopes, now: Vector) -> Option<Vector> {
     let determinant = slopes[0][0] * slopes[1][1] - slopes[0][1] * slopes[1][0];
-    let change = [(-now[0] * slopes[1][1] + now[1] * slopes[0][1]) / determinant, (-now[1] * slopes[0][0] + now[0] * slopes[1][0]) / determinant];
+    let change =
+        [(-now[0] * slopes[1][1] + now[1] * slopes[0][1]) / determinant, (-now[1] * slopes[0][0] + now[0] * slopes[1][0]) / determinant];
     change.iter().all(|value| value.is_finite()).then_some(change)
 }
 

@@ -252,14 +252,24 @@ fn modes(section: &CrossSection) -> Result<Vec<Vec<f64>>, Problem> {
     match section.strips.as_slice() {
         [_] => Ok(vec![vec![1.0]]),
         [_, _] if section.is_symmetric() => Ok(vec![vec![1.0, 1.0], vec![1.0, -1.0]]),
-        _ => Err(fault("loss-of-many-strips", "strip", "loss is given for one strip or two equal strips".into(), "leave out the other strips, or make both equal")),
+        _ => Err(fault(
+            "loss-of-many-strips",
+            "strip",
+            "loss is given for one strip or two equal strips".into(),
+            "leave out the other strips, or make both equal",
+        )),
     }
 }
 
 pub(super) fn wall_shares(section: &CrossSection) -> Result<Vec<(WallShares, f64)>, Problem> {
     let modes = modes(section)?;
     if section.copper.thickness_m == 0.0 {
-        return Err(fault("loss-of-thin-sheet", "copper.thickness", "a sheet without thickness has no finite conductor loss".into(), "give the copper's real thickness"));
+        return Err(fault(
+            "loss-of-thin-sheet",
+            "copper.thickness",
+            "a sheet without thickness has no finite conductor loss".into(),
+            "give the copper's real thickness",
+        ));
     }
     let mut air = section.clone();
     for layer in &mut air.layers {
@@ -277,7 +287,12 @@ pub(super) fn wall_shares(section: &CrossSection) -> Result<Vec<(WallShares, f64
         let outside = read.ground_per_m + read.lid_per_m + read.walls_per_m;
         let strips = read.foot_per_m + read.top_per_m + read.sides_per_m;
         let factor = (total - outside) / strips;
-        let shares = WallShares { foot_per_m: factor * read.foot_per_m, top_per_m: factor * read.top_per_m, sides_per_m: factor * read.sides_per_m, ..read };
+        let shares = WallShares {
+            foot_per_m: factor * read.foot_per_m,
+            top_per_m: factor * read.top_per_m,
+            sides_per_m: factor * read.sides_per_m,
+            ..read
+        };
         // Two ways to the same number: far apart means that the panels do not resolve the corners.
         if !(0.8..1.1).contains(&factor) {
             return Err(fault(
@@ -449,7 +464,9 @@ impl Room {
     fn images(&self, x: f64) -> Vec<(f64, f64)> {
         match self.wall_x_m {
             None => vec![(x, 1.0)],
-            Some(wall) => (-WALL_IMAGES..=WALL_IMAGES).flat_map(|m| [(x + 4.0 * wall * f64::from(m), 1.0), (2.0 * wall - x + 4.0 * wall * f64::from(m), -1.0)]).collect(),
+            Some(wall) => (-WALL_IMAGES..=WALL_IMAGES)
+                .flat_map(|m| [(x + 4.0 * wall * f64::from(m), 1.0), (2.0 * wall - x + 4.0 * wall * f64::from(m), -1.0)])
+                .collect(),
         }
     }
 
@@ -463,13 +480,18 @@ impl Room {
             let density = |x: f64| -> f64 {
                 let mut sum = 0.0;
                 for source in sources {
-                    let (a, other) = if is_lid { (distance - source.z, Some(self.height_m + source.z)) } else { (distance + source.z, self.lid_m.map(|lid| lid - source.z)) };
+                    let (a, other) = if is_lid {
+                        (distance - source.z, Some(self.height_m + source.z))
+                    } else {
+                        (distance + source.z, self.lid_m.map(|lid| lid - source.z))
+                    };
                     for (position, sign) in self.images(source.x) {
                         let offset = x - position;
                         sum += sign
                             * source.charge
                             * if source.half > 0.0 {
-                                (Room::plane_charge(a, other, offset + source.half) - Room::plane_charge(a, other, offset - source.half)) / (2.0 * source.half)
+                                (Room::plane_charge(a, other, offset + source.half) - Room::plane_charge(a, other, offset - source.half))
+                                    / (2.0 * source.half)
                             } else {
                                 Room::plane_density(a, other, offset)
                             };
@@ -573,7 +595,12 @@ impl Stackup {
         let fillings = self.fillings(|stackup| stackup.symmetric_pair(width_m, gap_m).map(|pair| vec![pair.even, pair.odd]))?;
         match self.modes_loss(shares, fillings).try_into() {
             Ok(both) => Ok(both),
-            Err(_) => Err(fault("loss-of-many-strips", "strip", "loss is given for one strip or two equal strips".into(), "leave out the other strips")),
+            Err(_) => Err(fault(
+                "loss-of-many-strips",
+                "strip",
+                "loss is given for one strip or two equal strips".into(),
+                "leave out the other strips",
+            )),
         }
     }
 
@@ -585,9 +612,9 @@ impl Stackup {
         let section = CrossSection::single(self.layers.clone(), self.copper, width_m, self.housing());
         let shares = wall_shares(&section)?;
         let fillings = self.fillings(|stackup| stackup.single(width_m).map(|line| vec![line.mode]))?;
-        self.modes_loss(shares, fillings)
-            .pop()
-            .ok_or_else(|| fault("loss-of-many-strips", "strip", "loss is given for one strip or two equal strips".into(), "leave out the other strips"))
+        self.modes_loss(shares, fillings).pop().ok_or_else(|| {
+            fault("loss-of-many-strips", "strip", "loss is given for one strip or two equal strips".into(), "leave out the other strips")
+        })
     }
 
     fn modes_loss(&self, shares: Vec<(WallShares, f64)>, fillings: Vec<Vec<f64>>) -> Vec<ModeLoss> {

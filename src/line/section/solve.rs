@@ -24,7 +24,9 @@ const LEFT_OVER_COARSEST: f64 = 0.8;
 /// Rounding and table errors that no grid removes.
 const FLOOR: f64 = 2e-6;
 /// Grids tried in turn for an accuracy asked for, as panels per width.
-const GRIDS: [usize; 6] = [6, 8, 12, 16, 24, 32];
+const GRIDS: [usize; 7] = [6, 8, 12, 16, 24, 32, 48];
+/// Panels of all strips together at most: five matrices of that size take 100 MB.
+const UNKNOWNS_AT_MOST: usize = 1600;
 /// Coarser of the two grids for arrays: C within 0.1 %, and N = 9 in time.
 const ARRAY: Grid = Grid::new(6);
 /// An estimate above this says that the panels do not resolve the cross-section at all.
@@ -167,6 +169,10 @@ pub(super) fn solve_bare(section: &CrossSection, accuracy: f64) -> Result<Solved
     let shared = tables.borrow();
     let mut best: Option<Solved> = None;
     for coarse in GRIDS {
+        let unknowns = section.strips.len() * Grid::new(2 * coarse).panels(section.copper.thickness_m > 0.0);
+        if best.is_some() && unknowns > UNKNOWNS_AT_MOST {
+            break;
+        }
         let solved = solve_on(section, &shared, Grid::new(coarse))?;
         let good = solved.error_estimate <= accuracy;
         best = Some(solved);
@@ -213,7 +219,10 @@ impl Tables {
         let heights = dielectric.heights_m();
         let reach = walls.unwrap_or(span);
         let octaves = |medium: &Medium| Kernel::octaves_for(medium, reach).ok_or_else(|| too_wide(reach));
-        let kernels = Kernels { dielectric: Kernel::build(&dielectric, &heights, octaves(&dielectric)?), air: Kernel::build(&air, &heights, octaves(&air)?) };
+        let kernels = Kernels {
+            dielectric: Kernel::build(&dielectric, &heights, octaves(&dielectric)?),
+            air: Kernel::build(&air, &heights, octaves(&air)?),
+        };
         Ok(Tables { kernels, heights })
     }
 

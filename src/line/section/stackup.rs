@@ -10,9 +10,9 @@ use super::geometry::CopperOf;
 use super::geometry::CrossSection;
 use super::geometry::HousingOf;
 use super::geometry::LayerOf;
+use super::geometry::StripOf;
 use super::green::{Kernel, Medium, OCTAVES_AT_MOST};
 use super::panels::{Grid, Interpolation};
-use super::geometry::StripOf;
 use super::solve::{Line, Pair, Solved, solve_array, solve_pair, solve_single, too_wide};
 
 /// Cached lines and pairs at most; then the cache is emptied. A synthesis with refine needs some thousand.
@@ -160,7 +160,8 @@ impl Stackup {
     /// # Errors
     /// The codes of [`CrossSection::check`]; `section-not-converged`.
     pub fn array(&self, strips: &[StripOf]) -> Result<Solved, Problem> {
-        let section = CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() };
+        let section =
+            CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() };
         solve_array(self, &section)
     }
 
