@@ -9,7 +9,7 @@
 //! | [`base`] | problems, quantities with units, whole nanometres, root finding, small dense elimination |
 //! | [`order`] | what is wanted; laminate, shop and launch classes |
 //! | [`prototype`] | g-values and degree |
-//! | [`line`] | one strip, coupled strips, discontinuities as built |
+//! | [`mod@line`] | one strip, coupled strips, discontinuities as built |
 //! | [`dimensions`] | the dimension set and its file |
 //! | [`layout`] | parts, nodes, placing and joining |
 //! | [`family`] | requirement -> prototype -> dimensions -> layout, one file each |
@@ -33,3 +33,72 @@ pub mod order;
 pub mod package;
 pub mod prototype;
 pub mod refine;
+
+use artwork::Board;
+use base::Problem;
+use dimensions::Dimensions;
+use layout::Layout;
+use network::Figures;
+use network::Response;
+use order::Order;
+use refine::Chosen;
+
+/// Everything between an order and its package.
+#[derive(Clone, Debug)]
+pub struct Made {
+    /// The order and its numbers.
+    pub dimensions: Dimensions,
+    /// Parts and nodes.
+    pub layout: Layout,
+    /// What is made.
+    pub board: Board,
+    /// The predicted response, planes at the board's edge.
+    pub response: Response,
+    /// Its figures, a verdict for each requirement.
+    pub figures: Figures,
+    /// Findings of every stage; an error among them withholds the files for the board house.
+    pub findings: Vec<Problem>,
+}
+
+/// A dimension set from an order: prototype, closed form, refinement, grid.
+///
+/// # Errors
+/// Why no set exists: an unreachable coupling, no degree that meets the requirements, a passband refinement cannot reach.
+pub fn dimension(order: &Order) -> Result<Chosen, Vec<Problem>> {
+    let family = family::of(order).map_err(|problem| vec![problem])?;
+    refine::synthesize(family, order)
+}
+
+/// The whole way: order -> dimensions -> layout -> board -> response -> checks.
+///
+/// # Errors
+/// Those of [`dimension`] and of the artwork (a board that does not fit).
+///
+/// # Example
+/// ```
+/// let text = include_str!("../templates/orders/edge-coupled.toml");
+/// let source = stripwright::order::Source::from_text("edge-coupled.toml", text);
+/// let (order, _) = stripwright::order::read(&source, &stripwright::family::keys()).map_err(|problems| format!("{problems:?}"))?;
+/// let (made, _) = stripwright::make(&order).map_err(|problems| format!("{problems:?}"))?;
+/// assert!(made.figures.all_met());
+/// # Ok::<(), String>(())
+/// ```
+pub fn make(order: &Order) -> Result<(Made, Chosen), Vec<Problem>> {
+    let chosen = dimension(order)?;
+    Ok((draw(&chosen.refined.dimensions)?, chosen))
+}
+
+/// From a dimension set (synthesized or edited by hand) to what is made and how it responds.
+///
+/// # Errors
+/// Dimensions that do not make a circuit; a board that does not fit.
+pub fn draw(dimensions: &Dimensions) -> Result<Made, Vec<Problem>> {
+    let order = &dimensions.order;
+    let family = family::of(order).map_err(|problem| vec![problem])?;
+    let layout = family.layout(dimensions)?;
+    let (board, mut findings) = artwork::board(order, &layout)?;
+    let response = network::predict(order, &layout).map_err(|problem| vec![problem])?;
+    let figures = Figures::of(order, &response);
+    findings.extend(checks::run(&checks::Subject { dimensions, layout: &layout, board: &board, response: &response, figures: &figures }));
+    Ok(Made { dimensions: dimensions.clone(), layout, board, response, figures, findings })
+}

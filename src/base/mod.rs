@@ -1,10 +1,12 @@
 //! What every room stands on: problems, quantities, whole nanometres, root finding.
 
+mod linear;
 mod nm;
 mod problem;
 mod quantity;
 mod root;
 
+pub use linear::solve_in_place;
 pub use nm::{Nm, Point};
 pub use problem::{Outcome, Place, Problem, Severity};
 pub use quantity::{Dimensionality, format_quantity, parse_quantity};

@@ -17,7 +17,8 @@ impl Nm {
 
     /// The same length in metres.
     pub fn m(self) -> f64 {
-        self.0 as f64 * 1e-9
+        // A division is rounded once: 762 000 nm is the same double as "0.762 mm" in a file; a product with 1e-9 is not always.
+        self.0 as f64 / 1e9
     }
 
     /// The same length in millimetres.

@@ -1,8 +1,22 @@
 //! Arguments, printing and progress; one file per command.
 
-use std::process::ExitCode;
+mod dimension;
+mod line;
+mod list;
+mod make;
+mod new;
+mod predict;
+pub mod problems;
+mod read;
+mod table;
 
-use clap::{Parser, Subcommand};
+use std::io::IsTerminal;
+use std::io::Write;
+use std::process::ExitCode;
+use std::time::Duration;
+
+use clap::{CommandFactory, Parser, Subcommand};
+use indicatif::ProgressBar;
 
 /// From a filter requirement, a laminate and a board house's limits to a printed microwave filter.
 #[derive(Parser, Debug)]
@@ -19,7 +33,20 @@ struct Arguments {
 }
 
 #[derive(Subcommand, Debug)]
-enum Command {}
+enum Command {
+    New(new::New),
+    Make(make::MakeArguments),
+    Dimension(dimension::Arguments),
+    Draw(make::DrawArguments),
+    Predict(predict::Arguments),
+    Line(line::Arguments),
+    List(list::List),
+    /// Writes the completion script of a shell to stdout.
+    Completions {
+        /// The shell.
+        shell: clap_complete::Shell,
+    },
+}
 
 /// How a command talks: results to stdout, findings and progress to stderr.
 #[derive(Clone, Copy, Debug)]
@@ -28,6 +55,26 @@ pub struct Voice {
     pub json: bool,
     /// No progress, no warnings.
     pub quiet: bool,
+}
+
+impl Voice {
+    /// A line for people on stderr; nothing when quiet.
+    pub fn say(self, line: &str) {
+        if !self.quiet && !self.json {
+            // When stderr is gone there is nobody left to tell.
+            let _ = writeln!(std::io::stderr(), "{line}");
+        }
+    }
+
+    /// Shows on a terminal what a long work is at.
+    pub fn progress(self, at: &'static str) -> ProgressBar {
+        if self.quiet || self.json || !std::io::stderr().is_terminal() {
+            return ProgressBar::hidden();
+        }
+        let bar = ProgressBar::new_spinner().with_message(at);
+        bar.enable_steady_tick(Duration::from_millis(100));
+        bar
+    }
 }
 
 /// How a command ended; the exit status of the program.
@@ -54,5 +101,34 @@ impl From<Ending> for ExitCode {
 /// Reads the arguments and runs the command.
 pub fn run() -> ExitCode {
     let arguments = Arguments::parse();
-    match arguments.command {}
+    let voice = Voice { json: arguments.json, quiet: arguments.quiet };
+    let ending = match &arguments.command {
+        Command::New(arguments) => new::run(arguments, voice),
+        Command::Make(arguments) => make::run_make(arguments, voice),
+        Command::Dimension(arguments) => dimension::run(arguments, voice),
+        Command::Draw(arguments) => make::run_draw(arguments, voice),
+        Command::Predict(arguments) => predict::run(arguments, voice),
+        Command::Line(arguments) => line::run(arguments, voice),
+        Command::List(arguments) => list::run(arguments, voice),
+        Command::Completions { shell } => {
+            let mut script = Vec::new();
+            clap_complete::generate(*shell, &mut Arguments::command(), "stripwright", &mut script);
+            results(&String::from_utf8_lossy(&script))
+        }
+    };
+    ending.into()
+}
+
+/// Writes results to stdout. A reader that stops listening (a pipe into `head`) is no failure; a full disk is.
+pub fn results(text: &str) -> Ending {
+    let mut out = std::io::stdout().lock();
+    match out.write_all(text.as_bytes()).and_then(|()| out.flush()) {
+        Ok(()) => Ending::Done,
+        Err(error) if error.kind() == std::io::ErrorKind::BrokenPipe => Ending::Done,
+        Err(error) => {
+            // Where stderr fails too there is nobody left to tell.
+            let _ = writeln!(std::io::stderr(), "error: the results cannot be written: {error}");
+            Ending::NothingMade
+        }
+    }
 }

@@ -1,1 +1,101 @@
-//! (room under construction)
+//! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
+
+mod edge_coupled;
+mod feeds;
+
+use crate::base::Outcome;
+use crate::base::Place;
+use crate::base::Problem;
+use crate::dimensions::Dimensions;
+use crate::layout::Layout;
+use crate::order::FamilyKeys;
+use crate::order::Key;
+use crate::order::Order;
+use crate::order::Passes;
+
+/// Whatever can be drawn from a dimension set: filter families and coupons.
+pub trait Structure: Sync {
+    /// Name as written in an order.
+    fn name(&self) -> &'static str;
+
+    /// One line for `list families`.
+    fn about(&self) -> &'static str;
+
+    /// Keys of its own under `[filter]`.
+    fn keys(&self) -> &'static [Key];
+
+    /// Names of the dimensions it is drawn from, in drawing order.
+    fn names(&self, order: &Order, degree: usize) -> Vec<String>;
+
+    /// The dimension set assembled into parts; rounds to 1 nm, never to the shop grid.
+    ///
+    /// # Errors
+    /// Dimensions that are missing or do not make a drawable circuit.
+    fn layout(&self, set: &Dimensions) -> Result<Layout, Vec<Problem>>;
+}
+
+/// A filter family.
+pub trait Family: Structure {
+    /// Its kind of band.
+    fn passes(&self) -> Passes;
+
+    /// Its commented starter order, an invented scenario.
+    fn starter(&self) -> &'static str;
+
+    /// Least and greatest degree it draws.
+    fn degrees(&self) -> (usize, usize);
+
+    /// The closed-form dimension set of a degree.
+    ///
+    /// # Errors
+    /// `coupling-out-of-reach`, `impedance-out-of-reach`: no geometry on this laminate gives the impedances.
+    fn first_guess(&self, order: &Order, degree: usize) -> Outcome<Dimensions>;
+
+    /// The directions in which refinement moves the set, symmetric partners together.
+    fn knobs(&self, set: &Dimensions) -> Vec<Knob>;
+}
+
+/// One direction of refinement: a number `x` that moves several dimensions at once.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Knob {
+    /// What it tunes: `coupling 2`, `resonator 1`.
+    pub about: String,
+    /// Dimension index, and how far it moves.
+    pub moves: Vec<(usize, Moves)>,
+    /// Greatest |x| of one step of refinement.
+    pub greatest_step: f64,
+}
+
+/// How a dimension follows a knob.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum Moves {
+    /// value * exp(rate * x).
+    Relative(f64),
+    /// value + metres * x.
+    Absolute(f64),
+}
+
+/// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
+pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled];
+
+/// The family an order names.
+///
+/// # Errors
+/// `family-unknown`; orders read from a file have been checked already.
+pub fn of(order: &Order) -> Result<&'static dyn Family, Problem> {
+    let name = &order.filter.family;
+    FAMILIES.iter().find(|family| family.name() == name).copied().ok_or_else(|| {
+        let known: Vec<&str> = FAMILIES.iter().map(|family| family.name()).collect();
+        Problem::error(
+            "family-unknown",
+            Place::Key("filter.family".into()),
+            format!("no family is called \"{name}\""),
+            format!("known are: {}", known.join(", ")),
+        )
+    })
+}
+
+/// What the order room must know of each family.
+pub fn keys() -> Vec<FamilyKeys> {
+    FAMILIES.iter().map(|f| FamilyKeys { name: f.name(), passes: f.passes(), degrees: f.degrees(), keys: f.keys() }).collect()
+}

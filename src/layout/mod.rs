@@ -1,6 +1,8 @@
 //! The dimension set assembled into parts joined at nodes; neighbours share coordinates.
 
-use crate::base::{Nm, Point};
+use crate::base::Nm;
+use crate::base::Point;
+use crate::order::LaunchShape;
 
 /// The mouth of a joint: the two corners of the strip's end, rounded once. Seen looking out of the first part that names it,
 /// `left` is on the left hand.
@@ -41,10 +43,12 @@ pub enum Part {
     OpenEnd,
     /// A step in width; no length. Two nodes, one mouth within the other's.
     Step,
-    /// A launch at the board's edge. One node: the reference plane where the feed begins. The order says which class.
+    /// A launch at the board's edge. One node: the reference plane where the feed begins.
     Launch {
         /// 1 or 2.
         port: usize,
+        /// Its copper.
+        shape: LaunchShape,
     },
 }
 
@@ -72,4 +76,14 @@ pub struct Layout {
     pub turn_deg: f64,
     /// How many nets the copper of the circuit must form, ports included.
     pub expected_nets: usize,
+}
+
+impl Layout {
+    /// The launch of a port (1 or 2) as drawn.
+    pub fn launch(&self, port: usize) -> Option<&LaunchShape> {
+        self.parts.iter().find_map(|placed| match &placed.part {
+            Part::Launch { port: number, shape } if *number == port => Some(shape),
+            _ => None,
+        })
+    }
 }

@@ -48,8 +48,33 @@ impl AsBuilt {
         }
     }
 
+    /// Frequency times dielectric thickness in GHz mm, the measure of dispersion in the published laws.
+    pub fn normalised_frequency_ghz_mm(&self, f_hz: f64) -> f64 {
+        f_hz * self.thickness_m * 1e-6
+    }
+
     /// The same board without loss.
     pub fn without_loss(&self) -> AsBuilt {
         AsBuilt { lossless: true, ..self.clone() }
+    }
+}
+
+#[cfg(test)]
+impl AsBuilt {
+    /// An isotropic board for tests: 0.762 mm, copper of `copper_thickness_m`, square edges, smooth, with loss.
+    pub(crate) fn for_tests(permittivity: f64, copper_thickness_m: f64) -> AsBuilt {
+        AsBuilt {
+            permittivity,
+            in_plane_permittivity: permittivity,
+            loss_tangent: 1e-3,
+            thickness_m: 0.762e-3,
+            copper_thickness_m,
+            undercut_m: 0.0,
+            roughness_m: 0.0,
+            conductivity_s_per_m: 5.8e7,
+            lid_m: None,
+            widening_m: 0.0,
+            lossless: false,
+        }
     }
 }

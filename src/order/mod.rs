@@ -1,5 +1,22 @@
 //! What is wanted: the order, valid by construction, every default resolved and recorded.
 
+mod board;
+mod classes;
+mod laminate;
+mod launch;
+mod read;
+mod requirement;
+mod shop;
+mod source;
+mod table;
 mod types;
+mod write;
 
+pub use classes::{Classes, LaminateClass};
+pub use read::{OWN_CLASS, read};
+pub(crate) use read::{finish, read_into};
+pub use source::{LARGEST_FILE, Source};
+pub use table::{Context, MOST_PROBLEMS, Size, Table, kind_of, nearest, parse};
 pub use types::*;
+pub use write::write;
+pub(crate) use write::{plain_number, quoted, write_with_degree};

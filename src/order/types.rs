@@ -57,8 +57,8 @@ pub struct Filter {
 /// A value of a family's own key.
 #[derive(Clone, Debug, PartialEq)]
 pub enum OwnValue {
-    /// A quantity in SI.
-    Number(f64),
+    /// A quantity in SI, and what it measures.
+    Number(f64, crate::base::Dimensionality),
     /// true or false.
     Flag(bool),
     /// One of the words the family allows.

@@ -1,1 +1,264 @@
-//! (room under construction)
+//! From response back to dimensions: the network in the loop moves the set until the lossless passband is the prototype's.
+
+mod degree;
+mod least_squares;
+mod passband;
+
+use crate::base::Nm;
+use crate::base::Place;
+use crate::base::Problem;
+use crate::dimensions::Dimensions;
+use crate::family::Family;
+use crate::family::Knob;
+use crate::family::Moves;
+use crate::line::AsBuilt;
+use crate::line::Book;
+use crate::network::Circuit;
+use crate::network::Planes;
+use crate::order::Band;
+use crate::order::ResponseShape;
+pub use degree::{Chosen, synthesize};
+use least_squares::minimize;
+pub use passband::{Goal, Miss, Passband};
+
+/// Iterations of the first stage, which fits |S11|^2 over the band to the prototype's.
+const FIT_ITERATIONS: usize = 25;
+/// Iterations of one round of the second stage, which levels the ripple, and rounds of both stages.
+const LEVEL_ITERATIONS: usize = 8;
+const ROUNDS: usize = 4;
+/// Sample points of the first stage per degree, over a quarter of the bandwidth more than the band on each side.
+const SAMPLES_PER_DEGREE: usize = 7;
+const SAMPLE_REACH: f64 = 1.25;
+/// Finite-difference step of a knob: large against the rounding of the layout to 1 nm, small against the curvature.
+const KNOB_STEP: f64 = 1e-3;
+/// A tenth of what is allowed: nothing that can be etched is gained by more.
+const ENOUGH: f64 = 0.1;
+/// A neighbour on the grid is worth taking from this gain on, in parts of the allowed miss.
+const LEAST_GAIN: f64 = 2e-3;
+/// Passes over all dimensions that try their neighbours on the grid.
+const NEIGHBOUR_PASSES: usize = 3;
+
+/// What refinement reached.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Refined {
+    /// The set on the shop grid, each value with its first guess and corrections.
+    pub dimensions: Dimensions,
+    /// Distance of the lossless passband from the prototype's before snapping.
+    pub before_snapping: Miss,
+    /// And after.
+    pub after_snapping: Miss,
+}
+
+/// The passband an order asks for at a degree.
+///
+/// # Errors
+/// `band-not-refined` for orders without a passband between two edges.
+pub fn goal(set: &Dimensions) -> Result<Goal, Problem> {
+    match set.order.filter.band {
+        Band::BandPass { from_hz, to_hz } => Ok(Goal { edges_hz: [from_hz, to_hz], degree: set.degree, shape: set.order.filter.response }),
+        _ => Err(Problem::error(
+            "band-not-refined",
+            Place::Key("filter.passband".into()),
+            "only passbands between two edges are refined",
+            "give passband = [from, to]",
+        )),
+    }
+}
+
+/// Distance of a set's lossless passband from the prototype's.
+///
+/// # Errors
+/// `passband-lost` when the response has no passband near the ordered one; problems of the layout.
+pub fn miss(family: &dyn Family, set: &Dimensions) -> Result<Miss, Vec<Problem>> {
+    let book = Book::new(AsBuilt::nominal(&set.order).without_loss());
+    miss_with(family, set, &goal(set).map_err(|p| vec![p])?, &book)
+}
+
+fn miss_with(family: &dyn Family, set: &Dimensions, goal: &Goal, book: &Book) -> Result<Miss, Vec<Problem>> {
+    let circuit = circuit(family, set, book)?;
+    Passband::of(&circuit, goal).map(|passband| Miss::of(&passband, goal)).ok_or_else(|| vec![passband_lost()])
+}
+
+fn passband_lost() -> Problem {
+    Problem::error(
+        "passband-lost",
+        Place::Key("filter.passband".into()),
+        "the response of these dimensions has no passband within half a bandwidth of the ordered one",
+        "undo the last edit of the dimensions, or order a band this laminate can make",
+    )
+}
+
+fn circuit(family: &dyn Family, set: &Dimensions, book: &Book) -> Result<Circuit, Vec<Problem>> {
+    let layout = family.layout(set)?;
+    Circuit::new(&layout, book, set.order.filter.ports_ohm, Planes::Feed).map_err(|p| vec![p])
+}
+
+/// Moves the set along the family's knobs until its lossless passband is the prototype's, then snaps it to the shop grid.
+///
+/// # Errors
+/// `passband-not-reached` when the goal is missed before snapping: the message says by how much; problems of the layout.
+pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Problem>> {
+    let goal = goal(guess).map_err(|p| vec![p])?;
+    let book = Book::new(AsBuilt::nominal(&guess.order).without_loss());
+    let knobs = family.knobs(guess);
+    let mut search = Search { family, guess, goal, book: &book, knobs: &knobs };
+    let x = search.run();
+    let mut refined = guess.clone();
+    apply(&knobs, &x, &mut refined);
+    for (moved, start) in refined.list.iter_mut().zip(&guess.list) {
+        let amount_m = moved.value_m - start.value_m;
+        if amount_m != 0.0 {
+            moved.corrections_m.push(("refined".into(), amount_m));
+        }
+    }
+    let before_snapping = miss_with(family, &refined, &goal, &book)?;
+    if !before_snapping.is_met() {
+        return Err(vec![not_reached(&before_snapping, &goal)]);
+    }
+    let dimensions = snap(family, &refined, &goal, &book);
+    let after_snapping = miss_with(family, &dimensions, &goal, &book)?;
+    Ok(Refined { dimensions, before_snapping, after_snapping })
+}
+
+fn not_reached(miss: &Miss, goal: &Goal) -> Problem {
+    Problem::error(
+        "passband-not-reached",
+        Place::Key("filter.passband".into()),
+        format!(
+            "the best these dimensions do is edges off by {:+.2} and {:+.2} MHz and a return loss {:+.2} dB from the prototype's; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB",
+            miss.edges_hz[0] / 1e6,
+            miss.edges_hz[1] / 1e6,
+            miss.return_loss_db,
+            (0.01 * goal.width_hz()).min(0.003 * goal.edges_hz[0]) / 1e6,
+        ),
+        "make the band narrower, the degree lower or the laminate thinner",
+    )
+}
+
+fn apply(knobs: &[Knob], x: &[f64], set: &mut Dimensions) {
+    for (knob, x) in knobs.iter().zip(x) {
+        for (index, moves) in &knob.moves {
+            let value_m = &mut set.list[*index].value_m;
+            match moves {
+                Moves::Relative(rate) => *value_m *= (rate * x).exp(),
+                Moves::Absolute(metres) => *value_m += metres * x,
+            }
+        }
+    }
+}
+
+struct Search<'a> {
+    family: &'a dyn Family,
+    guess: &'a Dimensions,
+    goal: Goal,
+    book: &'a Book,
+    knobs: &'a [Knob],
+}
+
+impl Search<'_> {
+    fn circuit(&self, x: &[f64]) -> Option<Circuit> {
+        let mut set = self.guess.clone();
+        apply(self.knobs, x, &mut set);
+        circuit(self.family, &set, self.book).ok()
+    }
+
+    /// Alternates fitting and levelling until the goal is met with room to spare, and returns the best knobs seen.
+    fn run(&mut self) -> Vec<f64> {
+        let count = self.knobs.len();
+        let steps = vec![KNOB_STEP; count];
+        let greatest: Vec<f64> = self.knobs.iter().map(|k| k.greatest_step).collect();
+        let mut x = vec![0.0; count];
+        let mut best = (f64::INFINITY, x.clone());
+        for round in 0..ROUNDS {
+            if round == 0 || best.0 > 1.0 {
+                minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, 0.3 * 3f64.powi(round as i32)));
+                self.keep(&x, &mut best);
+            }
+            minimize(&mut x, &steps, &greatest, LEVEL_ITERATIONS, |x| self.level(x));
+            self.keep(&x, &mut best);
+            if best.0 < ENOUGH {
+                break;
+            }
+        }
+        best.1
+    }
+
+    fn keep(&self, x: &[f64], best: &mut (f64, Vec<f64>)) {
+        let ratio = self.circuit(x).and_then(|c| Passband::of(&c, &self.goal)).map(|p| Miss::of(&p, &self.goal).worst_ratio);
+        if let Some(ratio) = ratio.filter(|ratio| *ratio < best.0) {
+            *best = (ratio, x.to_vec());
+        }
+    }
+
+    /// First stage: |S11|^2 against the prototype's over the band and a little outside; `floor` in edge levels tempers the weight of the ripple.
+    fn fit(&self, x: &[f64], floor: f64) -> Option<Vec<f64>> {
+        let points = SAMPLES_PER_DEGREE * self.goal.degree + 11;
+        let at: Vec<f64> = (0..points).map(|i| SAMPLE_REACH * (2.0 * i as f64 / (points - 1) as f64 - 1.0)).collect();
+        let f: Vec<f64> = at.iter().map(|x| self.goal.frequency_hz(*x)).collect();
+        let response = self.circuit(x)?.sweep(&f);
+        let floor = floor * self.goal.edge_reflection();
+        Some(
+            at.iter()
+                .zip(&response.s)
+                .map(|(x, s)| {
+                    let wanted = self.goal.reflection(*x);
+                    (s[0].norm_sqr() - wanted) / (wanted + floor)
+                })
+                .collect(),
+        )
+    }
+
+    /// Second stage: edges in place, every ripple maximum at the edge level, every minimum a zero. `None` while the ripple has not its
+    /// full count of lobes.
+    fn level(&self, x: &[f64]) -> Option<Vec<f64>> {
+        let circuit = self.circuit(x)?;
+        let passband = Passband::of(&circuit, &self.goal)?;
+        let edges = [0, 1].map(|i| (passband.edges_hz[i] - self.goal.edges_hz[i]) / (0.01 * self.goal.width_hz()));
+        if self.goal.shape == ResponseShape::MaximallyFlat {
+            // Flatness is held by the fit; here only the edges are brought in, the rest of the band keeping its weight.
+            return Some(edges.into_iter().chain(self.fit(x, 1.0)?).collect());
+        }
+        if passband.minima.len() != self.goal.degree || passband.maxima.len() + 1 != self.goal.degree {
+            return None;
+        }
+        let level = self.goal.edge_reflection();
+        let heights = passband.maxima.iter().map(|(_, r)| 10.0 * (r / level).ln());
+        let zeros: Vec<f64> = passband.minima.iter().map(|(f, _)| *f).collect();
+        let depths: Vec<f64> = circuit.sweep(&zeros).s.iter().flat_map(|s| [s[0].re, s[0].im]).map(|v| 3.0 * v / level.sqrt()).collect();
+        Some(edges.into_iter().chain(heights).chain(depths).collect())
+    }
+}
+
+/// Snaps to the shop grid once, then tries each dimension's neighbours on the grid and keeps what lessens the miss.
+fn snap(family: &dyn Family, refined: &Dimensions, goal: &Goal, book: &Book) -> Dimensions {
+    let ratio = |set: &Dimensions| miss_with(family, set, goal, book).map_or(f64::INFINITY, |miss| miss.worst_ratio);
+    let mut snapped = refined.on_grid();
+    let mut best = ratio(&snapped);
+    let grid_m = Nm::from_m(refined.order.shop.grid_m).m();
+    for _ in 0..NEIGHBOUR_PASSES {
+        if best < ENOUGH {
+            break;
+        }
+        let before = best;
+        for index in 0..snapped.list.len() {
+            for step_m in [grid_m, -grid_m] {
+                let mut neighbour = snapped.clone();
+                let value_m = Nm::from_m(neighbour.list[index].value_m + step_m).m();
+                let dimension = &mut neighbour.list[index];
+                if let Some(grid) = dimension.corrections_m.last_mut() {
+                    grid.1 += value_m - dimension.value_m;
+                }
+                dimension.value_m = value_m;
+                let reached = ratio(&neighbour);
+                if reached < best - LEAST_GAIN {
+                    (best, snapped) = (reached, neighbour);
+                    break;
+                }
+            }
+        }
+        if best >= before {
+            break;
+        }
+    }
+    snapped
+}

@@ -1,7 +1,7 @@
 //! How fast is the cross-section, beside its limits and beside the slow, plain judge on the same case? And how accurate, over shape and permittivity?
 //!
 //! `cargo bench --bench section`; times are the best of many on one thread, in the build as it is by default.
-#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, clippy::needless_range_loop, missing_docs)]
 
 #[path = "../section/reference.rs"]
 mod reference;
@@ -14,11 +14,11 @@ use stripwright::line::section::{CopperOf, CrossSection, HousingOf, LayerOf, Sta
 const H: f64 = 0.508e-3;
 const COPPER: CopperOf = CopperOf { thickness_m: 35e-6, undercut_m: 0.0 };
 
-fn best(count: usize, mut run: impl FnMut(usize)) -> f64 {
+fn best<T>(count: usize, mut run: impl FnMut(usize) -> T) -> f64 {
     let mut best = f64::INFINITY;
     for index in 0..count {
         let start = Instant::now();
-        run(index);
+        black_box(run(index));
         best = best.min(start.elapsed().as_secs_f64());
     }
     best
@@ -35,28 +35,24 @@ fn main() {
     let layers = vec![LayerOf::isotropic(3.0, 0.001, H)];
     print(
         "stackup: first pair, tables included",
-        best(30, |_| drop(black_box(Stackup::new(&layers, COPPER, None).unwrap().symmetric_pair(1.2e-3, 0.2e-3)))),
+        best(30, |_| Stackup::new(&layers, COPPER, None).unwrap().symmetric_pair(1.2e-3, 0.2e-3)),
         None,
     );
     let stackup = Stackup::new(&layers, COPPER, None).unwrap();
     let vary = |index: usize| 1.0 + 1e-6 * index as f64;
     print(
         "pair, thick: even and odd, dielectric and air",
-        best(3000, |i| drop(black_box(stackup.symmetric_pair_anew(1.2e-3 * vary(i), 0.2e-3)))),
+        best(3000, |i| stackup.symmetric_pair_anew(1.2e-3 * vary(i), 0.2e-3)),
         Some(0.3e-3),
     );
-    print("pair asked for again", best(3000, |_| drop(black_box(stackup.symmetric_pair(1.2e-3, 0.2e-3)))), None);
+    print("pair asked for again", best(3000, |_| stackup.symmetric_pair(1.2e-3, 0.2e-3)), None);
     let trapezoid = Stackup::new(&layers, CopperOf { thickness_m: 35e-6, undercut_m: 10e-6 }, Some(6.6e-3)).unwrap();
-    print(
-        "pair, trapezoid under a lid",
-        best(3000, |i| drop(black_box(trapezoid.symmetric_pair_anew(1.2e-3 * vary(i), 0.2e-3)))),
-        Some(0.3e-3),
-    );
+    print("pair, trapezoid under a lid", best(3000, |i| trapezoid.symmetric_pair_anew(1.2e-3 * vary(i), 0.2e-3)), Some(0.3e-3));
     let mut worst: f64 = 0.0;
     let mut sum = 0.0;
     let wanted = [(70.61, 39.24), (56.64, 44.77), (82.9367, 37.6092), (61.16, 42.3705), (58.1839, 43.8661), (52.0, 48.0)];
     for (even, odd) in wanted {
-        let seconds = best(50, |i| drop(black_box(stackup.pair_for(even * vary(i + 1), odd, None).unwrap())));
+        let seconds = best(50, |i| stackup.pair_for(even * vary(i + 1), odd, None).unwrap());
         worst = worst.max(seconds);
         sum += seconds;
     }
@@ -65,13 +61,13 @@ fn main() {
     let (w, s) = stackup.pair_for(70.61, 39.24, None).unwrap();
     print(
         "(Z0e, Z0o) to (w, s), from a neighbour 1 % away",
-        best(50, |i| drop(black_box(stackup.pair_for(71.3 * vary(i), 39.4, Some((w, s))).unwrap()))),
+        best(50, |i| stackup.pair_for(71.3 * vary(i), 39.4, Some((w, s))).unwrap()),
         Some(1.5e-3),
     );
-    print("Z0 to w", best(50, |i| drop(black_box(stackup.width_for(50.0 * vary(i), None).unwrap()))), None);
+    print("Z0 to w", best(50, |i| stackup.width_for(50.0 * vary(i), None).unwrap()), None);
     let strips: Vec<StripOf> = (0..9).map(|i| StripOf { width_m: (1.0 + 0.1 * i as f64) * 1e-3, gap_before_m: 0.5e-3 }).collect();
-    print("array of 9 unequal strips", best(60, |_| drop(black_box(stackup.array(&strips).unwrap()))), Some(30e-3));
-    print("loss of a pair", best(20, |i| drop(black_box(stackup.pair_loss(1.2e-3 * vary(i), 0.2e-3).unwrap()))), None);
+    print("array of 9 unequal strips", best(60, |_| stackup.array(&strips).unwrap()), Some(30e-3));
+    print("loss of a pair", best(20, |i| stackup.pair_loss(1.2e-3 * vary(i), 0.2e-3).unwrap()), None);
 
     let section = CrossSection::pair(layers, COPPER, 1.2e-3, 0.2e-3, HousingOf::default());
     let fast = stackup.symmetric_pair(1.2e-3, 0.2e-3).unwrap();

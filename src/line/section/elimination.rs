@@ -112,10 +112,10 @@ mod tests {
             let mut solved = wanted.clone();
             assert!(solve_in_place(&mut matrix, &mut solved));
             for (x, right) in solved.iter().zip(&wanted) {
-                for row in 0..size {
-                    let sum: f64 = (0..size).map(|j| entry(row, j) * x[j]).sum();
+                for (row, right) in right.iter().enumerate() {
+                    let sum: f64 = x.iter().enumerate().map(|(j, x)| entry(row, j) * x).sum();
                     // Rounding of some fifty products of order one.
-                    assert!((sum - right[row]).abs() < 1e-12, "size {size} row {row}");
+                    assert!((sum - right).abs() < 1e-12, "size {size} row {row}");
                 }
             }
         }

@@ -1,0 +1,86 @@
+//! `dimension`: the dimension set of an order.
+
+use std::path::PathBuf;
+
+use super::Ending;
+use super::Voice;
+use super::read::Ordered;
+use super::results;
+use super::table;
+use crate::base::Place;
+use crate::base::Problem;
+use crate::dimensions;
+use crate::refine::Chosen;
+
+/// Synthesizes the dimension set of an order: each value with its first guess, the electrical target it serves and every correction
+#[derive(clap::Args, Debug)]
+pub struct Arguments {
+    /// The order
+    order: PathBuf,
+    /// Where to write it; to stdout without (refuses to overwrite)
+    file: Option<PathBuf>,
+}
+
+/// Runs the command.
+pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
+    let ordered = match Ordered::open(&arguments.order, voice) {
+        Ok(ordered) => ordered,
+        Err(ending) => return ending,
+    };
+    let chosen = match crate::dimension(&ordered.order) {
+        Ok(chosen) => chosen,
+        Err(problems) => return ordered.refuse(&problems, voice),
+    };
+    let text = dimensions::write(&chosen.refined.dimensions);
+    let written = match &arguments.file {
+        Some(path) => {
+            let written = std::fs::OpenOptions::new()
+                .write(true)
+                .create_new(true)
+                .open(path)
+                .and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
+            if let Err(error) = written {
+                let help = "choose another file name or folder; nothing is overwritten";
+                return ordered
+                    .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+            }
+            voice.say(&format!("wrote {}", path.display()));
+            Ending::Done
+        }
+        None if voice.json => table::print_json(&json(&chosen)),
+        None => results(&text),
+    };
+    say_reached(&chosen, voice);
+    written
+}
+
+/// One line each on the degree, on what refinement reached and on what the grid left.
+pub fn say_reached(chosen: &Chosen, voice: Voice) {
+    if let Some(reason) = &chosen.reason {
+        voice.say(reason);
+    }
+    let line = |miss: &crate::refine::Miss| {
+        let [low, high] = miss.edges_hz.map(|e| e / 1e6);
+        format!("edges {low:+.2} and {high:+.2} MHz, return loss {:+.2} dB from the prototype's", miss.return_loss_db)
+    };
+    voice.say(&format!("refined: lossless {}", line(&chosen.refined.before_snapping)));
+    voice.say(&format!("on the shop grid: lossless {}", line(&chosen.refined.after_snapping)));
+}
+
+fn json(chosen: &Chosen) -> serde_json::Value {
+    let miss = |m: &crate::refine::Miss| serde_json::json!({ "edges_hz": m.edges_hz, "return_loss_db": m.return_loss_db });
+    let set = &chosen.refined.dimensions;
+    let list: Vec<_> = set
+        .list
+        .iter()
+        .map(|d| {
+            let serves: serde_json::Map<_, _> = d.serves.iter().map(|(name, value)| (name.clone(), (*value).into())).collect();
+            let corrections: Vec<_> = d.corrections_m.iter().map(|(name, amount)| serde_json::json!({ "correction": name, "amount_m": amount })).collect();
+            serde_json::json!({ "name": d.name, "value_m": d.value_m, "first_guess_m": d.first_guess_m, "serves": serves, "corrections": corrections })
+        })
+        .collect();
+    serde_json::json!({
+        "name": set.order.name, "degree": set.degree, "reason": chosen.reason,
+        "before_snapping": miss(&chosen.refined.before_snapping), "after_snapping": miss(&chosen.refined.after_snapping), "dimensions": list,
+    })
+}

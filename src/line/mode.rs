@@ -1,0 +1,86 @@
+//! One quasi-TEM mode of a line: impedance, effective permittivity, and the losses of its copper and laminate.
+
+use std::f64::consts::PI;
+
+use super::AsBuilt;
+use super::C_M_PER_S;
+use super::ETA0_OHM;
+use super::statics::StaticMode;
+use super::surface::hammerstad_roughness_factor;
+use super::surface::surface_resistance_ohm;
+
+/// A mode at one frequency.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Mode {
+    /// Characteristic impedance; of each strip to ground for the modes of a pair.
+    pub z0_ohm: f64,
+    /// Effective permittivity: square of the slowing against free space.
+    pub eps_eff: f64,
+    /// Attenuation by the copper.
+    pub conductor_np_per_m: f64,
+    /// Attenuation by the laminate.
+    pub dielectric_np_per_m: f64,
+}
+
+impl Mode {
+    /// Whole attenuation.
+    pub fn alpha_np_per_m(&self) -> f64 {
+        self.conductor_np_per_m + self.dielectric_np_per_m
+    }
+
+    /// Phase constant at the frequency the mode was made for.
+    pub fn beta_rad_per_m(&self, f_hz: f64) -> f64 {
+        2.0 * PI * f_hz * self.eps_eff.sqrt() / C_M_PER_S
+    }
+
+    /// Guided wavelength at the frequency the mode was made for.
+    pub fn wavelength_m(&self, f_hz: f64) -> f64 {
+        C_M_PER_S / (f_hz * self.eps_eff.sqrt())
+    }
+}
+
+/// What the losses of every mode on a board have in common.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Losses {
+    lossless: bool,
+    conductivity_s_per_m: f64,
+    roughness_m: f64,
+    er: f64,
+    loss_tangent: f64,
+}
+
+impl Losses {
+    pub(super) fn new(board: &AsBuilt) -> Losses {
+        Losses {
+            lossless: board.lossless,
+            conductivity_s_per_m: board.conductivity_s_per_m,
+            roughness_m: board.roughness_m,
+            er: board.permittivity,
+            loss_tangent: board.loss_tangent,
+        }
+    }
+
+    /// The mode at a frequency.
+    ///
+    /// Copper: H. A. Wheeler's incremental-inductance rule ("Formulas for the skin effect", Proc. IRE 30, 1942), alpha = Rs K / (2 Z0 eta0) dZair/dn, all
+    /// walls of strip and ground receding; K the roughness factor, taken for the whole surface although only the laminate side is rough, so on the safe side.
+    /// Valid where the copper is some skin depths thick; towards zero frequency the loss goes to zero instead of to the direct-current resistance.
+    /// Laminate: alpha = k0 er (eps_eff - 1) tan d / (2 sqrt(eps_eff) (er - 1)), the filling factor of each mode (Matthaei, Young, Jones 1964; any textbook).
+    pub(super) fn mode(&self, f_hz: f64, statics: &StaticMode, eps_eff: f64, impedance_factor: f64) -> Mode {
+        let z0_ohm = statics.z0_ohm() * impedance_factor;
+        if self.lossless {
+            return Mode { z0_ohm, eps_eff, conductor_np_per_m: 0.0, dielectric_np_per_m: 0.0 };
+        }
+        let resistance_ohm = surface_resistance_ohm(f_hz, self.conductivity_s_per_m)
+            * hammerstad_roughness_factor(f_hz, self.conductivity_s_per_m, self.roughness_m);
+        let k0 = 2.0 * PI * f_hz / C_M_PER_S;
+        // The share of the energy in the laminate; at er = 1 the ratio has a limit that no laminate asks for.
+        let share = if self.er > 1.0 { self.er * (eps_eff - 1.0) / (self.er - 1.0) } else { 0.0 };
+        Mode {
+            z0_ohm,
+            eps_eff,
+            conductor_np_per_m: resistance_ohm * statics.recession_ohm_per_m / (2.0 * z0_ohm * ETA0_OHM),
+            dielectric_np_per_m: k0 * share * self.loss_tangent / (2.0 * eps_eff.sqrt()),
+        }
+    }
+}

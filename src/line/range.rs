@@ -1,0 +1,141 @@
+//! Is a strip or pair inside what the sources of its formulas cover?
+
+use super::AsBuilt;
+use super::C_M_PER_S;
+use super::Pair;
+use super::Strip;
+use crate::base::Place;
+use crate::base::Problem;
+
+const SINGLE_SOURCE: &str = "Hammerstad & Jensen 1980; Kirschning & Jansen 1982";
+const PAIR_SOURCE: &str = "Kirschning & Jansen 1984";
+/// Height over wavelength up to which the single-strip dispersion is claimed (Kirschning & Jansen 1982).
+const SINGLE_HEIGHT_IN_WAVELENGTHS: f64 = 0.13;
+/// Frequency times height up to which the coupled dispersion is claimed (Kirschning & Jansen 1984), GHz mm.
+const PAIR_GHZ_MM: f64 = 25.0;
+/// Thickness over height up to which the single strip was seen within 0.25 % in impedance and 0.5 % in effective permittivity.
+const SINGLE_THICKNESS: f64 = 0.1;
+/// Thickness over height up to which the pair's coupling was seen within about 2.5 %, gaps from 0.2 heights up.
+const PAIR_THICKNESS: f64 = 0.07;
+/// Gap over thickness below which side walls facing each other carry a good part of the odd mode, which the effective width does not know.
+const PAIR_GAP_IN_THICKNESSES: f64 = 3.0;
+
+impl Strip {
+    /// Frequency (Hz) up to which its dispersion is claimed by the source.
+    pub fn trusted_up_to_hz(&self) -> f64 {
+        SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m
+    }
+
+    /// Warnings (`line-model-range`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
+    pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
+        let mut range = Range::new(&self.board, SINGLE_SOURCE);
+        let h = self.board.thickness_m;
+        range.inside("width over thickness of the laminate", self.built_width_m / h, 0.01, 100.0);
+        range.inside("permittivity", self.board.permittivity, 1.0, 20.0);
+        range.inside("copper thickness over thickness of the laminate", self.board.copper_thickness_m / h, 0.0, SINGLE_THICKNESS);
+        range.up_to(up_to_hz, self.trusted_up_to_hz());
+        range.board(self.width_m);
+        range.problems
+    }
+}
+
+impl Pair {
+    /// Frequency (Hz) up to which its dispersion is claimed by the source.
+    pub fn trusted_up_to_hz(&self) -> f64 {
+        PAIR_GHZ_MM * 1e6 / self.board.thickness_m
+    }
+
+    /// Warnings (`line-model-range`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
+    pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
+        let mut range = Range::new(&self.board, PAIR_SOURCE);
+        let (h, t) = (self.board.thickness_m, self.board.copper_thickness_m);
+        range.inside("width over thickness of the laminate", self.built_width_m / h, 0.1, 10.0);
+        range.inside("gap over thickness of the laminate", self.built_gap_m / h, 0.1, 10.0);
+        range.inside("permittivity", self.board.permittivity, 1.0, 18.0);
+        range.inside("copper thickness over thickness of the laminate", t / h, 0.0, PAIR_THICKNESS);
+        if t > 0.0 {
+            range.inside("gap over copper thickness", self.built_gap_m / t, PAIR_GAP_IN_THICKNESSES, f64::INFINITY);
+        }
+        range.up_to(up_to_hz, self.trusted_up_to_hz());
+        range.board(self.width_m);
+        range.problems
+    }
+}
+
+struct Range<'a> {
+    board: &'a AsBuilt,
+    source: &'static str,
+    problems: Vec<Problem>,
+}
+
+impl Range<'_> {
+    fn new<'a>(board: &'a AsBuilt, source: &'static str) -> Range<'a> {
+        Range { board, source, problems: Vec::new() }
+    }
+
+    fn warn(&mut self, code: &'static str, message: String, help: &str) {
+        self.problems.push(Problem::warning(code, Place::Whole, message, help).with_source(self.source));
+    }
+
+    fn inside(&mut self, what: &str, value: f64, low: f64, high: f64) {
+        // Not "value < low || value > high": not-a-number must be reported too.
+        if !(low..=high).contains(&value) {
+            let allowed = if high.is_finite() { format!("{low} to {high}") } else { format!("{low} or more") };
+            self.warn(
+                "line-model-range",
+                format!("{what} is {value:.4}; the model covers {allowed}"),
+                "trust it less: measure a test board, or choose another laminate or size",
+            );
+        }
+    }
+
+    fn up_to(&mut self, up_to_hz: f64, trusted_hz: f64) {
+        if up_to_hz > trusted_hz {
+            let message = format!(
+                "used up to {:.4} GHz; on this laminate the dispersion is covered up to {:.4} GHz",
+                up_to_hz * 1e-9,
+                trusted_hz * 1e-9
+            );
+            self.warn("line-model-range", message, "take a thinner laminate");
+        }
+    }
+
+    fn board(&mut self, width_m: f64) {
+        if let Some(lid_m) = self.board.lid_m {
+            let message =
+                format!("the lid {:.3} mm above the laminate is not in this model; it lowers impedances and weak couplings", lid_m * 1e3);
+            self.warn("lid-not-modelled", message, "keep the lid ten or more laminate thicknesses away");
+        }
+        let foot_m = width_m + self.board.widening_m;
+        if foot_m <= 2.0 * self.board.undercut_m {
+            let message = format!(
+                "a strip {:.4} mm wide at its foot has no top left: the etch undercuts each side by {:.4} mm",
+                foot_m * 1e3,
+                self.board.undercut_m * 1e3
+            );
+            self.warn("strip-top-vanishes", message, "draw it wider, or take thinner copper");
+        }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn warns_outside_only() {
+        let board = AsBuilt::for_tests(3.0, 35e-6);
+        assert_eq!(Strip::new(&board, 1.9e-3).problems(10e9), vec![]);
+        assert_eq!(Pair::new(&board, 1.9e-3, 0.3e-3).problems(10e9), vec![]);
+        let codes = |problems: Vec<Problem>| problems.iter().map(|p| p.code).collect::<Vec<_>>();
+        assert_eq!(codes(Strip::new(&board, 0.1).problems(60e9)), ["line-model-range", "line-model-range"]);
+        let lid = AsBuilt { lid_m: Some(3e-3), undercut_m: 20e-6, ..board };
+        assert_eq!(codes(Strip::new(&lid, 30e-6).problems(1e9)), ["lid-not-modelled", "strip-top-vanishes"]);
+        // Gap below a tenth of the height and below three copper thicknesses.
+        assert_eq!(
+            codes(Pair::new(&AsBuilt::for_tests(3.0, 35e-6), 1.9e-3, 0.05e-3).problems(1e9)),
+            ["line-model-range", "line-model-range"]
+        );
+        assert_eq!(codes(Pair::new(&AsBuilt::for_tests(3.0, 35e-6), f64::NAN, 0.3e-3).problems(1e9)).len(), 1);
+    }
+}

@@ -1,0 +1,44 @@
+//! What is at a step in width: a shunt capacitance and a series inductance on each side.
+
+use super::Strip;
+
+/// Elements of a step, from the wide side to the narrow: `wide_inductance_h`, then `capacitance_f` to ground, then `narrow_inductance_h`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Step {
+    /// At the plane of the step.
+    pub capacitance_f: f64,
+    /// On the side of the wide strip.
+    pub wide_inductance_h: f64,
+    /// On the side of the narrow strip.
+    pub narrow_inductance_h: f64,
+}
+
+/// A symmetric step between two strips on the same board, whichever is wider; zero elements when they are equal.
+///
+/// The capacitance is the open-end extension of the wide strip (Hammerstad's early law) over the width that ends: linear in the difference of widths, so it
+/// has a corner, not a jump, where the wide side changes.
+///
+/// # Valid range
+/// Width ratio up to about 3.5 and er up to about 10, as usually stated; quasi-static (the wide strip well below half a guided wavelength); no accuracy
+/// claimed, regression values only.
+///
+/// # Source
+/// K. C. Gupta, R. Garg, I. Bahl, P. Bhartia, *Microstrip Lines and Slotlines*, 2nd ed. 1996, step in width, after E. Hammerstad, 1981 (from memory).
+pub fn step(one: &Strip, other: &Strip) -> Step {
+    let (wide, narrow) = if one.built_width_m >= other.built_width_m { (one, other) } else { (other, one) };
+    let h_um = wide.board.thickness_m * 1e6;
+    let (eps_wide, eps_narrow) = (wide.static_eps_eff(), narrow.static_eps_eff());
+    let (z_wide, z_narrow) = (wide.static_z0_ohm(), narrow.static_z0_ohm());
+    let u = wide.built_width_m / wide.board.thickness_m;
+    let ends = 1.0 - narrow.built_width_m / wide.built_width_m;
+    let capacitance_pf = 0.00137 * h_um * eps_wide.sqrt() / z_wide * ends * (eps_wide + 0.3) / (eps_wide - 0.258) * (u + 0.264) / (u + 0.8);
+    let inductance_nh = 0.000987 * h_um * (1.0 - z_wide / z_narrow * (eps_wide / eps_narrow).sqrt()).powi(2);
+    // Shared as the inductances per length of the two lines.
+    let (per_length_wide, per_length_narrow) = (z_wide * eps_wide.sqrt(), z_narrow * eps_narrow.sqrt());
+    let wide_share = per_length_wide / (per_length_wide + per_length_narrow);
+    Step {
+        capacitance_f: capacitance_pf * 1e-12,
+        wide_inductance_h: inductance_nh * wide_share * 1e-9,
+        narrow_inductance_h: inductance_nh * (1.0 - wide_share) * 1e-9,
+    }
+}

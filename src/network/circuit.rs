@@ -1,0 +1,304 @@
+//! A layout's parts as scattering blocks on as-built lines: the network that predicts the response.
+
+use std::rc::Rc;
+
+use num_complex::Complex64;
+
+use super::curve::Curves;
+use super::join::JoinPlan;
+use super::join::Scratch;
+use super::response::Method;
+use super::response::Response;
+use crate::base::Nm;
+use crate::base::Place;
+use crate::base::Problem;
+use crate::layout::Layout;
+use crate::layout::Part;
+use crate::line::Book;
+use crate::line::Coplanar;
+use crate::line::Pair;
+use crate::line::Strip;
+use crate::line::open_end;
+use crate::line::step;
+use crate::order::LaunchShape;
+
+/// Reference impedance of every inner joint; any real value gives the same result.
+const INNER_OHM: f64 = 50.0;
+/// Straight pieces that stand for a taper; more changes |S11| by less than 1e-4 on the launches of the embedded classes.
+const TAPER_PIECES: usize = 6;
+/// With fewer frequencies than this the constants are computed at each of them instead of being interpolated.
+const INTERPOLATE_FROM: usize = 48;
+
+/// What one scattering block of the circuit is.
+#[derive(Clone, Debug)]
+enum Block {
+    /// A single strip: index into the strips, length.
+    Line { strip: usize, length_m: f64 },
+    /// A pad between grounds.
+    Coplanar { line: usize, length_m: f64 },
+    /// Two coupled strips, nodes near 1, near 2, far 1, far 2.
+    Pair { pair: usize, length_m: f64 },
+    /// Open end of a strip.
+    OpenEnd { strip: usize },
+    /// Step in width: series inductance either side of a shunt capacitance.
+    Step { first_h: f64, shunt_f: f64, second_h: f64 },
+    /// From the reference impedance of a port to the inner one.
+    Reference { gamma: f64 },
+}
+
+/// Constants of one strip at one frequency: index, impedance, attenuation, conductance and extension of its open end.
+type StripConstants = [f64; 5];
+/// Constants of a pair: even index, impedance, attenuation, then odd.
+type PairConstants = [f64; 6];
+
+/// The circuit of a layout, ready to be evaluated at any frequency.
+pub struct Circuit {
+    plan: JoinPlan,
+    blocks: Vec<Block>,
+    strips: Vec<(Nm, Rc<Strip>)>,
+    pairs: Vec<((Nm, Nm), Rc<Pair>)>,
+    coplanar: Vec<Coplanar>,
+    ports_ohm: [f64; 2],
+    lossless: bool,
+}
+
+/// Whether the launches belong to the response.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Planes {
+    /// Reference planes where launch meets feed; launches left out.
+    Feed,
+    /// Reference planes at the board's edge; each launch is a two-port of its pad and taper.
+    Edge,
+}
+
+impl Circuit {
+    /// Plans the circuit of a layout on the lines of `book`.
+    ///
+    /// # Errors
+    /// `layout-not-joined` when the parts do not form a two-port; `strips-not-modelled` for coupled strips that are not a symmetric pair.
+    pub fn new(layout: &Layout, book: &Book, ports_ohm: [f64; 2], planes: Planes) -> Result<Circuit, Problem> {
+        let mut circuit = Circuit {
+            plan: JoinPlan::new(&[vec![0, 1]], &[0, 1]).ok_or_else(not_joined)?,
+            blocks: Vec::new(),
+            strips: Vec::new(),
+            pairs: Vec::new(),
+            coplanar: Vec::new(),
+            ports_ohm,
+            lossless: book.built().lossless,
+        };
+        let mut nodes: Vec<Vec<usize>> = Vec::new();
+        let mut fresh = layout.nodes.len();
+        let mut external = layout.ports.clone();
+        let width = |node: usize| layout.nodes[node].width();
+        for placed in &layout.parts {
+            let block = match &placed.part {
+                Part::Lines { widths, length, .. } if widths.len() == 1 => {
+                    Block::Line { strip: circuit.strip(book, widths[0]), length_m: length.m() }
+                }
+                Part::Lines { widths, gaps, length } if widths.len() == 2 && widths[0] == widths[1] => {
+                    Block::Pair { pair: circuit.pair(book, widths[0], gaps[0]), length_m: length.m() }
+                }
+                Part::Lines { widths, .. } => {
+                    return Err(Problem::error(
+                        "strips-not-modelled",
+                        Place::Whole,
+                        format!("{} coupled strips of unequal width have no line model here", widths.len()),
+                        "use sections of two equal strips",
+                    ));
+                }
+                Part::OpenEnd => Block::OpenEnd { strip: circuit.strip(book, width(placed.nodes[0])) },
+                Part::Step => step_block(&book.strip(width(placed.nodes[0])), &book.strip(width(placed.nodes[1]))),
+                Part::Launch { port, shape } => {
+                    if planes == Planes::Edge {
+                        let end = circuit.launch(book, shape, placed.nodes[0], width(placed.nodes[0]), &mut nodes, &mut fresh);
+                        if let Some(place) = external.get_mut(port - 1) {
+                            *place = end;
+                        }
+                    }
+                    continue;
+                }
+            };
+            circuit.blocks.push(block);
+            nodes.push(placed.nodes.clone());
+        }
+        for (place, z0_ohm) in external.iter_mut().zip(ports_ohm) {
+            if z0_ohm != INNER_OHM {
+                circuit.blocks.push(Block::Reference { gamma: (INNER_OHM - z0_ohm) / (INNER_OHM + z0_ohm) });
+                nodes.push(vec![fresh, *place]);
+                *place = fresh;
+                fresh += 1;
+            }
+        }
+        circuit.plan = JoinPlan::new(&nodes, &external).ok_or_else(not_joined)?;
+        Ok(circuit)
+    }
+
+    fn strip(&mut self, book: &Book, width: Nm) -> usize {
+        self.strips.iter().position(|(w, _)| *w == width).unwrap_or_else(|| {
+            self.strips.push((width, book.strip(width)));
+            self.strips.len() - 1
+        })
+    }
+
+    fn pair(&mut self, book: &Book, width: Nm, gap: Nm) -> usize {
+        self.pairs.iter().position(|(key, _)| *key == (width, gap)).unwrap_or_else(|| {
+            self.pairs.push(((width, gap), book.pair(width, gap)));
+            self.pairs.len() - 1
+        })
+    }
+
+    /// Adds the blocks of a launch outwards from `node` and returns the node at the board's edge.
+    fn launch(&mut self, book: &Book, shape: &LaunchShape, node: usize, feed: Nm, nodes: &mut Vec<Vec<usize>>, fresh: &mut usize) -> usize {
+        let mut pieces = Vec::new();
+        match *shape {
+            LaunchShape::Open => {}
+            LaunchShape::Pads { pad_length_m, pad_width_m } => {
+                pieces.push(Block::Line { strip: self.strip(book, Nm::from_m(pad_width_m)), length_m: pad_length_m });
+            }
+            LaunchShape::EdgeCoax { pad_length_m, pad_width_m, taper_length_m, ground_gap_m, .. } => {
+                for piece in 0..TAPER_PIECES {
+                    let along = (piece as f64 + 0.5) / TAPER_PIECES as f64;
+                    let width = Nm::from_m(feed.m() + (pad_width_m - feed.m()) * along);
+                    pieces.push(Block::Line { strip: self.strip(book, width), length_m: taper_length_m / TAPER_PIECES as f64 });
+                }
+                self.coplanar.push(Coplanar::new(book.built(), pad_width_m, ground_gap_m));
+                pieces.push(Block::Coplanar { line: self.coplanar.len() - 1, length_m: pad_length_m });
+            }
+        }
+        let mut end = node;
+        for piece in pieces {
+            self.blocks.push(piece);
+            nodes.push(vec![end, *fresh]);
+            end = *fresh;
+            *fresh += 1;
+        }
+        end
+    }
+
+    /// S-parameters at the given frequencies (increasing, greater than zero).
+    pub fn sweep(&self, f_hz: &[f64]) -> Response {
+        let mut scratch = self.plan.scratch();
+        let mut result = [Complex64::ZERO; 4];
+        let mut s = Vec::with_capacity(f_hz.len());
+        let mut strips = vec![[0.0; 5]; self.strips.len()];
+        let mut pairs = vec![[0.0; 6]; self.pairs.len()];
+        let mut ends = vec![Complex64::ZERO; self.strips.len()];
+        let curves = match (f_hz.first(), f_hz.last()) {
+            (Some(first), Some(last)) if f_hz.len() >= INTERPOLATE_FROM => Some(self.curves(*first, *last)),
+            _ => None,
+        };
+        for f in f_hz {
+            match &curves {
+                Some((strip_curves, pair_curves)) => {
+                    strips.iter_mut().zip(strip_curves).for_each(|(c, curve)| *c = curve.at(*f));
+                    pairs.iter_mut().zip(pair_curves).for_each(|(c, curve)| *c = curve.at(*f));
+                }
+                None => {
+                    strips.iter_mut().zip(&self.strips).for_each(|(c, (_, strip))| *c = strip_constants(strip, *f));
+                    pairs.iter_mut().zip(&self.pairs).for_each(|(c, (_, pair))| *c = pair_constants(pair, *f));
+                }
+            }
+            self.fill(*f, &strips, &pairs, &mut ends, &mut scratch);
+            self.plan.run(&mut scratch, &mut result);
+            s.push([result[0], result[2], result[1], result[3]]);
+        }
+        Response { method: Method::Network, z0_ohm: self.ports_ohm, f_hz: f_hz.to_vec(), s }
+    }
+
+    #[allow(clippy::type_complexity)]
+    fn curves(&self, from_hz: f64, to_hz: f64) -> (Vec<Curves<5>>, Vec<Curves<6>>) {
+        (
+            self.strips.iter().map(|(_, strip)| Curves::fit(from_hz, to_hz, |f| strip_constants(strip, f))).collect(),
+            self.pairs.iter().map(|(_, pair)| Curves::fit(from_hz, to_hz, |f| pair_constants(pair, f))).collect(),
+        )
+    }
+
+    /// Writes the block matrices at one frequency into the first slots of the scratch.
+    fn fill(&self, f_hz: f64, strips: &[StripConstants], pairs: &[PairConstants], ends: &mut [Complex64], scratch: &mut Scratch) {
+        let wave = std::f64::consts::TAU * f_hz / crate::line::C_M_PER_S;
+        for (end, [index, z0_ohm, _, conductance_s, extension_m]) in ends.iter_mut().zip(strips) {
+            let y = Complex64::new(*conductance_s, (wave * index * extension_m).tan() / z0_ohm) * INNER_OHM;
+            *end = (1.0 - y) / (1.0 + y);
+        }
+        for (block, out) in self.blocks.iter().zip(&mut scratch.blocks) {
+            match block {
+                Block::Line { strip, length_m } => {
+                    let [index, z0_ohm, alpha, ..] = strips[*strip];
+                    let (s11, s21) = line_s(wave * index, alpha, z0_ohm, *length_m);
+                    out.copy_from_slice(&[s11, s21, s21, s11]);
+                }
+                Block::Coplanar { line, length_m } => {
+                    let line = &self.coplanar[*line];
+                    let alpha = if self.lossless { 0.0 } else { line.alpha_np_per_m(f_hz) };
+                    let (s11, s21) = line_s(wave * line.eps_eff.sqrt(), alpha, line.z0_ohm, *length_m);
+                    out.copy_from_slice(&[s11, s21, s21, s11]);
+                }
+                Block::Pair { pair, length_m } => {
+                    let [even_index, even_ohm, even_alpha, odd_index, odd_ohm, odd_alpha] = pairs[*pair];
+                    let (e11, e21) = line_s(wave * even_index, even_alpha, even_ohm, *length_m);
+                    let (o11, o21) = line_s(wave * odd_index, odd_alpha, odd_ohm, *length_m);
+                    let (own, near, through, across) = (0.5 * (e11 + o11), 0.5 * (e11 - o11), 0.5 * (e21 + o21), 0.5 * (e21 - o21));
+                    out.copy_from_slice(&[
+                        own, near, through, across, //
+                        near, own, across, through, //
+                        through, across, own, near, //
+                        across, through, near, own,
+                    ]);
+                }
+                Block::OpenEnd { strip } => out[0] = ends[*strip],
+                Block::Step { first_h, shunt_f, second_h } => out.copy_from_slice(&step_s([*first_h, *shunt_f, *second_h], f_hz)),
+                Block::Reference { gamma } => {
+                    let through = Complex64::from((1.0 - gamma * gamma).sqrt());
+                    out.copy_from_slice(&[Complex64::from(*gamma), through, through, Complex64::from(-gamma)]);
+                }
+            }
+        }
+    }
+}
+
+fn not_joined() -> Problem {
+    Problem::error(
+        "layout-not-joined",
+        Place::Whole,
+        "the parts of the layout do not form one two-port",
+        "this is a fault of the program: please report the order",
+    )
+}
+
+fn strip_constants(strip: &Strip, f_hz: f64) -> StripConstants {
+    let mode = strip.at(f_hz);
+    [mode.eps_eff.sqrt(), mode.z0_ohm, mode.alpha_np_per_m(), open_end::radiation_conductance_s(strip, f_hz), open_end::extension_m(strip)]
+}
+
+fn pair_constants(pair: &Pair, f_hz: f64) -> PairConstants {
+    let (even, odd) = (pair.even_at(f_hz), pair.odd_at(f_hz));
+    [even.eps_eff.sqrt(), even.z0_ohm, even.alpha_np_per_m(), odd.eps_eff.sqrt(), odd.z0_ohm, odd.alpha_np_per_m()]
+}
+
+/// S11 and S21 of a line between the inner reference impedance.
+fn line_s(beta_rad_per_m: f64, alpha_np_per_m: f64, z0_ohm: f64, length_m: f64) -> (Complex64, Complex64) {
+    let t = Complex64::from_polar((-alpha_np_per_m * length_m).exp(), -beta_rad_per_m * length_m);
+    let gamma = (z0_ohm - INNER_OHM) / (z0_ohm + INNER_OHM);
+    let inverse = (1.0 - gamma * gamma * t * t).inv();
+    (gamma * (1.0 - t * t) * inverse, (1.0 - gamma * gamma) * t * inverse)
+}
+
+/// The step from one strip to the next, whichever is wider.
+fn step_block(from: &Strip, to: &Strip) -> Block {
+    let model = step(from, to);
+    let (wide, narrow) = (model.wide_inductance_h, model.narrow_inductance_h);
+    let (first_h, second_h) = if from.width_m() >= to.width_m() { (wide, narrow) } else { (narrow, wide) };
+    Block::Step { first_h, shunt_f: model.capacitance_f, second_h }
+}
+
+/// The step as series inductance, shunt capacitance, series inductance.
+fn step_s([first_h, shunt_f, second_h]: [f64; 3], f_hz: f64) -> [Complex64; 4] {
+    let w = std::f64::consts::TAU * f_hz;
+    let (l1, l2) = (Complex64::new(0.0, w * first_h), Complex64::new(0.0, w * second_h));
+    let y = Complex64::new(0.0, w * shunt_f);
+    let (a, b, c, d) = (1.0 + l1 * y, l1 + l2 + l1 * l2 * y, y, 1.0 + l2 * y);
+    let (b, c) = (b / INNER_OHM, c * INNER_OHM);
+    let inverse = (a + b + c + d).inv();
+    let through = 2.0 * inverse;
+    [(a + b - c - d) * inverse, through, through, (d + b - c - a) * inverse]
+}

@@ -1,0 +1,124 @@
+//! The least degree that meets the requirements, loss included; or which two limits leave none.
+
+use super::Refined;
+use super::refine;
+use crate::base::Place;
+use crate::base::Problem;
+use crate::family::Family;
+use crate::network::Figures;
+use crate::network::predict;
+use crate::order::Limit;
+use crate::order::Order;
+use crate::prototype::attenuation_db;
+
+/// A degree whose lossless prototype falls short of a rejection by more than this is not tried: the distributed circuit and its losses
+/// add less than this at the frequencies of a requirement below the second passband.
+const HOPELESS_DB: f64 = 6.0;
+
+/// A refined set with the reason for its degree.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Chosen {
+    /// The set.
+    pub refined: Refined,
+    /// One sentence on the choice; `None` when the order names the degree.
+    pub reason: Option<String>,
+}
+
+/// Synthesizes and refines an order, at its degree or at the least one that meets every requirement.
+///
+/// # Errors
+/// Those of the family and of refinement; `degree-out-of-reach` names the limit that fails with each degree;
+/// `degree-undetermined` when the order gives neither a degree nor a rejection.
+pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Problem>> {
+    if let Some(degree) = order.filter.degree {
+        let (guess, _) = family.first_guess(order, degree)?;
+        return Ok(Chosen { refined: refine(family, &guess)?, reason: None });
+    }
+    let rejects = |l: &Limit| matches!(l, Limit::RejectionAtLeast { .. });
+    if !order.requirements.iter().flat_map(|r| &r.limits).any(rejects) {
+        return Err(vec![Problem::error(
+            "degree-undetermined",
+            Place::Key("filter".into()),
+            "without a degree the requirements choose it, and none of them asks for rejection",
+            "add degree = 3 under [filter], or a [[requirement]] with rejection = { at-least = \"30 dB\" }",
+        )]);
+    }
+    let (least, most) = family.degrees();
+    let mut misses: Vec<(usize, String)> = Vec::new();
+    for degree in least..=most {
+        if let Some(miss) = hopeless(order, degree) {
+            misses.push((degree, miss));
+            continue;
+        }
+        let tried = family.first_guess(order, degree).and_then(|(guess, _)| refine(family, &guess));
+        let refined = match tried {
+            Ok(refined) => refined,
+            Err(problems) => {
+                misses.push((degree, problems.iter().map(|p| p.message.clone()).collect::<Vec<_>>().join("; ")));
+                continue;
+            }
+        };
+        let figures = figures(family, &refined)?;
+        let Some(worst) = figures.verdicts.iter().filter(|v| !v.is_met()).min_by(|a, b| a.margin.total_cmp(&b.margin)) else {
+            return Ok(Chosen { reason: Some(reason(degree, &figures)), refined });
+        };
+        misses.push((degree, worst.describe()));
+        // Loss grows with the degree: once it fails, no greater degree can do better.
+        if figures.verdicts.iter().any(|v| !v.is_met() && matches!(v.limit, Limit::InsertionLossAtMost(_))) {
+            break;
+        }
+    }
+    Err(vec![out_of_reach(&misses)])
+}
+
+/// The predicted figures of a refined set, loss and launches included.
+fn figures(family: &dyn Family, refined: &Refined) -> Result<Figures, Vec<Problem>> {
+    let layout = family.layout(&refined.dimensions)?;
+    let order = &refined.dimensions.order;
+    Ok(Figures::of(order, &predict(order, &layout).map_err(|p| vec![p])?))
+}
+
+/// Which rejection the lossless prototype of a degree already misses beyond hope.
+fn hopeless(order: &Order, degree: usize) -> Option<String> {
+    let [from_hz, to_hz] = crate::network::passband_hz(order);
+    let x = |f: f64| (2.0 * f - from_hz - to_hz) / (to_hz - from_hz);
+    order.requirements.iter().find_map(|requirement| {
+        requirement.limits.iter().find_map(|limit| {
+            let Limit::RejectionAtLeast { db, .. } = limit else { return None };
+            let nearest = x(requirement.from_hz).abs().min(x(requirement.to_hz).abs());
+            let found_db = attenuation_db(order.filter.response, degree, nearest);
+            (found_db < db - HOPELESS_DB).then(|| {
+                format!(
+                    "rejection about {found_db:.1} dB without loss where at least {db} dB is asked, {}",
+                    band_text(requirement.from_hz, requirement.to_hz)
+                )
+            })
+        })
+    })
+}
+
+fn band_text(from_hz: f64, to_hz: f64) -> String {
+    format!("{:.4} to {:.4} GHz", from_hz / 1e9, to_hz / 1e9)
+}
+
+fn reason(degree: usize, figures: &Figures) -> String {
+    let tightest = figures.verdicts.iter().min_by(|a, b| a.margin.total_cmp(&b.margin));
+    match tightest {
+        Some(verdict) => format!("degree {degree} is the least that meets every requirement; the tightest: {}", verdict.describe()),
+        None => format!("degree {degree} is the least that meets every requirement"),
+    }
+}
+
+/// Names the last degree that fails for want of rejection and the first that fails for another reason.
+fn out_of_reach(misses: &[(usize, String)]) -> Problem {
+    let shown: Vec<String> = match misses {
+        [.., low, high] => [low, high].into_iter().map(|(degree, miss)| format!("degree {degree}: {miss}")).collect(),
+        rest => rest.iter().map(|(degree, miss)| format!("degree {degree}: {miss}")).collect(),
+    };
+    Problem::error(
+        "degree-out-of-reach",
+        Place::Key("filter.degree".into()),
+        format!("no degree meets the requirements (loss grows with the degree, rejection shrinks without). {}", shown.join("; ")),
+        "allow more insertion loss or less rejection, move the stopband away from the passband, or choose a laminate with less loss",
+    )
+}

@@ -1,0 +1,1 @@
+//! DXF files through the dxf crate.

@@ -1,0 +1,8 @@
+//! Do independent readers see in every file exactly what the board holds?
+
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
+
+mod drawing;
+mod gerbers;
+mod sample;
+mod touchstone;

@@ -1,0 +1,7 @@
+//! From random orders to refined dimension sets, judged by the goal and by a second circuit; and what any response must obey.
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
+
+mod orders;
+mod random_orders;
+mod response_laws;
+mod second_circuit;
