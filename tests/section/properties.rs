@@ -288,6 +288,22 @@ fn fillings_are_shares_and_a_coat_of_air_adds_nothing() {
     }
 }
 
+/// A coat of the top layer's own permittivity, thicker and thicker, takes filling from the air: shares still sum below one, and its own is the last.
+#[test]
+fn a_coat_has_its_own_filling() {
+    let copper = CopperOf { thickness_m: 35e-6, undercut_m: 0.0 };
+    let bare = CrossSection::single(vec![LayerOf::isotropic(3.0, 0.002, 0.3e-3)], copper, 0.6e-3, HousingOf::default());
+    let mut before = 0.0;
+    for thickness in [10e-6, 30e-6, 90e-6] {
+        let coat = Some(CoatOf { permittivity: 3.0, loss_tangent: 0.02, on_laminate_m: thickness, on_copper_m: thickness });
+        let mode = &loss(&CrossSection { coat, ..bare.clone() }).unwrap()[0];
+        let (filling, tangents) = (&mode.filling, &mode.loss_tangents);
+        assert_eq!((filling.len(), tangents.as_slice()), (2, [0.002, 0.02].as_slice()));
+        assert!(filling[1] > before && filling[0] + filling[1] < 1.0, "{filling:?}");
+        before = filling[1];
+    }
+}
+
 /// Same question, same bits, whatever was asked before.
 #[test]
 fn answers_do_not_depend_on_what_was_asked_before() {

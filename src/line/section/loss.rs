@@ -18,7 +18,7 @@ use super::geometry::CrossSection;
 use super::geometry::fault;
 use super::green::GAUSS_8;
 use super::panels::{Contour, Face, Grid, inverse_spread};
-use super::solve::{Charges, EPSILON_0, Mode, Tables, charges, solve_bare, solve_fixed};
+use super::solve::{Charges, EPSILON_0, Mode, Tables, add_coat, charges, solve_fixed};
 use super::stackup::{PERMITTIVITY_STEP, Stackup, scale_layer};
 
 /// Permeability of free space, H/m (CODATA 2018).
@@ -190,9 +190,9 @@ impl WallShares {
 pub struct ModeLoss {
     /// Shares of the walls.
     pub shares: WallShares,
-    /// Layer by layer: d ln C / d ln permittivity.
+    /// Layer by layer, then the coat if there is one: d ln C / d ln permittivity.
     pub filling: Vec<f64>,
-    /// Loss tangent of each layer.
+    /// Loss tangent of each of them.
     pub loss_tangents: Vec<f64>,
     /// Relative error of the sum of the shares that the two grids let expect.
     pub error_estimate: f64,
@@ -226,7 +226,7 @@ impl ModeLoss {
 /// # Units
 /// Shares in 1/m; multiply by the surface resistance.
 /// # Valid range
-/// As [`CrossSection::check`], thickness above zero, one strip or two equal strips. A coat's own loss is not in it.
+/// As [`CrossSection::check`], thickness above zero, one strip or two equal strips.
 /// # Source
 /// See the head of `loss.rs`.
 /// # Accuracy
@@ -239,7 +239,8 @@ pub fn loss(section: &CrossSection) -> Result<Vec<ModeLoss>, Problem> {
     }
     let shares = wall_shares(section)?;
     let fillings = filling(section, shares.len())?;
-    let loss_tangents: Vec<f64> = section.layers.iter().map(|layer| layer.loss_tangent).collect();
+    let coat = section.coat.iter().map(|coat| coat.loss_tangent);
+    let loss_tangents: Vec<f64> = section.layers.iter().map(|layer| layer.loss_tangent).chain(coat).collect();
     Ok(shares
         .into_iter()
         .zip(fillings)
@@ -564,13 +565,21 @@ fn integrate_graded(density: impl Fn(f64) -> f64, even: f64, end: f64, scale: f6
     sum
 }
 
-/// d ln C / d ln permittivity of each layer, mode by mode.
+/// d ln C / d ln permittivity of each layer, and of the coat after them, mode by mode. On fixed panels, so that differences are smooth.
 fn filling(section: &CrossSection, mode_count: usize) -> Result<Vec<Vec<f64>>, Problem> {
-    let mut out = vec![Vec::with_capacity(section.layers.len()); mode_count];
-    for index in 0..section.layers.len() {
+    let layers = section.layers.len();
+    let parts = layers + usize::from(section.coat.is_some());
+    let mut out = vec![Vec::with_capacity(parts); mode_count];
+    for index in 0..parts {
         let at = |factor: f64| -> Result<Vec<f64>, Problem> {
-            let varied = CrossSection { layers: scale_layer(&section.layers, index, factor), coat: None, ..section.clone() };
-            let solved = solve_bare(&varied, 1e-2)?;
+            let mut varied = CrossSection { layers: scale_layer(&section.layers, index, factor), ..section.clone() };
+            if index == layers
+                && let Some(coat) = &mut varied.coat
+            {
+                coat.permittivity *= factor;
+            }
+            let mut solved = solve_fixed(&varied)?;
+            add_coat(&varied, &mut solved)?;
             Ok(match solved.pair() {
                 Some(pair) => vec![pair.even.capacitance_f_per_m, pair.odd.capacitance_f_per_m],
                 None => solved.single().map(|mode| mode.capacitance_f_per_m).into_iter().collect(),
@@ -578,7 +587,7 @@ fn filling(section: &CrossSection, mode_count: usize) -> Result<Vec<Vec<f64>>, P
         };
         let (low, high) = (at(1.0 - PERMITTIVITY_STEP)?, at(1.0 + PERMITTIVITY_STEP)?);
         for ((filling, low), high) in out.iter_mut().zip(low).zip(high) {
-            filling.push(((high / low).ln()) / (2.0 * PERMITTIVITY_STEP));
+            filling.push((high / low).ln() / (2.0 * PERMITTIVITY_STEP));
         }
     }
     Ok(out)

@@ -39,7 +39,7 @@
 //!
 //! # Not modelled
 //! Dispersion; copper thinner than about three skin depths; the rise of the effective permittivity that rough foil makes on thin laminates
-//! (A. F. Horn, J. W. Reynolds, J. C. Rautio, IEEE MTT-S Digest 2010); the coat's own loss.
+//! (A. F. Horn, J. W. Reynolds, J. C. Rautio, IEEE MTT-S Digest 2010).
 //!
 //! # Example
 //! ```

@@ -136,7 +136,8 @@ impl Solved {
 /// # Valid range
 /// What [`CrossSection::check`] lets pass.
 /// # Accuracy
-/// `error_estimate` of the result; the table in [`crate::line::section`].
+/// `error_estimate` of the result; the table in [`crate::line::section`]. A coat adds its own error (some 1e-3 and less), which is in the estimate but is not held to
+/// the accuracy asked for.
 /// # Errors
 /// The first problem of [`CrossSection::check`]; `section-not-converged` when the finest grid still misses the accuracy.
 pub fn solve(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
@@ -152,16 +153,21 @@ pub fn solve(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
         ));
     }
     let mut solved = solve_bare(section, accuracy)?;
-    if let Some(coat) = section.coat {
-        let coated = super::coat::coat_adds(section, coat)?;
-        for (row, ratios) in solved.capacitance_f_per_m.iter_mut().zip(&coated.added_f_per_m) {
-            for (value, added) in row.iter_mut().zip(ratios) {
-                *value += added;
-            }
-        }
-        solved.error_estimate += coated.error_estimate;
-    }
+    add_coat(section, &mut solved)?;
     Ok(solved)
+}
+
+/// Puts on top what the coat adds, and its error.
+pub(super) fn add_coat(section: &CrossSection, solved: &mut Solved) -> Result<(), Problem> {
+    let Some(coat) = section.coat else { return Ok(()) };
+    let coated = super::coat::coat_adds(section, coat)?;
+    for (row, added) in solved.capacitance_f_per_m.iter_mut().zip(&coated.added_f_per_m) {
+        for (value, added) in row.iter_mut().zip(added) {
+            *value += added;
+        }
+    }
+    solved.error_estimate += coated.error_estimate;
+    usable(solved.error_estimate).map(|_| ())
 }
 
 pub(super) fn solve_bare(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
