@@ -130,6 +130,46 @@ proptest! {
     }
 }
 
+proptest! {
+    #![proptest_config(ProptestConfig { cases: 40, ..ProptestConfig::default() })]
+
+    /// Any shape, sensible or not, is solved to sane numbers or refused with a code; nothing panics.
+    #[test]
+    fn extreme_shapes_are_solved_or_refused(
+        sizes in prop::collection::vec((-6.5_f64..-1.0, -6.5_f64..-1.5), 1..4),
+        layers in prop::collection::vec((1.0_f64..50.0, 0.5_f64..2.0, -5.5_f64..-1.5), 1..4),
+        thickness in prop::option::of(-7.5_f64..-2.5),
+        undercut in 0.0_f64..0.5,
+        lid in prop::option::of(-5.0_f64..-1.0),
+        wall in prop::option::of(-6.0_f64..-1.0),
+    ) {
+        let power = |exponent: f64| 10.0_f64.powf(exponent);
+        let thickness_m = thickness.map_or(0.0, power);
+        let section = CrossSection {
+            layers: layers.iter().map(|&(permittivity, ratio, height)| LayerOf { permittivity, in_plane_permittivity: permittivity * ratio, loss_tangent: 0.0, thickness_m: power(height) }).collect(),
+            copper: CopperOf { thickness_m, undercut_m: undercut * thickness_m },
+            strips: sizes.iter().map(|&(width, gap)| StripOf { width_m: power(width), gap_before_m: power(gap) }).collect(),
+            coat: None,
+            housing: HousingOf { lid_m: lid.map(power), wall_m: wall.map(power) },
+        };
+        match solve(&section, 0.02) {
+            Err(problem) => prop_assert!(problem.is_error() && !problem.code.is_empty()),
+            Ok(solved) => {
+                prop_assert!(section.check().is_empty());
+                prop_assert!(solved.error_estimate <= 0.02);
+                for (i, row) in solved.capacitance_f_per_m.iter().enumerate() {
+                    prop_assert!(row[i].is_finite() && row[i] > 0.0);
+                    prop_assert!(row.iter().enumerate().all(|(j, value)| j == i || (value.is_finite() && *value < 0.04 * row[i])));
+                    // More than the strip's own parallel plates to the ground through the series of layers, within the error.
+                    let series: f64 = section.layers.iter().map(|layer| layer.thickness_m / layer.permittivity).sum();
+                    let plates = 8.854e-12 * section.strips[i].width_m / series;
+                    prop_assert!(row[i] > 0.96 * plates, "{} plates {plates}", row[i]);
+                }
+            }
+        }
+    }
+}
+
 /// The error that is promised, over the range that synthesis uses: 0.05 % of C, 0.5 % of k, against grids four times as fine.
 #[test]
 fn the_promised_accuracy_holds_over_a_sweep() {

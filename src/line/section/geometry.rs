@@ -6,6 +6,8 @@ use crate::base::{Place, Problem};
 pub const STRIPS_AT_MOST: usize = 12;
 /// A strip or gap this many top-layer thicknesses across needs a table and panels that no printed board needs.
 const SPAN_RATIO_AT_MOST: f64 = 2000.0;
+/// Deepest layer or highest lid in the same units: the spectrum's samples grow with it.
+const DEPTH_RATIO_AT_MOST: f64 = 1000.0;
 /// Thickest copper in units of the nearest distance to an interface: beyond, the remainder's table would need more than 16 heights.
 const HEIGHT_RATIO_AT_MOST: f64 = 8.0;
 /// Width over thickness beyond which the cubically graded panels of one strip differ by more than twelve decades.
@@ -309,7 +311,7 @@ impl CrossSection {
         let finding = |message: String, help: &str| fault("section-aspect", "", message, help);
         if span > SPAN_RATIO_AT_MOST * scale {
             problems.push(finding(
-                format!("the whole is {} wide, more than {SPAN_RATIO_AT_MOST} times the thinnest of top layer and room under the lid, {}: its table would need more memory than allowed", mm(span), mm(scale)),
+                format!("the whole is {} wide, more than {SPAN_RATIO_AT_MOST} times the thinnest of layers, room under the lid and half the room between walls, {}: its table would need more memory than allowed", mm(span), mm(scale)),
                 "leave out far strips or walls, or merge the thin layer with its neighbour",
             ));
         }
@@ -325,9 +327,10 @@ impl CrossSection {
         }
         let substrate: f64 = self.layers.iter().map(LayerOf::reduced_thickness_m).sum();
         let highest = substrate.max(self.housing.lid_m.unwrap_or(0.0));
-        if highest > 4.0 * SPAN_RATIO_AT_MOST * scale {
+        // Between walls the spectrum is a sum of few terms.
+        if self.housing.wall_m.is_none() && highest > DEPTH_RATIO_AT_MOST * scale {
             problems.push(finding(
-                format!("heights from {} to {} differ by more than a factor of {}", mm(scale), mm(highest), 4.0 * SPAN_RATIO_AT_MOST),
+                format!("heights from {} to {} differ by more than a factor of {DEPTH_RATIO_AT_MOST}", mm(scale), mm(highest)),
                 "leave out the far lid, or merge the thin layer with its neighbour",
             ));
         }
@@ -349,7 +352,8 @@ impl CrossSection {
         let top = self.layers.last().map_or(f64::INFINITY, LayerOf::reduced_thickness_m);
         let substrate: f64 = self.layers.iter().map(|layer| layer.thickness_m).sum();
         let room = self.housing.lid_m.map_or(f64::INFINITY, |lid| lid - self.copper.thickness_m);
-        top.min(substrate).min(room)
+        let walls = self.housing.wall_m.map_or(f64::INFINITY, |wall| 0.5 * self.span_m() + wall);
+        top.min(substrate).min(room).min(walls)
     }
 }
 
