@@ -11,7 +11,7 @@ use crate::order::LaunchShape;
 
 pub(super) const RULE: Rule = Rule {
     code: "launch-misfit",
-    about: "launch pad off the port's impedance or narrower than the feed (warning), feed wider than its ground pads leave, or no room for its via fence (error)",
+    about: "launch pad off the port's impedance or narrower than the feed (warning), or no room for its via fence (error)",
     source: "common practice",
     run,
 };
@@ -35,12 +35,6 @@ fn run(subject: &Subject) -> Vec<Problem> {
         let (feed_m, at) = (port.plane.width().m(), Place::Board(port.plane.middle()));
         let (feed, pad) = (feed_m * 1e3, pad_width_m * 1e3);
         match gap_m {
-            Some(gap_m) if feed_m > pad_width_m + 2.0 * gap_m => found.push(Problem::error(
-                RULE.code,
-                at,
-                format!("the feed is {feed:.3} mm wide, the ground pads of launch \"{}\" leave {:.3} mm", launch.class, pad + 2e3 * gap_m),
-                "a launch class for a wider feed, or a thinner laminate",
-            )),
             // Over its own ground gap a pad may be narrower than the feed and still have the port's impedance.
             Some(gap_m) => {
                 let reached_ohm = Coplanar::new(&built, pad_width_m, gap_m).z0_ohm;

@@ -184,7 +184,6 @@ fn every_rule_is_found_on_a_board_made_to_break_it() {
         })
     };
     fires(&pad(1.0e-3), "launch-misfit", Warning);
-    fires(&pad(0.8e-3), "launch-misfit", Error);
     fires(
         &launch(&|shape| {
             if let LaunchShape::EdgeCoax { ground_width_m, .. } = shape {
