@@ -7,6 +7,7 @@ mod dimension_file;
 mod files;
 mod line;
 mod mistakes;
+mod packages;
 
 use std::path::Path;
 
