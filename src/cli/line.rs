@@ -16,10 +16,12 @@ use crate::base::parse_quantity;
 use crate::line::AsBuilt;
 use crate::line::Mode;
 use crate::line::Pair;
+use crate::line::StaticsModel;
 use crate::line::Strip;
 use crate::line::Unreachable;
 use crate::line::open_end;
 use crate::line::pair_for_impedances;
+use crate::line::plating_of;
 use crate::line::width_for_impedance;
 use crate::order::Classes;
 use crate::order::Laminate;
@@ -243,9 +245,11 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         undercut_m: arguments.undercut,
         roughness_m: arguments.roughness.unwrap_or(laminate.copper.roughness_m),
         conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
+        plating: plating_of(&laminate.finish),
         lid_m: None,
         widening_m: 0.0,
         lossless: false,
+        statics: StaticsModel::Numerical,
     })
 }
 
