@@ -9,6 +9,8 @@ mod new;
 mod predict;
 pub mod problems;
 mod read;
+mod section;
+mod section_file;
 mod table;
 
 use std::io::IsTerminal;

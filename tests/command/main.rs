@@ -7,6 +7,7 @@ mod dimension_file;
 mod files;
 mod line;
 mod mistakes;
+mod section_file;
 
 use std::path::Path;
 
