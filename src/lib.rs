@@ -103,6 +103,7 @@ pub fn draw(dimensions: &Dimensions) -> Result<Made, Vec<Problem>> {
     let family = family::of(order).map_err(|problem| vec![problem])?;
     let layout = family.layout(dimensions)?;
     let (board, mut findings) = artwork::board(order, &layout)?;
+    let layout = board.run_on(&layout);
     let (response, warnings) = network::predict(order, &layout)?;
     findings.extend(warnings);
     let figures = Figures::of(order, &response);
