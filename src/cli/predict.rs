@@ -46,13 +46,14 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         let (full, warnings) = network::predict(order, &layout)?;
         problems::print(&warnings, Some(&drawing.source), voice);
         let figures = Figures::of(order, &full);
+        let models = network::models(order, &layout)?;
         let shown = match frequencies(arguments)? {
             Some(f_hz) => network::predict_at(order, &layout, &f_hz)?.0,
             None => full,
         };
-        Ok((figures, shown))
+        Ok((figures, models, shown))
     });
-    let (figures, shown) = match predicted {
+    let (figures, models, shown) = match predicted {
         Ok(predicted) => predicted,
         Err(problems) => return drawing.refuse(&problems, voice),
     };
@@ -68,11 +69,15 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         }
     }
     let written = if voice.json {
-        table::print_json(&table::figures_json(order, &figures, Some(&shown)))
+        let mut json = table::figures_json(order, &figures, Some(&shown));
+        if let Some(map) = json.as_object_mut() {
+            map.insert("line_models".into(), table::models_json(&models));
+        }
+        table::print_json(&json)
     } else if arguments.from.is_some() {
-        results(&(table::figures_text(order, &figures) + &table::response_text(&shown)))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models) + &table::response_text(&shown)))
     } else {
-        results(&table::figures_text(order, &figures))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models)))
     };
     if written == Ending::Done && !figures.all_met() { Ending::Unmet } else { written }
 }
