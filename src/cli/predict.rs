@@ -43,13 +43,14 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
     let order = &drawing.dimensions.order;
     let predicted = frequencies(arguments).and_then(|f_hz| {
         let made = crate::draw(&drawing.dimensions)?;
+        let models = network::models(order, &made.layout)?;
         let shown = match f_hz {
             Some(f_hz) => network::predict_at(order, &made.layout, &f_hz)?,
             None => (made.response, made.findings),
         };
-        Ok((made.figures, shown))
+        Ok((made.figures, models, shown))
     });
-    let (figures, (shown, findings)) = match predicted {
+    let (figures, models, (shown, findings)) = match predicted {
         Ok(predicted) => predicted,
         Err(problems) => return drawing.refuse(&problems, voice),
     };
@@ -63,11 +64,15 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         }
     }
     let written = if voice.json {
-        table::print_json(&table::figures_json(order, &figures, Some(&shown)))
+        let mut json = table::figures_json(order, &figures, Some(&shown));
+        if let Some(map) = json.as_object_mut() {
+            map.insert("line_models".into(), table::models_json(&models));
+        }
+        table::print_json(&json)
     } else if arguments.from.is_some() {
-        results(&(table::figures_text(order, &figures) + &table::response_text(&shown)))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models) + &table::response_text(&shown)))
     } else {
-        results(&table::figures_text(order, &figures))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models)))
     };
     if written == Ending::Done && !figures.all_met() { Ending::Unmet } else { written }
 }

@@ -76,7 +76,7 @@ pub fn answer(file: &SectionFile, accuracy: f64, at: At) -> Result<Answer, Vec<P
         let _ = writeln!(answer.text, "  coupling                {coupling:.5} ({:.2} dB)", 20.0 * coupling.log10());
         answer.json.insert("coupling".into(), json!(coupling));
     }
-    let _ = writeln!(answer.text, "  model                   {MODEL}, error at most {:.1e} as it expects", solved.error_estimate);
+    let _ = writeln!(answer.text, "  model                   {MODEL}, error estimate {:.1e}", solved.error_estimate);
     answer.json.insert("model".into(), json!(MODEL));
     if let Some(dispersive) = dispersive {
         dispersive.say(&modes, at, &mut answer);

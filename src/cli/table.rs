@@ -7,6 +7,7 @@ use serde_json::json;
 
 use super::Ending;
 use super::results;
+use crate::line::Models;
 use crate::network::Figures;
 use crate::network::Response;
 use crate::network::Verdict;
@@ -56,6 +57,23 @@ pub fn figures_text(order: &Order, figures: &Figures) -> String {
         let _ = writeln!(text, "  {name:<30}{value}");
     }
     text
+}
+
+/// Where the line constants come from, as text.
+pub fn models_text(models: &Models) -> String {
+    format!("  line constants                {}\n", models.describe())
+}
+
+/// The same as JSON.
+pub fn models_json(models: &Models) -> Value {
+    json!({
+        "solved": models.solved,
+        "closed_form": models.closed_form,
+        "error_estimate": models.error_estimate,
+        "closed_form_impedance_difference": models.impedance_difference,
+        "closed_form_permittivity_difference": models.permittivity_difference,
+        "closed_form_coupling_difference": models.coupling_difference,
+    })
 }
 
 fn margin(verdict: &Verdict) -> String {

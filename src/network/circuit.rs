@@ -16,6 +16,7 @@ use crate::layout::Layout;
 use crate::layout::Part;
 use crate::line::Book;
 use crate::line::Coplanar;
+use crate::line::Models;
 use crate::line::Pair;
 use crate::line::Strip;
 use crate::line::open_end;
@@ -175,6 +176,11 @@ impl Circuit {
             }
         }
         pieces
+    }
+
+    /// Which models gave the constants of its strips and pairs.
+    pub fn models(&self) -> Models {
+        Models::of(self.strips.iter().map(|(_, strip)| &**strip), self.pairs.iter().map(|(_, pair)| &**pair))
     }
 
     /// Warnings of the line models where the circuit leaves their ranges up to a frequency, one of each kind.

@@ -270,7 +270,7 @@ impl CrossSection {
             return;
         }
         for (index, strip) in self.strips.iter().enumerate().skip(1) {
-            if strip.gap_before_m <= 2.0 * coat.on_copper_m {
+            if strip.gap_before_m > 0.0 && strip.gap_before_m <= 2.0 * coat.on_copper_m {
                 problems.push(fault(
                     "coat-fills-gap",
                     &format!("strip[{}].gap-before", index + 1),
