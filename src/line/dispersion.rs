@@ -22,6 +22,9 @@ const IMPEDANCE_FULL: f64 = 1.2;
 /// M. Kirschning, "Arguments and an accurate model for the power-current formulation of microstrip characteristic impedance", AEU 37, 1983, pp. 108-112
 /// (from memory).
 ///
+/// With solved statics the laws start from static values that hold thickness, taper and lid. Under a lid they are applied as they stand: no published law with a
+/// lid was at hand, and a lid, which draws field into the air, weakens dispersion, so the rise is on the high side; trust it where the rise itself is small.
+///
 /// The even and odd impedances take the factor of a single strip of the same width: so the coupling stays the static one and a wide gap becomes the single
 /// line. The 1984 laws for them are not used: no independent value for them was at hand, and the coupling follows from a small difference of the two.
 #[derive(Clone, Copy, Debug, PartialEq)]

@@ -9,6 +9,7 @@ use super::AsBuilt;
 use super::Pair;
 use super::StaticsModel;
 use super::Strip;
+use super::numerical;
 use crate::base::Place;
 use crate::base::Problem;
 use crate::base::bisect;
@@ -30,6 +31,8 @@ const SLOPE_STEP: f64 = 1e-5;
 const MAX_SOLVED_STEPS: usize = 14;
 /// Residual (of ln Z, and of the coupling over itself) that counts as reached by them: below any grid, above the solver's rounding.
 const REACHED: f64 = 1e-9;
+/// Step at which the growth of impedance with frequency is taken from the solved single strip once: the width is then known well enough for it.
+const GROWTH_STEP: usize = 2;
 /// Residual that is good enough when no step lessens it any more.
 const GOOD: f64 = 1e-7;
 /// Bracket in ln(size) of the sure search on solved impedances: what it finds is polished, or only reported.
@@ -256,9 +259,15 @@ impl PairSearch {
         let (by_w, by_s) = (closed.residual(at[0] + SLOPE_STEP, at[1]), closed.residual(at[0], at[1] + SLOPE_STEP));
         let mut slopes = [0, 1].map(|i| [(by_w[i] - here[i]) / SLOPE_STEP, (by_s[i] - here[i]) / SLOPE_STEP]);
         let size = |r: [f64; 2]| r[0].abs().max((r[1] / self.ln_ratio).abs());
-        let mut now = self.residual(at[0], at[1]);
-        for _ in 0..MAX_SOLVED_STEPS {
-            if size(now) < REACHED {
+        let mut ln_growth = 0.0;
+        let mut now = self.solved_residual(closed, at, ln_growth)?;
+        for step_number in 0..MAX_SOLVED_STEPS {
+            if step_number == GROWTH_STEP {
+                let [even, odd] = Pair::new(&self.board, at[0].exp(), at[1].exp()).impedances_ohm(self.f_hz);
+                let ln_missing = 0.5 * (even * odd).ln() - self.ln_mean - now[0];
+                (ln_growth, now[0]) = (ln_missing, now[0] + ln_missing);
+            }
+            if step_number >= GROWTH_STEP && size(now) < REACHED {
                 break;
             }
             let [[a, b], [c, d]] = slopes;
@@ -273,8 +282,8 @@ impl PairSearch {
             if !(w_low..=w_high).contains(&next[0]) || !(s_low..=s_high).contains(&next[1]) {
                 return None;
             }
-            let after = self.residual(next[0], next[1]);
-            if size(after) >= size(now) && size(now) < GOOD {
+            let after = self.solved_residual(closed, next, ln_growth)?;
+            if step_number >= GROWTH_STEP && size(after) >= size(now) && size(now) < GOOD {
                 break;
             }
             let length = step[0] * step[0] + step[1] * step[1];
@@ -286,6 +295,16 @@ impl PairSearch {
             (at, now) = (next, after);
         }
         (size(now) < GOOD).then(|| (at[0].exp(), at[1].exp()))
+    }
+
+    /// How far the solved pair is from what is wanted: the growth of impedance with frequency by the closed form's single strip, times exp(`ln_growth`).
+    fn solved_residual(&self, closed: &PairSearch, [ln_w, ln_s]: [f64; 2], ln_growth: f64) -> Option<[f64; 2]> {
+        let (width_m, gap_m) = (ln_w.exp(), ln_s.exp());
+        let solved = numerical::pair(&self.board, width_m, gap_m).ok()?;
+        let guess = Pair::new(&closed.board, width_m, gap_m);
+        let growth = guess.impedances_ohm(self.f_hz)[0] / guess.static_z0_ohm().even;
+        let (even, odd) = (solved.even.z0_ohm(), solved.odd.z0_ohm());
+        Some([0.5 * (even * odd).ln() + growth.ln() + ln_growth - self.ln_mean, (even / odd).ln() - self.ln_ratio])
     }
 
     /// For each gap the width that gives the mean; then the gap that gives the ratio.

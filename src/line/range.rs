@@ -38,7 +38,7 @@ impl Strip {
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, SINGLE_SOURCE);
         let h = self.board.thickness_m;
-        range.not_solved(&self.not_solved());
+        range.not_solved(&self.not_solved(), self.error_estimate().is_some());
         if self.error_estimate().is_some() {
             range.source = SINGLE_DISPERSION_SOURCE;
             if self.at(up_to_hz).eps_eff > (1.0 + DISPERSION_MATTERS) * self.static_eps_eff() {
@@ -67,7 +67,7 @@ impl Pair {
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, PAIR_SOURCE);
         let (h, t) = (self.board.thickness_m, self.board.copper_thickness_m);
-        range.not_solved(&self.not_solved());
+        range.not_solved(&self.not_solved(), self.error_estimate().is_some());
         if self.error_estimate().is_some() {
             range.source = PAIR_DISPERSION_SOURCE;
             let (modes, statics) = (self.at(up_to_hz), self.static_eps_eff());
@@ -108,9 +108,10 @@ impl Range<'_> {
     }
 
     /// The solver was to give these numbers and did not: the closed form stands in.
-    fn not_solved(&mut self, reasons: &[&Problem]) {
+    fn not_solved(&mut self, reasons: &[&Problem], statics_solved: bool) {
         for reason in reasons {
-            let message = format!("the cross-section is not solved, the closed form stands in: {} ({})", reason.message, reason.code);
+            let what = if statics_solved { "the conductor loss of the cross-section" } else { "the cross-section" };
+            let message = format!("{what} is not solved, the closed form stands in: {} ({})", reason.message, reason.code);
             self.warn("section-not-solved", message, &reason.help);
         }
     }

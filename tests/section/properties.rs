@@ -356,3 +356,19 @@ fn answers_do_not_depend_on_what_was_asked_before() {
     assert_eq!(fresh.symmetric_pair(1.2e-3, 0.2e-3).unwrap(), used.symmetric_pair(1.2e-3, 0.2e-3).unwrap());
     assert_eq!(used.symmetric_pair(1.2e-3, 0.2e-3).unwrap(), used.symmetric_pair_anew(1.2e-3, 0.2e-3).unwrap());
 }
+
+#[test]
+fn a_span_that_is_a_whole_number_of_heights_is_no_special_point() {
+    // Tables end at 8, 24, 56 ... heights: a span that ends there must be found in the table like its neighbours.
+    let layers = [LayerOf::isotropic(2.2, 0.0, 1e-3)];
+    for thickness_m in [0.0, 20e-6] {
+        let stackup = Stackup::new(&layers, CopperOf { thickness_m, undercut_m: 0.0 }, None).unwrap();
+        for width in 1..=40 {
+            let z0 = |w: f64| stackup.single(w).unwrap().mode.z0_ohm();
+            let width_m = f64::from(width) * 1e-3;
+            // Z0 falls as the width or more slowly: a millionth either way.
+            let (here, narrower, wider) = (z0(width_m), z0(width_m * (1.0 - 1e-6)), z0(width_m * (1.0 + 1e-6)));
+            assert!((here / narrower - 1.0).abs() < 2e-6 && (here / wider - 1.0).abs() < 2e-6, "{width} {here} {narrower} {wider}");
+        }
+    }
+}

@@ -155,7 +155,9 @@ impl Kernel {
     /// Octaves a table needs to reach `reach_m`; none when that is beyond the largest.
     pub(super) fn octaves_for(medium: &Medium, reach_m: f64) -> Option<usize> {
         let first = FIRST_OCTAVE_SCALES * medium.scale_m();
-        (1..=OCTAVES_AT_MOST).find(|&octaves| first * ((1u64 << octaves) as f64 - 1.0) >= reach_m)
+        // A distance that is the table's end but for rounding must not fall behind it.
+        let reach_m = reach_m * (1.0 + 1e-9);
+        (1..=OCTAVES_AT_MOST).find(|&octaves| first * ((1u64 << octaves) as f64 - 1.0) > reach_m)
     }
 }
 
