@@ -10,4 +10,4 @@ pub use linear::solve_in_place;
 pub use nm::{Nm, Point};
 pub use problem::{Outcome, Place, Problem, Severity};
 pub use quantity::{Dimensionality, format_quantity, parse_quantity};
-pub use root::{bisect, golden_section};
+pub use root::bisect;

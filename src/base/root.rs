@@ -1,4 +1,4 @@
-//! Bracketed root finding and one-dimensional minimisation, every loop bounded.
+//! Bracketed root finding, every loop bounded.
 
 /// Halvings after which any bracket of `f64` has closed.
 const MAX_HALVINGS: usize = 200;
@@ -53,29 +53,6 @@ pub fn bisect(mut f: impl FnMut(f64) -> f64, low: f64, high: f64, tolerance: f64
     Some(0.5 * (a + b))
 }
 
-/// The place of the minimum of `f` between `low` and `high` (one valley assumed), to `tolerance` (absolute).
-pub fn golden_section(mut f: impl FnMut(f64) -> f64, low: f64, high: f64, tolerance: f64) -> f64 {
-    let ratio = 0.5 * (5f64.sqrt() - 1.0);
-    let (mut a, mut b) = (low, high);
-    let (mut x1, mut x2) = (b - ratio * (b - a), a + ratio * (b - a));
-    let (mut f1, mut f2) = (f(x1), f(x2));
-    for _ in 0..MAX_HALVINGS {
-        if (b - a).abs() <= tolerance {
-            break;
-        }
-        if f1 <= f2 {
-            (b, x2, f2) = (x2, x1, f1);
-            x1 = b - ratio * (b - a);
-            f1 = f(x1);
-        } else {
-            (a, x1, f1) = (x1, x2, f2);
-            x2 = a + ratio * (b - a);
-            f2 = f(x2);
-        }
-    }
-    0.5 * (a + b)
-}
-
 #[cfg(test)]
 mod tests {
     use super::*;
@@ -85,10 +62,5 @@ mod tests {
         let root = bisect(|x| x * x - 2.0, 0.0, 2.0, 1e-14);
         assert!((root.unwrap_or(0.0) - 2f64.sqrt()).abs() < 1e-12);
         assert!(bisect(|x| x * x + 1.0, -1.0, 1.0, 1e-12).is_none());
-    }
-
-    #[test]
-    fn finds_a_minimum() {
-        assert!((golden_section(|x| (x - 0.3) * (x - 0.3), -1.0, 1.0, 1e-9) - 0.3).abs() < 1e-7);
     }
 }

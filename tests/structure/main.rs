@@ -110,6 +110,17 @@ fn every_family_has_its_starter_its_golden_case_and_its_published_design() {
 }
 
 #[test]
+fn every_rule_file_is_in_the_list_and_says_what_it_finds() {
+    let holds_a_rule = |file: &PathBuf| fs::read_to_string(file).unwrap().contains("const RULE: Rule");
+    let files = rust_files(&root().join("src/checks")).into_iter().filter(holds_a_rule).count();
+    assert_eq!(files, stripwright::checks::RULES.len(), "a rule file is not in RULES, or one stands there twice");
+    let mut codes = BTreeSet::new();
+    for rule in stripwright::checks::RULES {
+        assert!(codes.insert(rule.code) && !rule.about.is_empty() && !rule.source.is_empty(), "{}", rule.code);
+    }
+}
+
+#[test]
 fn top_level_holds_only_what_the_design_allows() {
     let allowed = ["Cargo.toml", "Cargo.lock", "README.md", "DEVELOPERS.md", "src", "tests", "templates", "out", "target"];
     for entry in fs::read_dir(root()).unwrap() {
