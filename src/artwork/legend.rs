@@ -10,13 +10,13 @@ use crate::artwork::shape::Ring;
 use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
 use crate::artwork::text::Block;
-use crate::artwork::text::spelt_out;
 use crate::artwork::text::upright;
 use crate::artwork::text::wrapped;
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Point;
 use crate::base::Problem;
+use crate::base::spelt_out;
 use crate::order::Order;
 use crate::order::TextOn;
 

@@ -5,9 +5,11 @@ mod nm;
 mod problem;
 mod quantity;
 mod root;
+mod spelling;
 
 pub use linear::solve_in_place;
 pub use nm::{Nm, Point};
 pub use problem::{Outcome, Place, Problem, Severity};
 pub use quantity::{Dimensionality, format_quantity, parse_quantity};
 pub use root::bisect;
+pub use spelling::spelt_out;

@@ -10,6 +10,7 @@ use num_complex::Complex64;
 
 use crate::base::Place;
 use crate::base::Problem;
+use crate::base::spelt_out;
 use crate::network::Method;
 use crate::network::Response;
 use crate::order::Order;
@@ -56,7 +57,7 @@ pub fn write(response: &Response, comments: &[String], out: &mut dyn Write) -> i
     let mut out = io::BufWriter::new(out);
     for comment in comments {
         for line in comment.lines() {
-            let line: String = line.chars().map(|c| if matches!(c, ' '..='~') { c } else { '?' }).collect();
+            let (line, _) = spelt_out(line);
             writeln!(out, "! {line}")?;
         }
     }

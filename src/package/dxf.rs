@@ -34,6 +34,7 @@ use dxf::tables::Layer as DxfLayer;
 use crate::artwork::Layer;
 use crate::base::Nm;
 use crate::base::Point;
+use crate::base::spelt_out;
 use crate::package::job::Job;
 
 pub(super) const OUTLINE: &str = "BOARD_OUTLINE";
@@ -278,7 +279,7 @@ impl Sheet {
 
 /// Printable ASCII only; the format's text has no other letters everywhere.
 fn plain(text: &str) -> String {
-    text.chars().map(|c| if matches!(c, ' '..='~') { c } else { '?' }).collect()
+    spelt_out(text).0
 }
 
 /// Takes the crate's text, and passes on what a strict reader accepts.

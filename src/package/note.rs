@@ -13,6 +13,7 @@ use crate::artwork::Layer;
 use crate::artwork::Role;
 use crate::artwork::shape::bounds;
 use crate::base::Nm;
+use crate::base::spelt_out;
 use crate::order::Compensation;
 use crate::order::Laminate;
 use crate::order::LaminateKind;
@@ -127,7 +128,7 @@ fn row(cells: &[&str]) -> Vec<String> {
 
 /// The format has no other letters.
 fn ascii(text: &str) -> String {
-    text.chars().map(|c| if matches!(c, ' '..='~') { c } else { '?' }).collect()
+    spelt_out(text).0
 }
 
 /// Metres as millimetres without needless zeros, three decimals at least.
@@ -164,7 +165,7 @@ fn files(note: &mut Note, job: &Job) {
     note.section("FILES AND WHICH OF THEM GOVERN");
     note.text(
         "The Gerber files (X2, millimetres, six decimals) and the drill files (XNC, millimetres) govern, then this note; the DXF file is for \
-         reference. All files share one origin at the lower left corner of the board, scale 1:1, seen from the top; none is mirrored.",
+         reference. All files share one origin at the lower left corner of the board (without an edge of its own: of the field), scale 1:1, seen from the top; none is mirrored.",
     );
     let listed: Vec<_> = job.written.iter().filter(|file| file.for_board_house).collect();
     if listed.is_empty() {
@@ -180,7 +181,7 @@ fn outline(note: &mut Note, order: &Order, board: &Board, layers: u8) {
     note.section("BOARD");
     let [x, y] = size(board);
     if board.outline_drawn {
-        note.field("Size", &format!("{} mm x {} mm, each +/-{} mm, routed", mm(x), mm(y), mm(order.shop.outline_tolerance_m)));
+        note.field("Size", &format!("{} mm x {} mm, each +/-{} mm, {}", mm(x), mm(y), mm(order.shop.outline_tolerance_m), cut(order)));
     } else {
         note.field(
             "Size",
@@ -188,9 +189,20 @@ fn outline(note: &mut Note, order: &Order, board: &Board, layers: u8) {
         );
     }
     note.field("Copper layers", &layers.to_string());
+    if !board.outline_drawn {
+        note.field("Delivered", "as part of that board, whose order says how");
+        return note.field("Layer order", LAYER_ORDER);
+    }
     note.field("Delivered", "as single boards; the board house makes its own panel; all boards of a panel in one direction");
-    note.field("Layer order", "copper 1 on the top with the filter, dielectric, copper 2 on the bottom as ground plane");
+    note.field("Layer order", LAYER_ORDER);
 }
+
+/// How this kind of laminate is cut to size.
+fn cut(order: &Order) -> &'static str {
+    if order.laminate.kind == LaminateKind::Ceramic { "scribed and broken, or cut by laser" } else { "routed" }
+}
+
+const LAYER_ORDER: &str = "copper 1 on the top with the filter, dielectric, copper 2 on the bottom as ground plane";
 
 fn stack(note: &mut Note, order: &Order, board: &Board) {
     note.section("STACK, TOP TO BOTTOM");
@@ -278,7 +290,10 @@ fn finish(note: &mut Note, order: &Order) {
 fn acceptance(note: &mut Note, order: &Order) {
     note.section("ACCEPTANCE");
     let standard = match order.laminate.kind {
-        LaminateKind::Ptfe | LaminateKind::Hydrocarbon | LaminateKind::Ceramic => "IPC-6018 (high-frequency boards)",
+        LaminateKind::Ceramic => {
+            "the maker's workmanship standard for metallised ceramic, after IPC-6018 (high-frequency boards) as far as it applies,"
+        }
+        LaminateKind::Ptfe | LaminateKind::Hydrocarbon => "IPC-6018 (high-frequency boards)",
         LaminateKind::GlassEpoxy | LaminateKind::Other => "IPC-6012 (rigid boards)",
     };
     note.field("Class", &format!("{standard} class {}; seen by eye per IPC-A-600 of the same class", order.acceptance_class));
@@ -353,7 +368,7 @@ fn forbidden(note: &mut Note, board: &Board) {
         high.y.mm()
     ));
     for item in [
-        "no copper balancing (thieving) and no added copper of any kind",
+        "no copper balancing (thieving) and no copper of any kind beyond what is drawn",
         "no teardrops, no rounded or trimmed corners, no fillets",
         "no removal, joining or shortening of open ends and of copper that nothing is connected to: these are the resonators",
         "no solder mask, no legend, no maker's mark",
@@ -445,8 +460,9 @@ fn edges_and_marking(note: &mut Note, order: &Order, board: &Board) {
     note.section("EDGES, MARKING, CLEANLINESS, PACKING");
     if board.outline_drawn {
         note.bullet(&format!(
-            "Edges routed, +/-{} mm; no scoring. The edges with connectors are flat, square and free of burrs; no break-away tab within 5 mm of a \
+            "Edges {}, +/-{} mm. The edges with connectors are flat, square and free of burrs; no break-away tab within 5 mm of a \
              connector; copper there ends as drawn, without smear over the edge.",
+            if order.laminate.kind == LaminateKind::Ceramic { cut(order) } else { "routed, no scoring" },
             mm(order.shop.outline_tolerance_m)
         ));
     }
