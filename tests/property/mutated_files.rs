@@ -155,15 +155,40 @@ fn read_all(text: &str) -> usize {
     problems.len()
 }
 
+/// A longer run, asked for by the environment: `STRIPWRIGHT_FUZZ=20` makes twenty times as many.
+fn rounds(usual: usize) -> usize {
+    usual * std::env::var("STRIPWRIGHT_FUZZ").ok().and_then(|times| times.parse().ok()).unwrap_or(1)
+}
+
+/// What reading lets pass of a spoilt order goes the whole way: made or refused, never a panic.
+#[test]
+fn spoilt_orders_that_pass_are_made_or_refused() {
+    const MADE: usize = 6;
+    let mut random = Random(4);
+    let (mut passed, mut tried) = (0, 0);
+    while passed < rounds(MADE) && tried < 500 * rounds(MADE) {
+        tried += 1;
+        let text = spoil(starter(), &mut random);
+        let Ok((order, _)) = order::read(&Source::from_text("spoilt.toml", text.as_str()), &family::keys()) else { continue };
+        passed += 1;
+        match stripwright::make(&order) {
+            Ok((made, _)) => assert!(made.response.s.iter().flatten().all(|s| s.is_finite()), "{text}"),
+            Err(problems) => assert!(problems.iter().any(|p| p.is_error() && !p.help.is_empty()), "{text}"),
+        }
+    }
+    assert_eq!(passed, rounds(MADE), "of {tried} spoilt orders");
+}
+
 #[test]
 fn spoilt_files_get_an_answer() {
     let dimensions = dimension_file();
     let classes = include_str!("../../templates/launches.toml");
     for (seed, text) in [(1, starter()), (2, dimensions.as_str()), (3, classes)] {
         let mut random = Random(seed);
-        let spoilt = (0..ROUNDS).filter(|_| read_all(&spoil(text, &mut random)) > 0).count();
+        let rounds = rounds(ROUNDS);
+        let spoilt = (0..rounds).filter(|_| read_all(&spoil(text, &mut random)) > 0).count();
         // Most of the changes hit something: otherwise this test spoils nothing.
-        assert!(spoilt > ROUNDS / 2, "only {spoilt} of {ROUNDS} had a problem");
+        assert!(spoilt > rounds / 2, "only {spoilt} of {rounds} had a problem");
     }
 }
 
