@@ -1,0 +1,4 @@
+//! The field solver against exact line constants, cavity resonances, energy, and the slow obvious sum.
+#![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
+
+mod line_constants;
