@@ -8,6 +8,7 @@ mod new;
 mod predict;
 pub mod problems;
 mod read;
+mod solve;
 mod table;
 
 use std::io::IsTerminal;
@@ -39,6 +40,7 @@ enum Command {
     Dimension(dimension::Arguments),
     Draw(make::DrawArguments),
     Predict(predict::Arguments),
+    Solve(solve::Arguments),
     Line(line::Arguments),
     List(list::List),
     /// Writes the completion script of a shell to stdout.
@@ -108,6 +110,7 @@ pub fn run() -> ExitCode {
         Command::Dimension(arguments) => dimension::run(arguments, voice),
         Command::Draw(arguments) => make::run_draw(arguments, voice),
         Command::Predict(arguments) => predict::run(arguments, voice),
+        Command::Solve(arguments) => solve::run(arguments, voice),
         Command::Line(arguments) => line::run(arguments, voice),
         Command::List(arguments) => list::run(arguments, voice),
         Command::Completions { shell } => {

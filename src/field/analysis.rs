@@ -94,7 +94,9 @@ impl Mesh {
 
     fn add_port(&mut self, geometry: &Geometry, number: usize, port: &GeometryPort) -> Result<(), Problem> {
         let at = on_copper(geometry, port);
-        let no_copper = || Problem::error("port-on-no-copper", Place::Board(at), format!("port {number} lies on no copper"), "move the port onto a strip");
+        let no_copper = || {
+            Problem::error("port-on-no-copper", Place::Board(at), format!("port {number} lies on no copper"), "move the port onto a strip")
+        };
         let index = geometry.piece_at(at).ok_or_else(no_copper)?;
         let size_m = self.structure.size_m;
         let patch = &self.structure.patches[index];
@@ -107,8 +109,7 @@ impl Mesh {
                 let (length, across_m) = if axis == Axis::X { (size_m[0], size_m[1]) } else { (size_m[1], size_m[0]) };
                 let columns = turned.columns();
                 let column = |i: usize| if far { columns - 1 - i } else { i };
-                let along_m: Vec<f64> =
-                    if far { turned.x_m.iter().rev().map(|x| length - x).collect() } else { turned.x_m.clone() };
+                let along_m: Vec<f64> = if far { turned.x_m.iter().rev().map(|x| length - x).collect() } else { turned.x_m.clone() };
                 let row = (0..turned.rows()).find(|&j| turned.y_m[j] <= at.m() && at.m() <= turned.y_m[j + 1]).ok_or_else(no_copper)?;
                 let run = |i: usize| {
                     let is = |j: usize| turned.is_copper(column(i), j);
@@ -120,8 +121,14 @@ impl Mesh {
                 let planes = along_m.iter().position(|x| (x - plane.m()).abs() < SAME_PLACE_M);
                 let straight = planes.is_some_and(|k| k > 0 && (0..k).all(|i| run(i).as_ref() == Some(&across)));
                 let Some(k) = planes.filter(|_| straight && along_m[0].abs() < SAME_PLACE_M) else {
-                    let message = format!("port {number}: the strip does not run straight from the wall to its reference plane at {} mm", plane.mm());
-                    return Err(Problem::error("feed-not-straight", Place::Board(on_copper(geometry, port)), message, "shorten `plane`, or lengthen the straight feed"));
+                    let message =
+                        format!("port {number}: the strip does not run straight from the wall to its reference plane at {} mm", plane.mm());
+                    return Err(Problem::error(
+                        "feed-not-straight",
+                        Place::Board(on_copper(geometry, port)),
+                        message,
+                        "shorten `plane`, or lengthen the straight feed",
+                    ));
                 };
                 let feed = Feed {
                     across_m: turned.y_m[across.start..=across.end].to_vec(),
@@ -282,7 +289,12 @@ impl Analysis {
             Ok(Solved { s, lines })
         } else {
             let message = format!("the response at {f_hz} Hz is not finite");
-            Err(Problem::error("field-not-solved", Place::Whole, message, "give the copper its loss, or move the frequency off a resonance of the box"))
+            Err(Problem::error(
+                "field-not-solved",
+                Place::Whole,
+                message,
+                "give the copper its loss, or move the frequency off a resonance of the box",
+            ))
         }
     }
 }

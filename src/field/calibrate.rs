@@ -8,8 +8,8 @@ use num_complex::Complex64;
 
 use super::far::Split;
 use super::grid::{Axis, Patch};
-use super::structure::{Sheet, Solver, Source, Structure};
 use super::stack::Stack;
+use super::structure::{Sheet, Solver, Source, Structure};
 use crate::base::Place;
 use crate::base::Problem;
 
@@ -113,7 +113,8 @@ impl Calibration {
                 f_hz / 1e9,
                 found.residual
             );
-            let help = "move the reference plane further from the wall (half the box's width), or make the box narrower than half a wavelength";
+            let help =
+                "move the reference plane further from the wall (half the box's width), or make the box narrower than half a wavelength";
             return Err(Problem::error("calibration-inconsistent", Place::Whole, message, help));
         }
         Ok(found)

@@ -10,7 +10,7 @@ use rayon::prelude::*;
 use super::grid::{Axis, Family, Patch, Profile};
 use super::kernel::{Kernels, near_share};
 use super::near::{Near, rows_of_groups};
-use super::stack::{MU0, EPS0, Stack};
+use super::stack::{EPS0, MU0, Stack};
 
 /// Where the far part may stop; see [`Modes::new`].
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -161,7 +161,12 @@ pub struct Potential {
 
 /// Near and far part together at one frequency: `first` and `third` are the large-k coefficients of the kernel.
 pub fn potential(
-    family: &Family, near: &Near, transforms: &Transforms, spectrum: &Spectrum, [first, third]: [Complex64; 2], lossless: bool,
+    family: &Family,
+    near: &Near,
+    transforms: &Transforms,
+    spectrum: &Spectrum,
+    [first, third]: [Complex64; 2],
+    lossless: bool,
 ) -> Potential {
     let n = family.size;
     let turned;

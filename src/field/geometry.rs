@@ -117,13 +117,15 @@ impl Geometry {
                 }
                 let room = if matches!(side, Side::Left | Side::Right) { self.size[0] } else { self.size[1] };
                 (plane <= Nm::ZERO || plane >= room).then(|| {
-                    let message = format!("port {number}: the reference plane lies {} mm from the wall of a box {} mm long", plane.mm(), room.mm());
+                    let message =
+                        format!("port {number}: the reference plane lies {} mm from the wall of a box {} mm long", plane.mm(), room.mm());
                     Problem::error("reference-plane-outside", Place::Board(point), message, "put it within the box, in the straight feed")
                 })
             }
             PortPlace::Gap { from, to } => {
                 if (from.x == to.x) == (from.y == to.y) {
-                    let message = format!("port {number} runs from ({}, {}) to ({}, {}) mm", from.x.mm(), from.y.mm(), to.x.mm(), to.y.mm());
+                    let message =
+                        format!("port {number} runs from ({}, {}) to ({}, {}) mm", from.x.mm(), from.y.mm(), to.x.mm(), to.y.mm());
                     let help = "give two points on the two edges of a strip, with the same x or the same y";
                     return Some(Problem::error("port-across-nothing", Place::Board(from), message, help));
                 }

@@ -223,11 +223,8 @@ impl Overlaps {
 fn antiderivative(profile: Profile, u: f64, t: f64) -> f64 {
     let z = u / (2.0 * t);
     // Beyond 6.5 the error function is one and the exponential below 5e-19.
-    let (g1, bell) = if z.abs() > 6.5 {
-        (0.5f64.copysign(z), 0.0)
-    } else {
-        (0.5 * libm::erf(z), t / std::f64::consts::PI.sqrt() * (-z * z).exp())
-    };
+    let (g1, bell) =
+        if z.abs() > 6.5 { (0.5f64.copysign(z), 0.0) } else { (0.5 * libm::erf(z), t / std::f64::consts::PI.sqrt() * (-z * z).exp()) };
     let g2 = u * g1 + bell;
     match profile {
         Profile::Pulse => g2,
@@ -261,7 +258,11 @@ mod tests {
                                 Profile::Pulse => f64::from(u8::from(x >= lines[index] && x <= lines[index + 1])),
                                 Profile::Triangle => {
                                     let up = if index == 0 { 1.0 } else { (x - lines[index - 1]) / (lines[index] - lines[index - 1]) };
-                                    let down = if index + 1 == lines.len() { 1.0 } else { (lines[index + 1] - x) / (lines[index + 1] - lines[index]) };
+                                    let down = if index + 1 == lines.len() {
+                                        1.0
+                                    } else {
+                                        (lines[index + 1] - x) / (lines[index + 1] - lines[index])
+                                    };
                                     up.min(down).clamp(0.0, 1.0)
                                 }
                             };

@@ -145,7 +145,8 @@ impl<'a> Plan<'a> {
                 cutoffs.len(),
                 first / 1e9
             );
-            let help = format!("give a lid, make the box smaller, or ask for at most {MOST_DIRECT} points, which are then solved one by one");
+            let help =
+                format!("give a lid, make the box smaller, or ask for at most {MOST_DIRECT} points, which are then solved one by one");
             return one(Problem::error("open-top-cutoffs", Place::Whole, message, help));
         }
         let stair_m = options.stair_m.unwrap_or(0.1 * geometry.stack.below_m());

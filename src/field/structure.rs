@@ -103,7 +103,8 @@ impl Solver {
         let families = [&unknowns.cells, &unknowns.along_x, &unknowns.along_y];
         let near = families.map(|family| Near::new(family, &structure.patches, structure.size_m, &cut));
         let transforms = families.map(|family| Transforms::new(family, &structure.patches, &modes));
-        let excitation: Vec<Vec<(usize, f64)>> = structure.sources.iter().map(|source| excitation(source, &structure.patches, &unknowns)).collect();
+        let excitation: Vec<Vec<(usize, f64)>> =
+            structure.sources.iter().map(|source| excitation(source, &structure.patches, &unknowns)).collect();
         if let Some(index) = excitation.iter().position(Vec::is_empty) {
             let message = format!("no current can flow through port {}", index + 1);
             return Err(Problem::error("port-on-no-copper", Place::Whole, message, "place the port where copper crosses its line"));
@@ -260,7 +261,12 @@ impl Solver {
             Ok(admittance)
         } else {
             let message = format!("the currents at {} Hz are not finite", f_hz);
-            Err(Problem::error("field-not-solved", Place::Whole, message, "a frequency on a resonance of the lossless box: give the copper its loss"))
+            Err(Problem::error(
+                "field-not-solved",
+                Place::Whole,
+                message,
+                "a frequency on a resonance of the lossless box: give the copper its loss",
+            ))
         }
     }
 }

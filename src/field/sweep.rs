@@ -44,7 +44,10 @@ pub struct Swept {
 /// # Errors
 /// Those of `solve`; `sweep-interrupted`; `fit-not-converged` when the fit still moves after the greatest number of solves.
 pub fn sweep(
-    f_hz: &[f64], options: &SweepOptions, mut solve: impl FnMut(f64) -> Result<Vec<Complex64>, Problem>, mut go_on: impl FnMut(usize, f64) -> bool,
+    f_hz: &[f64],
+    options: &SweepOptions,
+    mut solve: impl FnMut(f64) -> Result<Vec<Complex64>, Problem>,
+    mut go_on: impl FnMut(usize, f64) -> bool,
 ) -> Result<Swept, Problem> {
     const FIRST: usize = 7;
     let (Some(&from), Some(&to)) = (f_hz.first(), f_hz.last()) else {
@@ -55,7 +58,12 @@ pub fn sweep(
     let mut change = f64::INFINITY;
     let mut run = |f: f64, known: &mut Vec<(f64, Vec<Complex64>)>, change: f64| -> Result<(), Problem> {
         if !go_on(known.len(), change) {
-            return Err(Problem::error("sweep-interrupted", Place::Whole, format!("stopped after {} frequencies", known.len()), "run it again"));
+            return Err(Problem::error(
+                "sweep-interrupted",
+                Place::Whole,
+                format!("stopped after {} frequencies", known.len()),
+                "run it again",
+            ));
         }
         let values = solve(f)?;
         order.push(f);
@@ -82,8 +90,11 @@ pub fn sweep(
     while quiet < 2 {
         let left = known.len() < f_hz.len();
         if known.len() >= options.most_solves && left {
-            let message =
-                format!("after {} solved frequencies the fit still moves by {change:.1e}, {:.0e} is asked for", known.len(), options.tolerance);
+            let message = format!(
+                "after {} solved frequencies the fit still moves by {change:.1e}, {:.0e} is asked for",
+                known.len(),
+                options.tolerance
+            );
             let help = "sweep a narrower band, or give the copper its loss";
             return Err(Problem::error("fit-not-converged", Place::Whole, message, help));
         }
@@ -91,7 +102,11 @@ pub fn sweep(
             break;
         }
         // The next one where the fit moved most; before any comparison, in the widest gap.
-        let next = if change.is_infinite() { widest_gap(f_hz, &known) } else { worst(f_hz, &known, &values, &Rational::fit(&known[..known.len() - 1], from, to)) };
+        let next = if change.is_infinite() {
+            widest_gap(f_hz, &known)
+        } else {
+            worst(f_hz, &known, &values, &Rational::fit(&known[..known.len() - 1], from, to))
+        };
         run(next, &mut known, change)?;
         let newer = evaluate(&Rational::fit(&known, from, to));
         change = values.iter().zip(&newer).flat_map(|(a, b)| a.iter().zip(b)).map(|(a, b)| (a - b).norm()).fold(0.0, f64::max);
