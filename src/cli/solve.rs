@@ -33,7 +33,7 @@ pub struct Arguments {
     #[arg(long, value_name = "FILE")]
     touchstone: Option<PathBuf>,
     /// Density of the finer mesh: 1 is the plain grid, 2 halves every cell
-    #[arg(long, default_value_t = 2.0, value_parser = density)]
+    #[arg(long, default_value_t = 1.0, value_parser = density)]
     density: f64,
     /// Greatest number of unknowns
     #[arg(long, default_value_t = field::LIMIT)]

@@ -1,6 +1,7 @@
 //! The drawn copper, solved: a full-wave method of moments in a metal box.
 
 mod analysis;
+mod board;
 mod calibrate;
 mod far;
 mod geometry;
@@ -16,6 +17,7 @@ mod structure;
 mod sweep;
 
 pub use analysis::{Analysis, Mesh, Solved};
+pub use board::{BoardGeometry, FAR_LID_HEIGHTS, FAR_WALL_HEIGHTS, from_board};
 pub use calibrate::{Calibration, Feed, PortLine};
 pub use far::Split;
 pub use geometry::{Conductor, Geometry, GeometryPort, PortPlace};

@@ -2,6 +2,7 @@
 
 use toml::de::DeValue;
 
+use super::board::{FAR_LID_HEIGHTS, FAR_WALL_HEIGHTS};
 use super::geometry::{Conductor, Geometry, GeometryPort, PortPlace};
 use super::stack::{Dielectric, Stack, Top};
 use crate::artwork::shape::{Region, Ring, bounds, rectangle};
@@ -29,10 +30,6 @@ const IMPEDANCE: Size = Size { kind: Dimensionality::Impedance, unit: "ohm", lea
 const GREATEST_MM: f64 = 1000.0;
 /// Conductivity of annealed copper, S/m (International Annealed Copper Standard, 20 degrees).
 const COPPER_S_PER_M: f64 = 5.8e7;
-/// Walls of an "open board" stand this many substrate heights from the copper, the lid this many above it: the two together move the effective
-/// permittivity of a 50 ohm line by less than 0.1 % (tests/field).
-const OPEN_WALL_HEIGHTS: f64 = 24.0;
-const OPEN_LID_HEIGHTS: f64 = 30.0;
 
 /// A geometry with the frequencies it is to be solved at.
 #[derive(Clone, Debug, PartialEq)]
@@ -106,11 +103,11 @@ fn file(root: &Table<'_>) -> Option<GeometryFile> {
             let corners = bounds(copper.rings().flatten().copied())?;
             let margin = |side: Side| {
                 let fed = ports.iter().any(|p| matches!(p.place, PortPlace::Wall { side: s, .. } if s == side));
-                if fed { Nm::ZERO } else { Nm::from_m(OPEN_WALL_HEIGHTS * height_m) }
+                if fed { Nm::ZERO } else { Nm::from_m(FAR_WALL_HEIGHTS * height_m) }
             };
             let [left, right, bottom, top] = [Side::Left, Side::Right, Side::Bottom, Side::Top].map(margin);
             let size = [corners[1].x - corners[0].x + left + right, corners[1].y - corners[0].y + bottom + top];
-            (size, Some(OPEN_LID_HEIGHTS * height_m + above_m), [left - corners[0].x, bottom - corners[0].y], true)
+            (size, Some(FAR_LID_HEIGHTS * height_m + above_m), [left - corners[0].x, bottom - corners[0].y], true)
         }
     };
     let mut above = above;

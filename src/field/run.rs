@@ -35,7 +35,7 @@ pub const LIMIT: usize = 6000;
 
 impl Default for Options {
     fn default() -> Options {
-        Options { refine: 2.0, coarser: 0.5, stair_m: None, limit: LIMIT, sweep: SweepOptions::default(), split: Split::default() }
+        Options { refine: 1.0, coarser: 0.5, stair_m: None, limit: LIMIT, sweep: SweepOptions::default(), split: Split::default() }
     }
 }
 
