@@ -8,13 +8,19 @@ use num_complex::Complex64;
 
 use super::far::Split;
 use super::grid::{Axis, Patch};
-use super::stack::Stack;
+use super::stack::{Stack, Top};
 use super::structure::{Sheet, Solver, Source, Structure};
 use crate::base::Place;
 use crate::base::Problem;
+use crate::line::C_M_PER_S;
 
 /// Greatest difference between the through standard and the line it should be; above it evanescent box modes reach from port to port.
 const GREATEST_RESIDUAL: f64 = 1e-3;
+
+/// Standards stand in a box no wider than this share of half a wavelength; at 0.6 evanescent modes still reach the reference plane with 1e-3.
+const NARROW: f64 = 0.5;
+/// Nor narrower than the strip and this many substrate heights.
+const LEAST_MARGIN_HEIGHTS: f64 = 16.0;
 
 /// A feed line that runs from a wall straight to the reference plane: its lines across (from the box's own corner) and along (from the wall).
 #[derive(Clone, Debug, PartialEq)]
@@ -31,6 +37,25 @@ impl Feed {
     /// Distance of the reference plane from the wall.
     pub fn length_m(&self) -> f64 {
         self.along_m.last().copied().unwrap_or(0.0)
+    }
+
+    /// The feed in the middle of a narrower box, where its own would let modes of the box through or keep them alive up to the plane.
+    fn narrowed(&self, stack: &Stack, highest_hz: f64) -> Feed {
+        let layers = || stack.below.iter().chain(&stack.above);
+        // An open top is mostly its last layer.
+        let mean = match stack.top {
+            Top::Open => stack.above.last().map_or(1.0, |l| l.permittivity),
+            Top::Lid => layers().map(|l| l.permittivity * l.thickness_m).sum::<f64>() / layers().map(|l| l.thickness_m).sum::<f64>(),
+        };
+        let cutoff_m = C_M_PER_S / (2.0 * highest_hz * mean.sqrt());
+        let (Some(first), Some(last)) = (self.across_m.first(), self.across_m.last()) else { return self.clone() };
+        let width = last - first;
+        let narrow = (NARROW * cutoff_m).max(width + LEAST_MARGIN_HEIGHTS * stack.below_m());
+        if self.box_across_m <= narrow {
+            return self.clone();
+        }
+        let shift = 0.5 * (narrow - width) - first;
+        Feed { across_m: self.across_m.iter().map(|y| y + shift).collect(), along_m: self.along_m.clone(), box_across_m: narrow }
     }
 
     /// Through standard of this feed twice with `extra_m` in the middle.
@@ -73,7 +98,7 @@ pub struct PortLine {
 impl PortLine {
     /// `(c0 beta / w)^2`.
     pub fn eps_eff(&self, f_hz: f64) -> f64 {
-        (self.gamma_per_m.im * crate::line::C_M_PER_S / (2.0 * std::f64::consts::PI * f_hz)).powi(2)
+        (self.gamma_per_m.im * C_M_PER_S / (2.0 * std::f64::consts::PI * f_hz)).powi(2)
     }
 }
 
@@ -91,7 +116,8 @@ impl Calibration {
     /// # Errors
     /// Those of [`Solver::new`].
     pub fn new(feed: &Feed, stack: &Stack, sheet: Option<Sheet>, highest_hz: f64, split: Split) -> Result<Calibration, Problem> {
-        let extra_m = 0.3 * crate::line::C_M_PER_S / (highest_hz * stack.greatest_permittivity().sqrt());
+        let extra_m = 0.3 * C_M_PER_S / (highest_hz * stack.greatest_permittivity().sqrt());
+        let feed = feed.narrowed(stack, highest_hz);
         let solver = |extra| Solver::new(feed.standard(stack, sheet, extra), highest_hz, split);
         Ok(Calibration { thru: solver(0.0)?, line: solver(extra_m)?, length_m: feed.length_m(), extra_m })
     }

@@ -29,7 +29,7 @@ impl Default for Split {
 }
 
 /// The modes of the far part and the Gaussian cut that goes with them.
-#[derive(Clone, Copy, Debug, PartialEq)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct Modes {
     size_m: [f64; 2],
     /// Greatest transverse wave number, 1/m.
@@ -38,6 +38,8 @@ pub struct Modes {
     pub cut_m: f64,
     /// Number of modes along x and y, the zeroth included.
     pub count: [usize; 2],
+    /// What of `1/k` and `1/k^3` the near part has, for every mode; empty until [`Modes::prepared`].
+    shares: Vec<(f64, f64)>,
 }
 
 impl Modes {
@@ -48,7 +50,20 @@ impl Modes {
         // One mirror image per wall is enough for the near part as long as the cut is a sixteenth of the box.
         let k_max = (split.layer_decay / stack.nearest_interface_m()).max(8.0 * medium).max(16.0 * split.gaussian / shorter);
         let count = size_m.map(|length| (k_max * length / PI).floor() as usize + 1);
-        Modes { size_m, k_max, cut_m: split.gaussian / k_max, count }
+        Modes { size_m, k_max, cut_m: split.gaussian / k_max, count, shares: Vec::new() }
+    }
+
+    /// The same with what does not change with frequency.
+    pub fn prepared(mut self) -> Modes {
+        let modes = self.count[0] * self.count[1];
+        self.shares = (0..modes).into_par_iter().map(|i| near_share(self.wave_number(i), self.cut_m)).collect();
+        self
+    }
+
+    /// Transverse wave number of a mode, numbered along y first.
+    fn wave_number(&self, mode: usize) -> f64 {
+        let columns = self.count[1];
+        ((mode / columns) as f64 * PI / self.size_m[0]).hypot((mode % columns) as f64 * PI / self.size_m[1])
     }
 
     /// The far kernels of vector and scalar potential of every mode, x along the rows.
@@ -56,15 +71,14 @@ impl Modes {
         let [columns, rows] = [self.count[1], self.count[0]];
         let values: Vec<[Complex64; 2]> = (0..rows * columns)
             .into_par_iter()
-            .map(|i| {
-                let (kx, ky) = ((i / columns) as f64 * PI / self.size_m[0], (i % columns) as f64 * PI / self.size_m[1]);
-                let k = kx.hypot(ky);
+            .zip(&self.shares)
+            .map(|(i, &(one, three))| {
+                let k = self.wave_number(i);
                 // The zeroth mode carries no current along either axis.
                 if i == 0 || k > self.k_max {
                     return [Complex64::from(0.0); 2];
                 }
                 let (l, p) = kernels.at(k);
-                let (one, three) = near_share(k, self.cut_m);
                 [l - kernels.l1 * one - kernels.l3 * three, p - kernels.p1 * one - kernels.p3 * three]
             })
             .collect();
@@ -195,33 +209,28 @@ pub fn potential(
             let mut weights = Mat::<f64>::zeros(kernel.nrows(), others.len());
             matmul(weights.as_mut(), Accum::Replace, kernel.as_ref(), products.as_ref(), 1.0, Par::Seq);
             let inner = &transforms.inner[group.patch];
-            let mut scaled = Mat::<f64>::zeros(kernel.nrows(), group.inner.len());
-            let mut gathered = Mat::<f64>::zeros(0, 0);
-            let mut gathered_for: Option<(usize, &Vec<usize>)> = None;
-            let mut block = Mat::<f64>::zeros(0, 0);
-            for (o, other) in others.iter().enumerate() {
-                for (column, &i) in group.inner.iter().enumerate() {
-                    for mode in 0..kernel.nrows() {
-                        scaled[(mode, column)] = inner[(mode, i)] * weights[(mode, o)];
-                    }
-                }
-                // Neighbouring groups mostly have the same inner functions.
-                if gathered_for != Some((other.patch, &other.inner)) {
-                    let theirs = &transforms.inner[other.patch];
-                    gathered = Mat::from_fn(kernel.nrows(), other.inner.len(), |mode, column| theirs[(mode, other.inner[column])]);
-                    gathered_for = Some((other.patch, &other.inner));
-                }
-                if block.nrows() != other.inner.len() || block.ncols() != group.inner.len() {
-                    block = Mat::zeros(other.inner.len(), group.inner.len());
-                }
+            let (modes, count) = (kernel.nrows(), group.inner.len());
+            let mut start = 0;
+            // Neighbouring groups mostly have the same inner functions: one product for each run of them.
+            while let Some(first) = others.get(start) {
+                let run = others[start..].iter().take_while(|other| (other.patch, &other.inner) == (first.patch, &first.inner)).count();
+                let scaled =
+                    Mat::from_fn(modes, count * run, |mode, i| inner[(mode, group.inner[i % count])] * weights[(mode, start + i / count)]);
+                let theirs = &transforms.inner[first.patch];
+                let gathered = Mat::from_fn(modes, first.inner.len(), |mode, column| theirs[(mode, first.inner[column])]);
                 // Transposed, so that its columns are stretches of the row-major rows.
+                let mut block = Mat::<f64>::zeros(first.inner.len(), count * run);
                 matmul(block.as_mut(), Accum::Replace, gathered.transpose(), scaled.as_ref(), 1.0, Par::Seq);
-                for row in 0..group.inner.len() {
-                    let at = row * n + other.start;
-                    for (column, value) in rows[at..at + other.inner.len()].iter_mut().enumerate() {
-                        *value += block[(column, row)];
+                for (o, other) in others[start..start + run].iter().enumerate() {
+                    for row in 0..count {
+                        let at = row * n + other.start;
+                        let sums = block.col(o * count + row);
+                        for (value, sum) in rows[at..at + other.inner.len()].iter_mut().zip(sums.iter()) {
+                            *value += sum;
+                        }
                     }
                 }
+                start += run;
             }
         });
     }

@@ -48,7 +48,12 @@ pub struct Stack {
 impl Stack {
     /// Whether no layer loses and nothing leaves: then the moment matrix is real but for a factor.
     pub fn is_lossless(&self) -> bool {
-        self.top == Top::Lid && self.below.iter().chain(&self.above).all(|layer| layer.loss_tangent.abs() < f64::MIN_POSITIVE)
+        self.top == Top::Lid && !self.loses()
+    }
+
+    /// Whether any layer has a loss tangent.
+    pub fn loses(&self) -> bool {
+        self.below.iter().chain(&self.above).any(|layer| layer.loss_tangent.abs() >= f64::MIN_POSITIVE)
     }
 
     /// Thickness from the ground to the copper.

@@ -79,6 +79,9 @@ pub struct Structure {
     pub sheet: Option<Sheet>,
 }
 
+/// Below this number of unknowns symmetric elimination is the faster on two cores (`cargo bench --bench field`).
+const SYMMETRIC_BELOW: usize = 1500;
+
 /// Everything of a structure that does not change with frequency.
 pub struct Solver {
     structure: Structure,
@@ -96,7 +99,7 @@ impl Solver {
     /// `port-on-no-copper`: a source across a line no current crosses.
     pub fn new(structure: Structure, highest_hz: f64, split: Split) -> Result<Solver, Problem> {
         let unknowns = Unknowns::new(&structure.patches, structure.size_m);
-        let modes = Modes::new(&structure.stack, structure.size_m, highest_hz, split);
+        let modes = Modes::new(&structure.stack, structure.size_m, highest_hz, split).prepared();
         let lines = || structure.patches.iter().flat_map(|p| p.x_m.windows(2).chain(p.y_m.windows(2)));
         let smallest = lines().map(|w| w[1] - w[0]).fold(f64::INFINITY, f64::min);
         let cut = Cut::new(modes.cut_m, smallest);
@@ -242,7 +245,8 @@ impl Solver {
         }
         let currents: Mat<Complex64> = if imaginary.is_empty() {
             let matrix = MatRef::from_column_major_slice(&real, n, n);
-            let solved = matrix.lblt(Side::Lower).solve(&right);
+            // The symmetric elimination does half the work but on one core.
+            let solved = if n < SYMMETRIC_BELOW { matrix.lblt(Side::Lower).solve(&right) } else { matrix.partial_piv_lu().solve(&right) };
             Mat::from_fn(n, ports, |i, j| Complex64::from(solved[(i, j)]))
         } else {
             let values: Vec<Complex64> = real.into_par_iter().zip(imaginary).map(|(re, im)| Complex64::new(re, im)).collect();

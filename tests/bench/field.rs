@@ -35,7 +35,10 @@ fn main() {
         unknowns = solution.unknowns;
         println!("  error bar {:.4?}, solves {:?}", solution.error_bar, solution.solves);
     });
-    println!("third-order edge-coupled, 501 points, N {unknowns:?}, two meshes, calibration: {time_s:.2} s, limit {LIMIT_S} s, ratio {:.2}", time_s / LIMIT_S);
+    println!(
+        "third-order edge-coupled, 501 points, N {unknowns:?}, two meshes, calibration: {time_s:.2} s, limit {LIMIT_S} s, ratio {:.2}",
+        time_s / LIMIT_S
+    );
     let sizes: &[f64] = if long { &[1.0, 1.5, 2.0, 2.4] } else { &[1.0, 1.5] };
     for &refine in sizes {
         let highest_hz = *file.f_hz.last().unwrap();

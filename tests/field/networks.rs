@@ -8,9 +8,9 @@ use crate::sample::{analysis, geometry, layer, mm, stack, through, wall};
 
 /// A line with an open stub and a gap-coupled neighbour.
 fn stub() -> stripwright::field::Geometry {
-    let ports = vec![wall(Side::Left, 8.0, 8.0), wall(Side::Right, 8.0, 8.0)];
-    let rectangles = [[0.0, 7.4, 30.0, 8.6], [14.0, 8.6, 15.0, 13.0], [10.0, 6.2, 20.0, 7.2]];
-    geometry(stack(3.5, 0.508, 8.0), [30.0, 16.0], &rectangles, ports)
+    let ports = vec![wall(Side::Left, 6.0, 9.0), wall(Side::Right, 6.0, 9.0)];
+    let rectangles = [[0.0, 5.4, 30.0, 6.6], [14.0, 6.6, 15.0, 10.5], [10.0, 4.2, 20.0, 5.2]];
+    geometry(stack(3.5, 0.508, 8.0), [30.0, 12.0], &rectangles, ports)
 }
 
 #[test]
@@ -58,7 +58,7 @@ fn ports_along_y_equal_ports_along_x() {
     // A swap of x and y mirrors; the union needs its rings turned round again.
     let rings: Vec<Vec<Point>> = along_x.copper.pieces.iter().map(|p| p.outer.iter().map(|q| Point { x: q.y, y: q.x }).collect()).collect();
     along_y.copper = stripwright::artwork::shape::Region::union_of(&rings);
-    along_y.ports = vec![wall(Side::Bottom, 8.0, 8.0), wall(Side::Top, 8.0, 8.0)];
+    along_y.ports = vec![wall(Side::Bottom, 6.0, 9.0), wall(Side::Top, 6.0, 9.0)];
     let (one, two) = (analysis(&along_x, 6e9, 1.0, Split::default()), analysis(&along_y, 6e9, 1.0, Split::default()));
     let (s, t) = (one.at(4e9).unwrap().s, two.at(4e9).unwrap().s);
     for (a, b) in s.iter().zip(&t) {
