@@ -99,7 +99,8 @@ pub fn draw(dimensions: &Dimensions) -> Result<Made, Vec<Problem>> {
     let family = family::of(order).map_err(|problem| vec![problem])?;
     let layout = family.layout(dimensions)?;
     let (board, mut findings) = artwork::board(order, &layout)?;
-    let response = network::predict(order, &layout).map_err(|problem| vec![problem])?;
+    let (response, warnings) = network::predict(order, &layout)?;
+    findings.extend(warnings);
     let figures = Figures::of(order, &response);
     findings.extend(checks::run(&checks::Subject { dimensions, layout: &layout, board: &board, response: &response, figures: &figures }));
     Ok(Made { dimensions: dimensions.clone(), layout, board, response, figures, findings })

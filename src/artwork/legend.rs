@@ -2,16 +2,17 @@
 
 use crate::artwork::Hole;
 use crate::artwork::launch::Launched;
+use crate::artwork::room::Room;
 use crate::artwork::shape::CHORD_ERROR;
 use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
-use crate::artwork::text::Room;
-use crate::artwork::text::block;
+use crate::artwork::text::Block;
 use crate::artwork::text::spelt_out;
 use crate::artwork::text::upright;
+use crate::artwork::text::wrapped;
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Point;
@@ -25,6 +26,8 @@ const HEIGHTS: [Nm; 3] = [Nm(1_800_000), Nm(1_400_000), Nm(1_000_000)];
 const STROKE_SHARE: f64 = 0.12;
 /// A letter's strokes leave no counters when they are thicker than this share of its height.
 const MAX_STROKE_SHARE: f64 = 0.2;
+/// Where long lines find no place, they are wrapped at so many letters.
+const WRAPS: [usize; 3] = [24, 16, 10];
 /// A port's number stands within this distance of the port or not at all.
 const PORT_NUMBER_REACH: Nm = Nm(20_000_000);
 
@@ -48,7 +51,7 @@ pub(super) fn room(order: &Order, size: Point, circuit: &Region, others: &[&Regi
     let mut rings: Vec<Ring> = launches.iter().map(|launch| launch.footprint.clone()).collect();
     rings.extend(holes.iter().map(|hole| disc(hole.at, Nm(hole.diameter.max(hole.pad).0 / 2) + clear)));
     obstacles.extend(rings.into_iter().map(|outer| Piece { outer, voids: Vec::new() }));
-    Room::new(Point { x: edge, y: edge }, Point { x: size.x - edge, y: size.y - edge }, obstacles)
+    Room::new(Point { x: edge, y: edge }, Point { x: size.x - edge, y: size.y - edge }, &obstacles)
 }
 
 /// The lines, most wanted first, spelt in letters the font has.
@@ -105,21 +108,20 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
         let mut region = region;
         region.shift(at.x, at.y);
         area.pieces.extend(region.pieces);
-        room.take(Piece { outer: rectangle(at, at.shifted(size[0], size[1])), voids: Vec::new() });
+        room.take(&Piece { outer: rectangle(at, at.shifted(size[0], size[1])), voids: Vec::new() });
     };
     let mut missing_ports = Vec::new();
     for (i, &port) in ports.iter().enumerate() {
         let number = (i + 1).to_string();
         let height = heights.first().copied().unwrap_or(least_height);
-        let drawn = block(std::slice::from_ref(&number), height, stroke(height));
-        let size = size(&drawn);
-        match room.place(size, port).filter(|&at| near(at, port)) {
-            Some(at) => put(drawn, at, size, room),
+        let block = Block::new(std::slice::from_ref(&number), height, stroke(height));
+        match room.place(block.size(), port).filter(|&at| near(at, port)) {
+            Some(at) => put(block.drawn(), at, block.size(), room),
             None => missing_ports.push(number),
         }
     }
     let wanted = lines(order, &mut problems);
-    let target = room.low;
+    let target = room.corner();
     let mut written = 0;
     'fits: for count in (1..=wanted.len()).rev() {
         // The title stands on top when it is there; the others keep their order.
@@ -127,17 +129,18 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
         if count == 3 {
             lines.rotate_right(1);
         }
-        for &height in &heights {
-            let flat = block(&lines, height, stroke(height));
-            let [length, width] = size(&flat);
-            // Lying text reads better; on a narrow board it stands.
-            if let Some(at) = room.place([length, width], target) {
-                put(flat, at, [length, width], room);
-                written = count;
-                break 'fits;
-            }
-            if let Some(at) = room.place([width, length], target) {
-                put(upright(&flat), at, [width, length], room);
+        for lines in std::iter::once(lines.clone()).chain(WRAPS.map(|most| wrapped(&lines, most))) {
+            for &height in &heights {
+                let block = Block::new(&lines, height, stroke(height));
+                let [length, width] = block.size();
+                // Lying text reads better; on a narrow board it stands.
+                if let Some(at) = room.place([length, width], target) {
+                    put(block.drawn(), at, [length, width], room);
+                } else if let Some(at) = room.place([width, length], target) {
+                    put(upright(&block.drawn(), width), at, [width, length], room);
+                } else {
+                    continue;
+                }
                 written = count;
                 break 'fits;
             }
@@ -159,8 +162,4 @@ pub(super) fn drawn(order: &Order, room: &mut Room, ports: [Point; 2]) -> (Regio
 
 fn near(at: Point, port: Point) -> bool {
     (at.x - port.x).abs() <= PORT_NUMBER_REACH && (at.y - port.y).abs() <= PORT_NUMBER_REACH
-}
-
-fn size(region: &Region) -> [Nm; 2] {
-    region.bounds().map_or([Nm::ZERO; 2], |[low, high]| [high.x - low.x, high.y - low.y])
 }

@@ -11,6 +11,7 @@ mod legend;
 mod mask;
 mod nets;
 mod outline;
+mod room;
 pub mod shape;
 mod text;
 

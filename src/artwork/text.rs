@@ -1,5 +1,7 @@
 //! What is written on the board and where there is room for it: single-stroke letters turned into outlines.
 
+use std::collections::BTreeMap;
+
 use kurbo::BezPath;
 use kurbo::PathEl;
 use kurbo::Stroke;
@@ -9,22 +11,14 @@ use vector_text_hershey::HersheyFont;
 use vector_text_hershey::HersheyRenderer;
 
 use crate::artwork::shape::CHORD_ERROR;
-use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::bounds;
-use crate::artwork::shape::edges;
-use crate::artwork::shape::rectangle;
-use crate::artwork::shape::turn;
 use crate::base::Nm;
 use crate::base::Point;
 
 /// Height of a capital in the font's own units (Hershey's simplex roman).
 const CAPITAL_UNITS: f64 = 21.0;
-/// Free places are looked for on this raster.
-const RASTER: Nm = Nm(500_000);
-/// On large boards the raster is widened, so that no side has more places than this.
-const MAX_PLACES: i64 = 100;
 /// Between the lines of a block, as a share of the height.
 const LINE_SPACING: f64 = 0.7;
 
@@ -101,36 +95,57 @@ fn has_strokes(c: char) -> bool {
     !HersheyRenderer::render_text(c.encode_utf8(&mut [0; 4]), HersheyFont::Romans).is_empty()
 }
 
-/// A line of text as area: its capitals `height` high, standing on y = 0, beginning at x = 0. Letters keep a stroke apart.
-pub(super) fn line(text: &str, height: Nm, stroke: Nm) -> Region {
-    // The strokes' centre lines are drawn smaller by one stroke, so that the letter as a whole has the height.
-    let scale = (height - stroke).0 as f64 / CAPITAL_UNITS;
-    let mut drawn = Region::default();
-    let (mut cursor, mut taken) = (0.0, i64::MIN / 2);
+/// A line of text set out: each letter with its place, and the box of the whole.
+struct SetLine {
+    letters: Vec<(char, Nm)>,
+    low: Point,
+    high: Point,
+}
+
+/// Sets a line whose capitals are `height` high and stand on y = 0. Letters keep a stroke apart.
+fn set(text: &str, height: Nm, stroke: Nm) -> SetLine {
+    let scale = scale(height, stroke);
+    let mut line =
+        SetLine { letters: Vec::new(), low: Point::new(i64::MAX / 4, i64::MAX / 4), high: Point::new(i64::MIN / 4, i64::MIN / 4) };
+    let mut cursor = 0.0;
     for c in text.chars() {
-        let mut letter = letter(c, scale, stroke);
-        letter.shift(Nm((cursor * scale).round() as i64), Nm::ZERO);
-        if let Some([low, high]) = letter.bounds() {
+        let centre = strokes(c, scale, stroke);
+        if let Some([low, high]) = bounds(centre.iter().map(|&(_, p)| rounded(p))) {
+            let half = Nm(stroke.0 / 2 + 1);
+            let mut at = Nm((cursor * scale).round() as i64);
             // The font is spaced for thin strokes: where thick ones would meet, the letter and all after it move on.
-            let overlap = (taken + stroke.0 - low.x.0).max(0);
-            letter.shift(Nm(overlap), Nm::ZERO);
+            let overlap = if line.letters.is_empty() { 0 } else { (line.high.x + stroke - (low.x - half + at)).0.max(0) };
+            at = at + Nm(overlap);
             cursor += overlap as f64 / scale;
-            taken = high.x.0 + overlap;
-            drawn.pieces.extend(letter.pieces);
+            line.letters.push((c, at));
+            line.low = Point { x: line.low.x.min(low.x - half + at), y: line.low.y.min(low.y - half) };
+            line.high = Point { x: line.high.x.max(high.x + half + at), y: line.high.y.max(high.y + half) };
         }
         cursor += advance_units(c);
     }
-    drawn
+    line
 }
 
-/// One letter, its left bearing at x = 0.
-fn letter(c: char, scale: f64, stroke: Nm) -> Region {
+/// Nanometres of one of the font's units. The strokes' centre lines are drawn smaller by one stroke, so that the letter as a whole has the
+/// height.
+fn scale(height: Nm, stroke: Nm) -> f64 {
+    (height - stroke).0 as f64 / CAPITAL_UNITS
+}
+
+/// The centre lines of a letter's strokes: whether the pen is down on the way to the point, and the point.
+fn strokes(c: char, scale: f64, stroke: Nm) -> Vec<(bool, kurbo::Point)> {
     let half = stroke.0 as f64 * 0.5;
+    // The font's y runs down; its capitals stand on y = 9 of a box centred on zero.
+    let at =
+        |p: &vector_text_core::Point| kurbo::Point::new(f64::from(p.x) * scale + half, (BASELINE_UNITS - f64::from(p.y)) * scale + half);
+    HersheyRenderer::render_text(c.encode_utf8(&mut [0; 4]), HersheyFont::Romans).iter().map(|p| (p.pen, at(p))).collect()
+}
+
+/// One letter as area.
+fn letter(c: char, height: Nm, stroke: Nm) -> Region {
     let mut path = BezPath::new();
-    for (i, p) in HersheyRenderer::render_text(c.encode_utf8(&mut [0; 4]), HersheyFont::Romans).iter().enumerate() {
-        // The font's y runs down; its capitals stand on y = 9 of a box centred on zero.
-        let at = kurbo::Point::new(f64::from(p.x) * scale + half, (BASELINE_UNITS - f64::from(p.y)) * scale + half);
-        if p.pen && i > 0 { path.line_to(at) } else { path.move_to(at) }
+    for (i, (pen, at)) in strokes(c, scale(height, stroke), stroke).into_iter().enumerate() {
+        if pen && i > 0 { path.line_to(at) } else { path.move_to(at) }
     }
     let tolerance = CHORD_ERROR.0 as f64;
     let outline = kurbo::stroke(path.iter(), &Stroke::new(stroke.0 as f64), &StrokeOpts::default(), tolerance);
@@ -161,99 +176,79 @@ fn rounded(p: kurbo::Point) -> Point {
     Point::new(p.x.round() as i64, p.y.round() as i64)
 }
 
-/// Lines set one under the other, left aligned; lower left corner at the origin.
-pub(super) fn block(lines: &[String], height: Nm, stroke: Nm) -> Region {
-    let pitch = Nm(height.0 + (height.0 as f64 * LINE_SPACING) as i64);
-    let mut all = Region::default();
-    for (i, text) in lines.iter().rev().enumerate() {
-        let up = Nm(pitch.0 * i as i64);
-        let mut drawn = line(text, height, stroke);
-        drawn.shift(Nm::ZERO, up);
-        // Lines do not touch: letters reach at most a third of their height below the line they stand on.
-        all.pieces.extend(drawn.pieces);
-    }
-    let low = all.bounds().map_or(Point::default(), |[low, _]| low);
-    all.shift(-low.x, -low.y);
-    all
+/// Lines set one under the other, left aligned, not yet drawn.
+pub(super) struct Block {
+    lines: Vec<SetLine>,
+    height: Nm,
+    stroke: Nm,
+    low: Point,
+    high: Point,
 }
 
-/// The block turned a quarter counter-clockwise; lower left corner at the origin.
-pub(super) fn upright(block: &Region) -> Region {
-    let mut turned = block.mapped(|p| Point { x: -p.y, y: p.x });
-    let low = turned.bounds().map_or(Point::default(), |[low, _]| low);
-    turned.shift(-low.x, -low.y);
-    turned
-}
-
-/// The room text may take, and what it must keep clear of.
-pub(super) struct Room {
-    /// Lower left corner.
-    pub low: Point,
-    /// Upper right corner.
-    pub high: Point,
-    obstacles: Vec<(Piece, [Point; 2])>,
-}
-
-impl Room {
-    /// A room with its obstacles, each already grown by the distance text keeps from it.
-    pub fn new(low: Point, high: Point, obstacles: Vec<Piece>) -> Room {
-        let obstacles = obstacles.into_iter().filter_map(boxed).collect();
-        Room { low, high, obstacles }
+impl Block {
+    /// Sets the lines, the first on top.
+    pub fn new(lines: &[String], height: Nm, stroke: Nm) -> Block {
+        let pitch = Nm(height.0 + (height.0 as f64 * LINE_SPACING) as i64);
+        let mut block = Block { lines: Vec::new(), height, stroke, low: Point::default(), high: Point::default() };
+        let mut corners = Vec::new();
+        for (i, text) in lines.iter().rev().enumerate() {
+            let mut line = set(text, height, stroke);
+            let up = Nm(pitch.0 * i as i64);
+            (line.low, line.high) = (line.low.shifted(Nm::ZERO, up), line.high.shifted(Nm::ZERO, up));
+            if !line.letters.is_empty() {
+                corners.extend([line.low, line.high]);
+            }
+            block.lines.push(line);
+        }
+        if let Some([low, high]) = bounds(corners.into_iter()) {
+            (block.low, block.high) = (low, high);
+        }
+        block
     }
 
-    /// Takes up some room.
-    pub fn take(&mut self, piece: Piece) {
-        self.obstacles.extend(boxed(piece));
+    /// Length and height of the block.
+    pub fn size(&self) -> [Nm; 2] {
+        [self.high.x - self.low.x, self.high.y - self.low.y]
     }
 
-    /// The lower left corner of the free place for a block of this size that lies nearest to `target`.
-    pub fn place(&self, size: [Nm; 2], target: Point) -> Option<Point> {
-        let (last_x, last_y) = (self.high.x - size[0], self.high.y - size[1]);
-        let step = |low: Nm, high: Nm| Nm(RASTER.0.max((high - low).0 / MAX_PLACES));
-        let (step_x, step_y) = (step(self.low.x, self.high.x), step(self.low.y, self.high.y));
-        let mut places: Vec<(i128, Point)> = raster(self.low.y, last_y, step_y)
-            .flat_map(|y| raster(self.low.x, last_x, step_x).map(move |x| Point { x, y }))
-            .map(|p| {
-                let middle = p.shifted(Nm(size[0].0 / 2), Nm(size[1].0 / 2));
-                let (dx, dy) = (i128::from((middle.x - target.x).0), i128::from((middle.y - target.y).0));
-                (dx * dx + dy * dy, p)
-            })
-            .collect();
-        places.sort();
-        places.into_iter().map(|(_, p)| p).find(|&p| self.is_free(p, p.shifted(size[0], size[1])))
-    }
-
-    fn is_free(&self, low: Point, high: Point) -> bool {
-        self.obstacles.iter().all(|(piece, [from, to])| {
-            to.x < low.x || from.x > high.x || to.y < low.y || from.y > high.y || !piece_meets_box(piece, low, high)
-        })
+    /// The block as area, its lower left corner at the origin.
+    pub fn drawn(&self) -> Region {
+        let pitch = Nm(self.height.0 + (self.height.0 as f64 * LINE_SPACING) as i64);
+        let mut known: BTreeMap<char, Region> = BTreeMap::new();
+        let mut all = Region::default();
+        for (i, line) in self.lines.iter().enumerate() {
+            let up = Nm(pitch.0 * i as i64);
+            for &(c, at) in &line.letters {
+                let mut letter = known.entry(c).or_insert_with(|| letter(c, self.height, self.stroke)).clone();
+                letter.shift(at - self.low.x, up - self.low.y);
+                // Letters keep apart, and so do lines: letters reach at most a third of their height below the line they stand on.
+                all.pieces.extend(letter.pieces);
+            }
+        }
+        all
     }
 }
 
-/// From `first` to `last` in steps, `last` itself included.
-fn raster(first: Nm, last: Nm, step: Nm) -> impl Iterator<Item = Nm> {
-    let steps = if last < first { -1 } else { (last - first).0 / step.0 };
-    let end = (steps >= 0 && (last - first).0 % step.0 != 0).then_some(last);
-    (0..=steps).map(move |i| Nm(first.0 + i * step.0)).chain(end)
-}
-
-fn boxed(piece: Piece) -> Option<(Piece, [Point; 2])> {
-    let corners = bounds(piece.outer.iter().copied())?;
-    Some((piece, corners))
-}
-
-/// Whether a piece and a box share a point.
-fn piece_meets_box(piece: &Piece, low: Point, high: Point) -> bool {
-    let corners = rectangle(low, high);
-    let rings = std::iter::once(&piece.outer).chain(&piece.voids);
-    edges(rings).iter().any(|edge| edge_meets_box(edge.a, edge.b, low, high, &corners)) || piece.contains(low)
-}
-
-fn edge_meets_box(a: Point, b: Point, low: Point, high: Point, corners: &Ring) -> bool {
-    if a.x.max(b.x) < low.x || a.x.min(b.x) > high.x || a.y.max(b.y) < low.y || a.y.min(b.y) > high.y {
-        return false;
+/// The lines with spaces turned into line ends so that none is longer than `most` letters, where its words allow.
+pub(super) fn wrapped(lines: &[String], most: usize) -> Vec<String> {
+    let mut out: Vec<String> = Vec::new();
+    for line in lines {
+        let mut current = String::new();
+        for word in line.split_whitespace() {
+            if !current.is_empty() && current.chars().count() + 1 + word.chars().count() > most {
+                out.push(std::mem::take(&mut current));
+            }
+            if !current.is_empty() {
+                current.push(' ');
+            }
+            current.push_str(word);
+        }
+        out.push(current);
     }
-    // Apart when all corners lie strictly on one side of the edge's line.
-    let sides: Vec<i128> = corners.iter().map(|&c| turn(a, b, c)).collect();
-    !(sides.iter().all(|&s| s > 0) || sides.iter().all(|&s| s < 0))
+    out
+}
+
+/// The block of this height turned a quarter counter-clockwise; lower left corner at the origin.
+pub(super) fn upright(block: &Region, height: Nm) -> Region {
+    block.mapped(|p| Point { x: height - p.y, y: p.x })
 }

@@ -5,17 +5,24 @@ use crate::base::Place;
 use crate::base::Problem;
 use crate::checks::Rule;
 use crate::checks::Subject;
+use crate::line::AsBuilt;
+use crate::line::Coplanar;
 use crate::order::LaunchShape;
 
 pub(super) const RULE: Rule = Rule {
     code: "launch-misfit",
-    about: "feed wider than the launch's pad (warning) or than the space between its ground pads, or no room for its via fence (error)",
+    about: "launch pad off the port's impedance or narrower than the feed (warning), or no room for its via fence (error)",
     source: "common practice",
     run,
 };
 
+/// A pad this far off the port's impedance reflects at most 21 dB below the wave that comes (0.2 / 2.2).
+const MAX_MISMATCH: f64 = 0.2;
+
 fn run(subject: &Subject) -> Vec<Problem> {
-    let launch = &subject.dimensions.order.board.launch;
+    let order = &subject.dimensions.order;
+    let launch = &order.board.launch;
+    let built = AsBuilt::nominal(order);
     let mut found = Vec::new();
     let mut is_edge_coax = false;
     for port in &subject.board.ports {
@@ -28,22 +35,31 @@ fn run(subject: &Subject) -> Vec<Problem> {
         let (feed_m, at) = (port.plane.width().m(), Place::Board(port.plane.middle()));
         let (feed, pad) = (feed_m * 1e3, pad_width_m * 1e3);
         match gap_m {
-            Some(gap_m) if feed_m > pad_width_m + 2.0 * gap_m => found.push(Problem::error(
+            // Over its own ground gap a pad may be narrower than the feed and still have the port's impedance.
+            Some(gap_m) => {
+                let reached_ohm = Coplanar::new(&built, pad_width_m, gap_m).z0_ohm;
+                let port_ohm = port.number.checked_sub(1).and_then(|i| order.filter.ports_ohm.get(i)).copied().unwrap_or(reached_ohm);
+                if (reached_ohm / port_ohm - 1.0).abs() > MAX_MISMATCH {
+                    found.push(Problem::warning(
+                        RULE.code,
+                        at,
+                        format!(
+                            "the pad of launch \"{}\" ({pad:.3} mm, {:.3} mm to ground) has {reached_ohm:.1} ohm, the port {port_ohm:.1} ohm; {:.0} % off is the most",
+                            launch.class,
+                            gap_m * 1e3,
+                            MAX_MISMATCH * 100.0
+                        ),
+                        "a launch class with another pad width or ground gap, or another laminate thickness",
+                    ));
+                }
+            }
+            None if feed_m > pad_width_m * (1.0 + 1e-6) => found.push(Problem::warning(
                 RULE.code,
                 at,
-                format!("the feed is {feed:.3} mm wide, the ground pads of launch \"{}\" leave {:.3} mm", launch.class, pad + 2e3 * gap_m),
-                "a launch class for a wider feed, or a thinner laminate",
-            )),
-            _ if feed_m > pad_width_m * (1.0 + 1e-6) => found.push(Problem::warning(
-                RULE.code,
-                at,
-                format!(
-                    "the feed is {feed:.3} mm wide, the pad of launch \"{}\" only {pad:.3} mm: the launch is a step up in impedance",
-                    launch.class
-                ),
+                format!("the feed is {feed:.3} mm wide, the pad of launch \"{}\" only {pad:.3} mm: a step up in impedance", launch.class),
                 "a launch class with a wider pad, or a thinner laminate",
             )),
-            _ => {}
+            None => {}
         }
     }
     if is_edge_coax && !subject.board.holes.iter().any(|hole| hole.purpose == HoleUse::Via) {

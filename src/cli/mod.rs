@@ -1,5 +1,6 @@
 //! Arguments, printing and progress; one file per command.
 
+mod check;
 mod dimension;
 mod line;
 mod list;
@@ -42,6 +43,7 @@ enum Command {
     Predict(predict::Arguments),
     Solve(solve::Arguments),
     Line(line::Arguments),
+    Check(check::Arguments),
     List(list::List),
     /// Writes the completion script of a shell to stdout.
     Completions {
@@ -112,6 +114,7 @@ pub fn run() -> ExitCode {
         Command::Predict(arguments) => predict::run(arguments, voice),
         Command::Solve(arguments) => solve::run(arguments, voice),
         Command::Line(arguments) => line::run(arguments, voice),
+        Command::Check(arguments) => check::run(arguments, voice),
         Command::List(arguments) => list::run(arguments, voice),
         Command::Completions { shell } => {
             let mut script = Vec::new();

@@ -5,6 +5,7 @@ use std::path::PathBuf;
 
 use super::Ending;
 use super::Voice;
+use super::problems;
 use super::read::Drawing;
 use super::results;
 use super::table;
@@ -42,10 +43,11 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
     };
     let order = &drawing.dimensions.order;
     let predicted = drawing.layout().and_then(|layout| {
-        let full = network::predict(order, &layout).map_err(|p| vec![p])?;
+        let (full, warnings) = network::predict(order, &layout)?;
+        problems::print(&warnings, Some(&drawing.source), voice);
         let figures = Figures::of(order, &full);
         let shown = match frequencies(arguments)? {
-            Some(f_hz) => network::predict_at(order, &layout, &f_hz).map_err(|p| vec![p])?,
+            Some(f_hz) => network::predict_at(order, &layout, &f_hz)?.0,
             None => full,
         };
         Ok((figures, shown))

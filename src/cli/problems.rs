@@ -40,7 +40,7 @@ pub fn render(problem: &Problem, source: Option<&Source>, terminal: bool) -> Str
         .with_links(false)
         .with_width(TERMINAL_WIDTH)
         .with_wrap_lines(terminal)
-        .with_context_lines(0);
+        .with_context_lines(1);
     let mut text = String::new();
     match handler.render_report(&mut text, &Shown::new(problem, source)) {
         Ok(()) => text + "\n",

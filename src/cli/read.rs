@@ -82,7 +82,7 @@ impl Drawing {
 }
 
 fn open_source(path: &Path, voice: Voice) -> Result<Source, Ending> {
-    Source::open(path).map_err(|problem| refuse(&[problem], None, voice))
+    Source::open(path).map_err(|found| refuse(&found, None, voice))
 }
 
 /// Prints problems; nothing was made.

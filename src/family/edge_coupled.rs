@@ -93,7 +93,7 @@ impl Structure for EdgeCoupled {
         let mut x = Nm::ZERO;
         let mut low = first_feed.width - first[0];
         let start = build.mouth(x, Nm::ZERO, first_feed.width, false);
-        build.place(Part::Launch { port: 1, shape: first_feed.launch }, vec![start], vec![]);
+        build.place(Part::Launch { port: 1, shape: first_feed.launch }, vec![start], feeds::launch_names(&set.order, 1));
         x = x + first_feed.length;
         let mut arriving = build.mouth(x, Nm::ZERO, first_feed.width, true);
         build.place(
@@ -129,7 +129,7 @@ impl Structure for EdgeCoupled {
             vec![near, end],
             feeds::line_names(2),
         );
-        build.place(Part::Launch { port: 2, shape: last_feed.launch }, vec![end], vec![]);
+        build.place(Part::Launch { port: 2, shape: last_feed.launch }, vec![end], feeds::launch_names(&set.order, 2));
 
         let mut layout =
             Layout { nodes: build.nodes, parts: build.parts, ports: vec![start, end], turn_deg: 0.0, expected_nets: set.degree + 2 };
@@ -206,12 +206,15 @@ impl Family for EdgeCoupled {
             let (width_rate, gap_rate) = coupling_rates(set, &built, k);
             let moves = mirrored(k, sections).into_iter().flat_map(|k| [(at(k, "width"), width_rate), (at(k, "gap"), gap_rate)]);
             let moves = moves.filter_map(|(index, rate)| index.map(|i| (i, Moves::Relative(rate)))).collect();
-            knobs.push(Knob { about: format!("coupling {k}"), moves, greatest_step: 0.2 });
+            knobs.push(Knob { about: format!("coupling {k}"), is_resonator: false, moves, greatest_step: 0.2 });
         }
         for j in 1..=distinct(set.degree) {
-            let halves = mirrored(j, set.degree).into_iter().flat_map(|j| [at(j, "length"), at(j + 1, "length")]);
-            let moves = halves.flatten().map(|i| (i, Moves::Absolute(set.list[i].first_guess_m))).collect();
-            knobs.push(Knob { about: format!("resonator {j}"), moves, greatest_step: 0.05 });
+            // A section between two resonators is moved half by each, an end section by its only one.
+            let share = |k: usize| if k == 1 || k == sections { 1.0 } else { 0.5 };
+            let halves =
+                mirrored(j, set.degree).into_iter().flat_map(|j| [(at(j, "length"), share(j)), (at(j + 1, "length"), share(j + 1))]);
+            let moves = halves.filter_map(|(index, share)| index.map(|i| (i, Moves::Absolute(share * set.list[i].value_m)))).collect();
+            knobs.push(Knob { about: format!("resonator {j}"), is_resonator: true, moves, greatest_step: 0.05 });
         }
         knobs
     }

@@ -31,10 +31,17 @@ pub fn line_names(port: usize) -> Vec<String> {
     vec![name(port, "width"), name(port, "length")]
 }
 
+/// Names of the dimensions a launch is drawn from.
+pub fn launch_names(order: &Order, port: usize) -> Vec<String> {
+    match order.board.launch.shape {
+        LaunchShape::EdgeCoax { .. } => vec![launch_gap(port)],
+        LaunchShape::Open | LaunchShape::Pads { .. } => Vec::new(),
+    }
+}
+
 /// Names of all dimensions of both ports, in drawing order.
 pub fn names(order: &Order) -> Vec<String> {
-    let gap = matches!(order.board.launch.shape, LaunchShape::EdgeCoax { .. });
-    [1, 2].into_iter().flat_map(|port| line_names(port).into_iter().chain(gap.then(|| launch_gap(port)))).collect()
+    [1, 2].into_iter().flat_map(|port| line_names(port).into_iter().chain(launch_names(order, port))).collect()
 }
 
 fn launch_gap(port: usize) -> String {

@@ -60,6 +60,8 @@ pub trait Family: Structure {
 pub struct Knob {
     /// What it tunes: `coupling 2`, `resonator 1`.
     pub about: String,
+    /// Whether it tunes a resonator: all such knobs turned by x together scale the circuit by 1 + x along its resonators.
+    pub is_resonator: bool,
     /// Dimension index, and how far it moves.
     pub moves: Vec<(usize, Moves)>,
     /// Greatest |x| of one step of refinement.

@@ -95,18 +95,12 @@ pub struct Spectrum {
     imaginary: Mat<f64>,
 }
 
-impl Spectrum {
-    fn transposed(&self) -> Spectrum {
-        Spectrum { real: self.real.transpose().to_owned(), imaginary: self.imaginary.transpose().to_owned() }
-    }
-}
-
 /// Transforms of a family's functions: how much of each mode they carry.
 #[derive(Clone, Debug)]
 pub struct Transforms {
     /// Inner functions of each patch: modes by functions.
     inner: Vec<Mat<f64>>,
-    /// Outer pulses of each patch: modes by pulses.
+    /// Outer functions of each patch: modes by functions.
     outer: Vec<Mat<f64>>,
 }
 
@@ -114,13 +108,10 @@ impl Transforms {
     /// Transforms of every function of a family.
     pub fn new(family: &Family, patches: &[Patch], modes: &Modes) -> Transforms {
         let of = |axis: Axis, profile: Profile| {
-            let (length, count) = match axis {
-                Axis::X => (modes.size_m[0], modes.count[0]),
-                Axis::Y => (modes.size_m[1], modes.count[1]),
-            };
-            patches.iter().map(|patch| transform(patch.lines(axis), profile, length, count)).collect()
+            let at = if axis == Axis::X { 0 } else { 1 };
+            patches.iter().map(|patch| transform(patch.lines(axis), profile, modes.size_m[at], modes.count[at])).collect()
         };
-        Transforms { inner: of(family.inner_axis, family.inner), outer: of(family.outer_axis(), Profile::Pulse) }
+        Transforms { inner: of(Axis::X, family.inner), outer: of(Axis::Y, family.outer) }
     }
 }
 
@@ -183,14 +174,6 @@ pub fn potential(
     lossless: bool,
 ) -> Potential {
     let n = family.size;
-    let turned;
-    let spectrum = match family.inner_axis {
-        Axis::X => spectrum,
-        Axis::Y => {
-            turned = spectrum.transposed();
-            &turned
-        }
-    };
     let mix = |one: f64, three: f64| -> Vec<f64> { near.first.par_iter().zip(&near.third).map(|(a, b)| one * a + three * b).collect() };
     let real = mix(first.re, third.re);
     let imaginary = if lossless { Vec::new() } else { mix(first.im, third.im) };

@@ -101,26 +101,28 @@ impl Profile {
     }
 }
 
-/// Functions that share a patch and one pulse of the outer axis.
+/// Functions that share a patch and one function of y.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Group {
     /// Index of the patch.
     pub patch: usize,
-    /// Index of the pulse along the outer axis.
+    /// Index of the function of y.
     pub outer: usize,
-    /// Indices of the functions along the inner axis, increasing.
+    /// Indices of the functions of x, increasing.
     pub inner: Vec<usize>,
     /// Number of the group's first function within the family.
     pub start: usize,
 }
 
-/// All functions of one kind: charge cells, x-directed or y-directed rooftops.
+/// All functions of one kind: charge cells, x-directed or y-directed rooftops. Each is a function of x times a function of y.
+///
+/// Grouped by their function of y: boards are longer along x, so that groups are few and long.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Family {
-    /// Axis of the functions within a group.
-    pub inner_axis: Axis,
-    /// Their shape; across the outer axis every function is a pulse.
+    /// Shape along x.
     pub inner: Profile,
+    /// Shape along y.
+    pub outer: Profile,
     /// In order.
     pub groups: Vec<Group>,
     /// Number of functions.
@@ -128,15 +130,12 @@ pub struct Family {
 }
 
 impl Family {
-    fn new(inner_axis: Axis, inner: Profile, patches: &[Patch], exists: impl Fn(usize, &Patch, usize, usize) -> bool) -> Family {
-        let mut family = Family { inner_axis, inner, groups: Vec::new(), size: 0 };
+    /// Every function that `exists` (patch, index along x, index along y).
+    fn new([inner, outer]: [Profile; 2], patches: &[Patch], exists: impl Fn(&Patch, usize, usize) -> bool) -> Family {
+        let mut family = Family { inner, outer, groups: Vec::new(), size: 0 };
         for (index, patch) in patches.iter().enumerate() {
-            let (outer, lines) = match inner_axis {
-                Axis::X => (patch.rows(), patch.x_m.len()),
-                Axis::Y => (patch.columns(), patch.y_m.len()),
-            };
-            for o in 0..outer {
-                let inner: Vec<usize> = (0..lines).filter(|&i| exists(index, patch, o, i)).collect();
+            for o in 0..patch.y_m.len() {
+                let inner: Vec<usize> = (0..patch.x_m.len()).filter(|&i| exists(patch, i, o)).collect();
                 if !inner.is_empty() {
                     let start = family.size;
                     family.size += inner.len();
@@ -147,12 +146,10 @@ impl Family {
         family
     }
 
-    /// Axis of the pulses.
-    pub fn outer_axis(&self) -> Axis {
-        match self.inner_axis {
-            Axis::X => Axis::Y,
-            Axis::Y => Axis::X,
-        }
+    /// Number of the function at an index along x and along y.
+    pub fn number(&self, patch: usize, inner: usize, outer: usize) -> Option<usize> {
+        let group = self.groups.iter().find(|g| g.patch == patch && g.outer == outer)?;
+        group.inner.binary_search(&inner).ok().map(|position| group.start + position)
     }
 }
 
@@ -187,12 +184,13 @@ impl Unknowns {
         };
         // A rooftop at a line needs copper on both sides, or on one side and a wall on the other.
         let joined = |before: bool, after: bool, wall: bool| (before && after) || (wall && (before || after));
-        let cells = Family::new(Axis::X, Profile::Pulse, patches, |_, p, row, i| p.is_copper(i, row));
-        let along_x = Family::new(Axis::X, Profile::Triangle, patches, |_, p, row, i| {
-            joined(i > 0 && p.is_copper(i - 1, row), p.is_copper(i, row), at_wall(&p.x_m, i, size_m[0]))
+        let (pulse, triangle) = (Profile::Pulse, Profile::Triangle);
+        let cells = Family::new([pulse, pulse], patches, |p, i, j| p.is_copper(i, j));
+        let along_x = Family::new([triangle, pulse], patches, |p, i, j| {
+            joined(i > 0 && p.is_copper(i - 1, j), p.is_copper(i, j), at_wall(&p.x_m, i, size_m[0]))
         });
-        let along_y = Family::new(Axis::Y, Profile::Triangle, patches, |_, p, column, j| {
-            joined(j > 0 && p.is_copper(column, j - 1), p.is_copper(column, j), at_wall(&p.y_m, j, size_m[1]))
+        let along_y = Family::new([pulse, triangle], patches, |p, i, j| {
+            joined(j > 0 && p.is_copper(i, j - 1), p.is_copper(i, j), at_wall(&p.y_m, j, size_m[1]))
         });
         let mut numbers: Vec<Vec<usize>> = patches.iter().map(|p| vec![usize::MAX; p.columns() * p.rows()]).collect();
         for group in &cells.groups {
@@ -204,16 +202,18 @@ impl Unknowns {
             patches[patch].is_copper(column, row).then(|| numbers[patch][row * patches[patch].columns() + column])
         };
         let mut rooftops = Vec::with_capacity(along_x.size + along_y.size);
-        for family in [&along_x, &along_y] {
+        for (family, axis) in [(&along_x, Axis::X), (&along_y, Axis::Y)] {
             for group in &family.groups {
-                let lines = patches[group.patch].lines(family.inner_axis);
-                for &i in &group.inner {
-                    let cell = |inner: usize| match family.inner_axis {
-                        Axis::X => number(group.patch, inner, group.outer),
-                        Axis::Y => number(group.patch, group.outer, inner),
+                let lines = patches[group.patch].lines(axis);
+                for &inner in &group.inner {
+                    // The line the current crosses, and the cell at an index along the current.
+                    let line = if axis == Axis::X { inner } else { group.outer };
+                    let cell = |at: usize| match axis {
+                        Axis::X => number(group.patch, at, group.outer),
+                        Axis::Y => number(group.patch, inner, at),
                     };
-                    let before = i.checked_sub(1).and_then(|b| cell(b).map(|c| (c, 1.0 / (lines[i] - lines[b]))));
-                    let after = cell(i).map(|c| (c, -1.0 / (lines[i + 1] - lines[i])));
+                    let before = line.checked_sub(1).and_then(|b| cell(b).map(|c| (c, 1.0 / (lines[line] - lines[b]))));
+                    let after = cell(line).map(|c| (c, -1.0 / (lines[line + 1] - lines[line])));
                     rooftops.push(Rooftop { cells: [before.unwrap_or((0, 0.0)), after.unwrap_or((0, 0.0))] });
                 }
             }

@@ -6,7 +6,7 @@
 
 use rayon::prelude::*;
 
-use super::grid::{Axis, Family, Patch, Profile};
+use super::grid::{Family, Patch, Profile};
 
 /// Beyond this many `t` the heat kernel is below exp(-13^2/4) = 4e-19.
 const REACH: f64 = 13.0;
@@ -84,14 +84,10 @@ impl Near {
     pub fn new(family: &Family, patches: &[Patch], size_m: [f64; 2], cut: &Cut) -> Near {
         let n = family.size;
         let mut near = Near { first: vec![0.0; n * n], third: vec![0.0; n * n] };
-        let (inner_axis, outer_axis) = (family.inner_axis, family.outer_axis());
-        let length = |axis: Axis| if axis == Axis::X { size_m[0] } else { size_m[1] };
         for p in 0..patches.len() {
             for q in 0..=p {
-                let table = |axis: Axis, profile: Profile| {
-                    Overlaps::new(patches[p].lines(axis), patches[q].lines(axis), profile, length(axis), cut)
-                };
-                let (inner, outer) = (table(inner_axis, family.inner), table(outer_axis, Profile::Pulse));
+                let inner = Overlaps::new(&patches[p].x_m, &patches[q].x_m, family.inner, size_m[0], cut);
+                let outer = Overlaps::new(&patches[p].y_m, &patches[q].y_m, family.outer, size_m[1], cut);
                 let chunks = rows_of_groups(family, &mut near.first).into_iter().zip(rows_of_groups(family, &mut near.third));
                 let mine: Vec<_> = family.groups.iter().zip(chunks).filter(|(group, _)| group.patch == p).collect();
                 mine.into_par_iter().for_each(|(group, (first, third))| {

@@ -204,26 +204,31 @@ impl Solver {
     /// Adds `over` times the overlap of rooftops in one row or column.
     fn add_overlap(&self, over: Complex64, real: &mut [f64], imaginary: &mut [f64]) {
         let n = self.count();
-        let families = [(&self.unknowns.along_x, 0), (&self.unknowns.along_y, self.unknowns.along_x.size)];
-        for (family, offset) in families {
+        let families = [(&self.unknowns.along_x, Axis::X, 0), (&self.unknowns.along_y, Axis::Y, self.unknowns.along_x.size)];
+        for (family, axis, offset) in families {
             for group in &family.groups {
                 let patch = &self.structure.patches[group.patch];
-                let (lines, across) = (patch.lines(family.inner_axis), patch.lines(family.outer_axis()));
-                let width = across[group.outer + 1] - across[group.outer];
-                for (position, &i) in group.inner.iter().enumerate() {
+                for (position, &inner) in group.inner.iter().enumerate() {
+                    // The line the current crosses, its width, and the rooftop at the next line.
+                    let (line, width, next) = match axis {
+                        Axis::X => (inner, patch.y_m[group.outer + 1] - patch.y_m[group.outer], family.number(group.patch, inner + 1, group.outer)),
+                        Axis::Y => (group.outer, patch.x_m[inner + 1] - patch.x_m[inner], family.number(group.patch, inner, group.outer + 1)),
+                    };
                     let at = offset + group.start + position;
-                    let rooftop = &self.unknowns.rooftops[at];
                     let mut add = |a: usize, b: usize, value: f64| {
                         real[a * n + b] += over.re * value;
                         imaginary[a * n + b] += over.im * value;
                     };
                     // Integral of a triangle's square: a third of each side's length.
-                    let sides: f64 = rooftop.cells.iter().filter(|c| c.1.abs() > 0.0).map(|c| 1.0 / c.1.abs()).sum();
+                    let cells = self.unknowns.rooftops[at].cells;
+                    let sides: f64 = cells.iter().filter(|c| c.1.abs() > 0.0).map(|c| 1.0 / c.1.abs()).sum();
                     add(at, at, width * sides / 3.0);
-                    if group.inner.get(position + 1) == Some(&(i + 1)) {
-                        let shared = width * (lines[i + 1] - lines[i]) / 6.0;
-                        add(at, at + 1, shared);
-                        add(at + 1, at, shared);
+                    // Rooftops at two lines share the cell between, if it is copper.
+                    if let Some(next) = next.filter(|_| cells[1].1.abs() > 0.0) {
+                        let lines = patch.lines(axis);
+                        let shared = width * (lines[line + 1] - lines[line]) / 6.0;
+                        add(at, offset + next, shared);
+                        add(offset + next, at, shared);
                     }
                 }
             }
@@ -296,12 +301,15 @@ fn excitation(source: &Source, patches: &[Patch], unknowns: &Unknowns) -> Vec<(u
         Axis::Y => (&unknowns.along_y, unknowns.along_x.size),
     };
     let sign = if source.reversed { -1.0 } else { 1.0 };
-    let groups = family.groups.iter().filter(|g| g.patch == source.patch && source.across.contains(&g.outer));
-    groups
-        .filter_map(|group| {
-            let across = patches.get(group.patch)?.lines(family.outer_axis());
-            let position = group.inner.iter().position(|&i| i == source.line)?;
-            Some((offset + group.start + position, sign * (across[group.outer + 1] - across[group.outer])))
+    let Some(patch) = patches.get(source.patch) else { return Vec::new() };
+    let across = if source.axis == Axis::X { &patch.y_m } else { &patch.x_m };
+    source
+        .across
+        .clone()
+        .filter_map(|pulse| {
+            let (inner, outer) = if source.axis == Axis::X { (source.line, pulse) } else { (pulse, source.line) };
+            let number = family.number(source.patch, inner, outer)?;
+            Some((offset + number, sign * (across.get(pulse + 1)? - across.get(pulse)?)))
         })
         .collect()
 }

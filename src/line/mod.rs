@@ -14,6 +14,7 @@ mod mode;
 pub mod open_end;
 mod pair;
 mod range;
+pub mod section;
 mod single;
 mod statics;
 mod step;

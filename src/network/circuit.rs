@@ -175,6 +175,21 @@ impl Circuit {
         end
     }
 
+    /// Warnings of the line models where the circuit leaves their ranges up to a frequency, one of each kind.
+    pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
+        let all =
+            self.strips.iter().flat_map(|(_, s)| s.problems(up_to_hz)).chain(self.pairs.iter().flat_map(|(_, p)| p.problems(up_to_hz)));
+        let mut kept: Vec<Problem> = Vec::new();
+        for problem in all {
+            // One size out of range in several strips is said once.
+            let kind = |p: &Problem| (p.code, p.message.split(" is ").next().map(str::to_string));
+            if !kept.iter().any(|k| kind(k) == kind(&problem)) {
+                kept.push(problem);
+            }
+        }
+        kept
+    }
+
     /// S-parameters at the given frequencies (increasing, greater than zero).
     pub fn sweep(&self, f_hz: &[f64]) -> Response {
         let mut scratch = self.plan.scratch();

@@ -16,7 +16,8 @@ pub struct Figures {
     pub center_loss_db: f64,
     /// Edges 3 dB below the loss at the centre, hertz; `None` when not within the sweep.
     pub edges_3db_hz: Option<[f64; 2]>,
-    /// Edges where the loss is the ripple above the loss at the best point, hertz (equal ripple only).
+    /// Equal-ripple edges, hertz (equal ripple only): going in from the 3 dB edges, where the return loss first reaches the prototype's.
+    /// Read off the return loss, since dissipation rounds the edges of |S21|.
     pub ripple_edges_hz: Option<[f64; 2]>,
     /// Greatest -|S21| between the ordered band edges, dB.
     pub worst_loss_db: f64,
@@ -89,9 +90,10 @@ impl Figures {
         let edges_3db_hz = reader.edges(ordered_center_hz, reader.loss_db(ordered_center_hz) + HALF_POWER_DB);
         let center_hz = edges_3db_hz.map_or(ordered_center_hz, |[low, high]| 0.5 * (low + high));
         let center_loss_db = reader.loss_db(center_hz);
-        let best_db = reader.over(from_hz, to_hz).map(|f| reader.loss_db(f)).fold(f64::INFINITY, f64::min);
         let ripple_edges_hz = match order.filter.response {
-            ResponseShape::EqualRipple { ripple_db } => reader.edges(ordered_center_hz, best_db + ripple_db),
+            shape @ ResponseShape::EqualRipple { .. } => {
+                edges_3db_hz.and_then(|edges| reader.return_loss_edges(edges, shape.return_loss_db()))
+            }
             ResponseShape::MaximallyFlat => None,
         };
         let verdicts = order.requirements.iter().enumerate().flat_map(|(index, requirement)| {
@@ -212,6 +214,19 @@ impl Reader<'_> {
         let low = (0..middle).rev().find(|i| loss(*i) > level_db).map(|i| cross(i + 1, i))?;
         let high = (middle + 1..f.len()).find(|i| loss(*i) > level_db).map(|i| cross(i - 1, i))?;
         Some([low, high])
+    }
+
+    /// Going in from `outer_hz` on each side, where the return loss first reaches `level_db`.
+    fn return_loss_edges(&self, outer_hz: [f64; 2], level_db: f64) -> Option<[f64; 2]> {
+        let f = self.f();
+        let reaches = |i: &usize| self.response.return_loss_db(*i) >= level_db;
+        let inside = f.partition_point(|x| *x < outer_hz[0])..f.partition_point(|x| *x <= outer_hz[1]);
+        let cross = |outside: usize, inside: usize| {
+            let (a, b) = (self.response.return_loss_db(outside), self.response.return_loss_db(inside));
+            f[outside] + ((level_db - a) / (b - a)).clamp(0.0, 1.0) * (f[inside] - f[outside])
+        };
+        let (low, high) = (inside.clone().find(reaches)?, inside.rev().find(reaches)?);
+        Some([cross(low.checked_sub(1)?, low), if high + 1 < f.len() { cross(high + 1, high) } else { f[high] }])
     }
 
     fn spurious_hz(&self, above_hz: f64, level_db: f64) -> Option<f64> {

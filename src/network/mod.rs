@@ -11,18 +11,18 @@ pub use circuit::{Circuit, Planes};
 pub use figures::{Figures, Verdict, passband_hz, sweep_hz};
 pub use response::{Method, Response, level_db};
 
-use crate::base::Problem;
+use crate::base::Outcome;
 use crate::layout::Layout;
 use crate::line::AsBuilt;
 use crate::line::Book;
 use crate::order::Order;
 
 /// The response of a layout on the board as ordered, at the default frequencies: loss, dispersion, open ends, steps, feeds and launches,
-/// planes at the board's edge.
+/// planes at the board's edge; with the warnings of line models used outside their range up to the highest frequency that matters.
 ///
 /// # Errors
 /// Those of [`Circuit::new`].
-pub fn predict(order: &Order, layout: &Layout) -> Result<Response, Problem> {
+pub fn predict(order: &Order, layout: &Layout) -> Outcome<Response> {
     predict_at(order, layout, &sweep_hz(order))
 }
 
@@ -30,8 +30,9 @@ pub fn predict(order: &Order, layout: &Layout) -> Result<Response, Problem> {
 ///
 /// # Errors
 /// Those of [`Circuit::new`].
-pub fn predict_at(order: &Order, layout: &Layout, f_hz: &[f64]) -> Result<Response, Problem> {
+pub fn predict_at(order: &Order, layout: &Layout, f_hz: &[f64]) -> Outcome<Response> {
     let book = Book::new(AsBuilt::nominal(order));
-    let circuit = Circuit::new(layout, &book, order.filter.ports_ohm, Planes::Edge)?;
-    Ok(circuit.sweep(f_hz))
+    let circuit = Circuit::new(layout, &book, order.filter.ports_ohm, Planes::Edge).map_err(|problem| vec![problem])?;
+    let highest_hz = order.requirements.iter().map(|r| r.to_hz).fold(passband_hz(order)[1], f64::max);
+    Ok((circuit.sweep(f_hz), circuit.problems(highest_hz)))
 }

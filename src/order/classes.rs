@@ -3,8 +3,9 @@
 use std::path::Path;
 use std::sync::LazyLock;
 
+use super::context::{Context, parse};
 use super::source::Source;
-use super::table::{Context, Size, Table, parse};
+use super::table::{Size, Table};
 use super::types::{Laminate, Launch, Shop};
 use super::{laminate, launch, shop};
 use crate::base::Dimensionality;
@@ -115,7 +116,7 @@ impl Classes {
     /// The mistakes of the class file as lines with that file's own line numbers.
     pub fn open_beside(order: &Path, name: &str) -> Result<Classes, Vec<String>> {
         let path = order.parent().unwrap_or(Path::new("")).join(name);
-        let source = Source::open(&path).map_err(|p| vec![format!("{} ({})", p.message, p.help)])?;
+        let source = Source::open(&path).map_err(|list| list.iter().map(|p| format!("{} ({})", p.message, p.help)).collect::<Vec<_>>())?;
         let (classes, problems) = Classes::read(&source);
         if problems.iter().any(Problem::is_error) {
             return Err(problems.iter().map(|p| format!("{}: {} ({})", source.locate(p), p.message, p.help)).collect());

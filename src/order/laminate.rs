@@ -84,7 +84,8 @@ fn in_plane(t: &Table<'_>, class: Option<&Laminate>) -> Option<Option<f64>> {
     if t.has(KEY) {
         return t.resolve(KEY, "3.1", None, |t, k| t.number(k, 1.0, 100.0)).map(Some);
     }
-    let value = class.and_then(|c| c.in_plane_permittivity);
+    // A complete order that lacks the key says that the value is not known, whatever its class knows by now.
+    let value = class.filter(|_| !t.context().is_complete()).and_then(|c| c.in_plane_permittivity);
     if value.is_some() {
         t.context().record(&t.path_of(KEY));
     }

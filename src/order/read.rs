@@ -3,9 +3,10 @@
 use std::collections::BTreeMap;
 
 use super::classes::Classes;
+use super::context::{Context, parse};
 use super::requirement::{self, FREQUENCY};
 use super::source::Source;
-use super::table::{Context, Size, Table, nearest, parse};
+use super::table::{Size, Table, nearest};
 use super::types::{Band, FamilyKeys, Filter, Key, Laminate, Launch, Order, OwnKind, OwnValue, Passes, ResponseShape, Shop};
 use super::{board, laminate, launch, shop};
 use crate::base::Dimensionality;
@@ -64,6 +65,9 @@ pub(crate) fn finish<T>(value: Option<T>, context: Context, source: &Source) -> 
 /// Reads the tables of an order out of a file that may hold more; `resolved` is its `[resolved]` table.
 pub(crate) fn read_into(root: &Table<'_>, resolved: &Table<'_>, source: &Source, families: &[FamilyKeys]) -> Option<Order> {
     let complete = root.has("resolved");
+    if complete {
+        root.context().set_complete();
+    }
     if let Some(listed) = resolved.strings("defaults") {
         root.context().set_listed(listed.into_iter().map(str::to_string).collect());
     }
@@ -147,7 +151,7 @@ struct Head {
 fn head(t: &Table<'_>) -> Option<Head> {
     const LONGEST: usize = 100;
     let name = t.resolve("name", "\"my-filter\"", None, name);
-    let title = t.resolve("title", "\"...\"", name.clone(), |t, k| t.line(k, LONGEST));
+    let title = t.resolve("title", "\"...\"", Some(name.clone().unwrap_or_default()), |t, k| t.line(k, LONGEST));
     let part_number = t.line("part-number", LONGEST);
     let contact = t.line("contact", LONGEST);
     let acceptance_class = t.resolve("acceptance-class", "2", Some(2), |t, k| t.integer(k, 1, 3));

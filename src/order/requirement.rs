@@ -42,7 +42,7 @@ pub fn read(t: &Table<'_>, filter: Option<&Filter>) -> Option<Requirement> {
     let mut limit = |key: &'static str, side: &'static str, size: &Size, make: &dyn Fn(f64, &Table<'_>) -> Option<Limit>| {
         if t.has(key) {
             there = true;
-            let inner = t.table(key);
+            let inner = t.table_like(key, &format!("{{ {side} = \"{}\" }}", size.usual));
             let value = inner.size(side, size, None);
             let made = value.and_then(|v| make(v, &inner));
             inner.finish();

@@ -29,10 +29,10 @@ impl Source {
     /// Reads a TOML file.
     ///
     /// # Errors
-    /// `file-missing`, `file-unreadable`, `file-is-a-folder`, `file-too-large`, `file-empty`, `file-binary`, `file-not-utf8`.
-    pub fn open(path: &Path) -> Result<Source, Problem> {
+    /// One problem: `file-missing`, `file-unreadable`, `file-is-a-folder`, `file-too-large`, `file-empty`, `file-binary`, `file-not-utf8`.
+    pub fn open(path: &Path) -> Result<Source, Vec<Problem>> {
         let shown = path.display();
-        let refuse = |code, message: String, help: &str| Problem::error(code, Place::Whole, message, help);
+        let refuse = |code, message: String, help: &str| vec![Problem::error(code, Place::Whole, message, help)];
         let unreadable = |error: std::io::Error| match error.kind() {
             std::io::ErrorKind::NotFound => refuse(
                 "file-missing",

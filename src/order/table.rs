@@ -7,15 +7,13 @@ use std::sync::LazyLock;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-use super::source::{Source, join};
+use super::context::Context;
+use super::source::join;
 use crate::base::Dimensionality;
 use crate::base::Place;
 use crate::base::Problem;
 use crate::base::format_quantity;
 use crate::base::parse_quantity;
-
-/// A file with more problems than this is no order; reporting goes on no further.
-pub const MOST_PROBLEMS: usize = 500;
 
 /// Stands in for a table that was left out.
 static EMPTY: LazyLock<DeTable<'static>> = LazyLock::new(DeTable::new);
@@ -47,109 +45,6 @@ impl Size {
     }
 }
 
-/// Collects the mistakes and the resolved defaults of one file.
-#[derive(Debug, Default)]
-pub struct Context {
-    problems: RefCell<Vec<Problem>>,
-    /// Key paths that the file itself lists as resolved.
-    listed: RefCell<Vec<String>>,
-    /// Key paths resolved by this run or listed and met.
-    resolved: RefCell<Vec<String>>,
-    /// Listed key paths that belong to a key that can be resolved.
-    met: RefCell<Vec<String>>,
-}
-
-impl Context {
-    /// Reports a problem; after [`MOST_PROBLEMS`] the rest of the file is no longer worth reading out.
-    pub fn report(&self, problem: Problem) {
-        let mut problems = self.problems.borrow_mut();
-        if problems.len() < MOST_PROBLEMS {
-            problems.push(problem);
-        }
-    }
-
-    /// Notes that a key can be resolved.
-    pub fn meet(&self, path: &str) {
-        if self.is_listed(path) {
-            self.met.borrow_mut().push(path.to_string());
-        }
-    }
-
-    /// What the file lists as resolved although nobody could resolve it.
-    pub fn listed_but_never_met(&self) -> Vec<String> {
-        let met = self.met.borrow();
-        self.listed.borrow().iter().filter(|p| !met.contains(p)).cloned().collect()
-    }
-
-    /// Takes the list `[resolved] defaults` of the file.
-    pub fn set_listed(&self, listed: Vec<String>) {
-        *self.listed.borrow_mut() = listed;
-    }
-
-    /// Whether the file lists this key as resolved.
-    pub fn is_listed(&self, path: &str) -> bool {
-        self.listed.borrow().iter().any(|p| p == path)
-    }
-
-    /// Records that a key was resolved.
-    pub fn record(&self, path: &str) {
-        let mut resolved = self.resolved.borrow_mut();
-        if !resolved.iter().any(|p| p == path) {
-            resolved.push(path.to_string());
-        }
-    }
-
-    /// The resolved key paths, in reading order.
-    pub fn resolved(&self) -> Vec<String> {
-        self.resolved.borrow().clone()
-    }
-
-    /// Whether an error was reported.
-    pub fn has_errors(&self) -> bool {
-        self.problems.borrow().iter().any(Problem::is_error)
-    }
-
-    /// The problems, in file order, without those that only follow from broken notation.
-    pub fn into_problems(self, source: &Source) -> Vec<Problem> {
-        let mut problems = self.problems.into_inner();
-        let line = |p: &Problem| source.span_of(&p.place).map_or(0, |s| source.line_and_column(s.start).0);
-        let broken: Vec<usize> = problems.iter().filter(|p| p.code == "not-toml").map(line).collect();
-        if !broken.is_empty() {
-            problems.retain(|p| p.code == "not-toml" || (p.code != "key-missing" && !broken.contains(&line(p))));
-        }
-        problems.sort_by_key(|p| source.span_of(&p.place).map_or(0, |s| s.start));
-        problems.dedup();
-        problems
-    }
-}
-
-/// Parses a file; mistakes of the notation go to `context`, what could be read is returned.
-pub fn parse<'a>(source: &'a Source, context: &Context) -> Spanned<DeTable<'a>> {
-    let (table, errors) = DeTable::parse_recoverable(&source.text);
-    for error in errors {
-        let span = error.span().unwrap_or(0..0);
-        let found = source.text.get(span.clone()).unwrap_or("").trim();
-        let place = Place::Span { key: String::new(), span };
-        context.report(if error.message() == "duplicate key" {
-            let key = found.trim_matches(['[', ']']);
-            Problem::error(
-                "key-doubled",
-                place,
-                format!("\"{key}\" stands twice in the same table; each key is allowed once"),
-                "keep one of the two",
-            )
-        } else {
-            Problem::error(
-                "not-toml",
-                place,
-                format!("not TOML here: {}", error.message()),
-                "write `key = \"value unit\"`, one key a line, under a [table] heading",
-            )
-        });
-    }
-    table
-}
-
 /// A table being read.
 pub struct Table<'a> {
     entries: &'a DeTable<'a>,
@@ -157,6 +52,8 @@ pub struct Table<'a> {
     span: Range<usize>,
     context: &'a Context,
     known: RefCell<Vec<&'static str>>,
+    /// Stands in for a value of another type, which was reported: its keys are not missing.
+    stands_in: bool,
 }
 
 impl<'a> Table<'a> {
@@ -167,7 +64,7 @@ impl<'a> Table<'a> {
 
     /// A table at a path.
     fn at(entries: &'a DeTable<'a>, path: String, span: Range<usize>, context: &'a Context) -> Table<'a> {
-        Table { entries, path, span, context, known: RefCell::default() }
+        Table { entries, path, span, context, known: RefCell::default(), stands_in: false }
     }
 
     /// Path of the table.
@@ -226,6 +123,9 @@ impl<'a> Table<'a> {
 
     /// Reports that a key is missing; `example` is the value as it would be written.
     pub fn missing(&self, key: &str, example: &str) {
+        if self.stands_in {
+            return;
+        }
         let table = if self.path.is_empty() { "the file".to_string() } else { format!("[{}]", self.path) };
         let place = Place::Span { key: self.path_of(key), span: self.span.clone() };
         self.context.report(Problem::error(
@@ -470,7 +370,13 @@ impl<'a> Table<'a> {
 
     /// One of the allowed words, if there: its index.
     pub fn word(&self, key: &'static str, allowed: &[&str]) -> Option<usize> {
-        let text = self.string(key)?;
+        let value = self.get(key)?;
+        let Some(text) = value.get_ref().as_str() else {
+            let help = format!("write {key} = \"{}\"", allowed.first().unwrap_or(&""));
+            let message = format!("{key} is {}; due is one of {}, in quotes", kind_of(value.get_ref()), allowed.join(", "));
+            self.error("wrong-type", key, message, help);
+            return None;
+        };
         self.word_of(key, text, allowed)
     }
 
@@ -517,13 +423,18 @@ impl<'a> Table<'a> {
 
     /// A table inside; an empty one stands in when it was left out or is something else (which is reported).
     pub fn table(&self, key: &'static str) -> Table<'a> {
+        self.table_like(key, "{ ... }")
+    }
+
+    /// The same with an example of what the table would look like.
+    pub fn table_like(&self, key: &'static str, example: &str) -> Table<'a> {
         let path = self.path_of(key);
         match self.get(key).map(|value| (value.span(), value.get_ref())) {
             Some((span, DeValue::Table(inner))) => Table::at(inner, path, span, self.context),
             Some((span, other)) => {
-                let help = format!("write [{path}] or {key} = {{ ... }}");
+                let help = format!("write {key} = {example}, or its keys under a heading of their own");
                 self.error("wrong-type", key, format!("{key} is {}; due is a table", kind_of(other)), help);
-                Table::at(&EMPTY, path, span, self.context)
+                Table { stands_in: true, ..Table::at(&EMPTY, path, span, self.context) }
             }
             None => Table::at(&EMPTY, path, self.span.clone(), self.context),
         }
@@ -564,7 +475,11 @@ impl<'a> Table<'a> {
             }
             let all = || known.iter().copied().collect::<Vec<_>>().join(", ");
             let help = match nearest(name, known.iter().copied()) {
-                Some(near) => format!("did you mean \"{near}\"? known here: {}", all()),
+                Some(near) => {
+                    // A misspelt key is one mistake, not an unknown and a missing one.
+                    self.context.retract("key-missing", &self.path_of(near));
+                    format!("did you mean \"{near}\"? known here: {}", all())
+                }
                 None => format!("known here: {}", all()),
             };
             let table = if self.path.is_empty() { "the file".to_string() } else { format!("[{}]", self.path) };

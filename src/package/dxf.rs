@@ -8,6 +8,7 @@ use std::collections::HashMap;
 use std::io;
 use std::io::BufWriter;
 use std::io::Write;
+use std::path::Path;
 
 use chrono::Datelike;
 use chrono::NaiveDate;
@@ -35,7 +36,7 @@ use crate::base::Nm;
 use crate::base::Point;
 use crate::package::job::Job;
 
-const OUTLINE: &str = "BOARD_OUTLINE";
+pub(super) const OUTLINE: &str = "BOARD_OUTLINE";
 const PLATED: &str = "DRILL_PTH";
 const UNPLATED: &str = "DRILL_NPTH";
 const NOTES: &str = "NOTES";
@@ -79,12 +80,51 @@ pub fn write(job: &Job, out: &mut dyn Write) -> io::Result<()> {
     sheet.save(job, out)
 }
 
-fn copper_layer(number: u8, last: u8) -> String {
+pub(super) fn copper_layer(number: u8, last: u8) -> String {
     match number {
         1 => "L1_TOP_COPPER".to_string(),
         n if n == last => format!("L{n}_BOT_COPPER"),
         n => format!("L{n}_INNER_COPPER"),
     }
+}
+
+/// What a drawing holds, as the checks see it.
+pub(super) struct Drawn {
+    /// Whether the header says so twice.
+    pub in_millimetres: bool,
+    /// Closed polylines by layer.
+    pub rings: BTreeMap<String, Vec<Vec<Point>>>,
+    /// Centre and diameter of the holes.
+    pub circles: Vec<(Point, Nm)>,
+}
+
+/// Reads a drawing back; the error says why it cannot be read.
+pub(super) fn read(path: &Path) -> Result<Drawn, String> {
+    let drawing = Drawing::load_file(path).map_err(|error| error.to_string())?;
+    let header = &drawing.header;
+    let mut drawn = Drawn {
+        in_millimetres: header.default_drawing_units == Units::Millimeters && header.drawing_units == DrawingUnits::Metric,
+        rings: BTreeMap::new(),
+        circles: Vec::new(),
+    };
+    let point = |x_mm: f64, y_mm: f64| Point::from_m(x_mm * 1e-3, y_mm * 1e-3);
+    for entity in drawing.entities() {
+        let layer = &entity.common.layer;
+        match &entity.specific {
+            EntityType::LwPolyline(polyline) => {
+                if !polyline.is_closed() {
+                    return Err(format!("an open polyline on layer {layer}"));
+                }
+                let ring = polyline.vertices.iter().map(|vertex| point(vertex.x, vertex.y)).collect();
+                drawn.rings.entry(layer.clone()).or_default().push(ring);
+            }
+            EntityType::Circle(circle) if layer == PLATED || layer == UNPLATED => {
+                drawn.circles.push((point(circle.center.x, circle.center.y), Nm::from_m(2e-3 * circle.radius)));
+            }
+            _ => {}
+        }
+    }
+    Ok(drawn)
 }
 
 struct Sheet {

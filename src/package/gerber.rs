@@ -60,6 +60,10 @@ use crate::package::job::Job;
 /// Millimetres with six decimals are whole nanometres; four digits before them reach 10 m.
 const FORMAT: CoordinateFormat =
     CoordinateFormat { zero_omission: ZeroOmission::Leading, coordinate_mode: CoordinateMode::Absolute, integer: 4, decimal: 6 };
+/// Ten metres in nanometres: where the four digits before the point end.
+const MAX_COORDINATE: u64 = 10_000_000_000;
+/// Two letters, two signs, twice ten digits, `D01*` and the line's end.
+const LONGEST_LINE: usize = 29;
 /// Width of the stroke whose centre line is the board's edge.
 const PROFILE_STROKE: Nm = Nm(100_000);
 /// The first aperture number the format allows.
@@ -290,13 +294,47 @@ impl<'w> Pen<'w> {
     }
 
     /// Moves to the first vertex and draws through all others back to it.
+    ///
+    /// The vertices are written here, not by the crate, which makes a rational number and a string of each coordinate: on a board of a
+    /// million vertices that takes nine tenths of the time. A test holds both ways to the same bytes.
     fn contour(&mut self, ring: &[Point]) -> io::Result<()> {
         let Some((&first, rest)) = ring.split_first() else { return Ok(()) };
-        self.emit(DCode::Operation(Operation::Move(Some(coordinates(first)))))?;
-        for &point in rest.iter().chain(std::iter::once(&first)) {
-            self.emit(DCode::Operation(Operation::Interpolate(Some(coordinates(point)), None)))?;
+        self.vertex(first, b"D02*\n")?;
+        for &point in rest {
+            self.vertex(point, b"D01*\n")?;
         }
-        Ok(())
+        self.vertex(first, b"D01*\n")
+    }
+
+    fn vertex(&mut self, at: Point, operation: &[u8; 5]) -> io::Result<()> {
+        // Filled from the end: operation, y, x.
+        let mut line = [0; LONGEST_LINE];
+        let mut begin = LONGEST_LINE - operation.len();
+        line[begin..].copy_from_slice(operation);
+        for (letter, value) in [(b'Y', at.y), (b'X', at.x)] {
+            let mut rest = value.0.unsigned_abs();
+            if rest >= MAX_COORDINATE {
+                return Err(io::Error::new(
+                    io::ErrorKind::InvalidData,
+                    format!("a coordinate of {} mm; the format ends at 10 m", value.mm()),
+                ));
+            }
+            loop {
+                begin -= 1;
+                line[begin] = b'0' + (rest % 10) as u8;
+                rest /= 10;
+                if rest == 0 {
+                    break;
+                }
+            }
+            if value < Nm::ZERO {
+                begin -= 1;
+                line[begin] = b'-';
+            }
+            begin -= 1;
+            line[begin] = letter;
+        }
+        self.out.write_all(&line[begin..])
     }
 
     fn flash(&mut self, at: Point) -> io::Result<()> {
@@ -316,4 +354,37 @@ fn coordinates(at: Point) -> Coordinates {
 
 fn box_area(ring: &[Point]) -> i128 {
     bounds(ring.iter().copied()).map_or(0, |[low, high]| i128::from((high.x - low.x).0) * i128::from((high.y - low.y).0))
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn vertices_are_written_as_the_crate_writes_them() {
+        let ends = [0, 1, -1, 10, 123_456_789, -987_654_321, 9_999_999_999, -9_999_999_999];
+        for (x, y) in ends.iter().flat_map(|x| ends.map(|y| (*x, y))) {
+            let at = Point::new(x, y);
+            let (mut own, mut theirs) = (Vec::new(), Vec::new());
+            let mut pen = Pen { out: BufWriter::new(&mut own as &mut dyn Write), function: None, net: None, aperture: None };
+            pen.contour(&[at, Point::new(1, 2)]).unwrap();
+            pen.out.flush().unwrap();
+            drop(pen);
+            let mut pen = Pen { out: BufWriter::new(&mut theirs as &mut dyn Write), function: None, net: None, aperture: None };
+            pen.emit(DCode::Operation(Operation::Move(Some(coordinates(at))))).unwrap();
+            for point in [Point::new(1, 2), at] {
+                pen.emit(DCode::Operation(Operation::Interpolate(Some(coordinates(point)), None))).unwrap();
+            }
+            pen.out.flush().unwrap();
+            drop(pen);
+            assert_eq!(String::from_utf8(own), String::from_utf8(theirs));
+        }
+    }
+
+    #[test]
+    fn a_coordinate_beyond_the_format_is_refused() {
+        let mut out = Vec::new();
+        let mut pen = Pen { out: BufWriter::new(&mut out as &mut dyn Write), function: None, net: None, aperture: None };
+        assert!(pen.contour(&[Point::new(10_000_000_000, 0)]).is_err());
+    }
 }

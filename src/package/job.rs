@@ -1,6 +1,8 @@
 //! What every writer needs besides the bundle: the copper as drawn, the package's identity, the files written so far.
 
 use std::borrow::Cow;
+use std::path::Path;
+use std::path::PathBuf;
 
 use sha2::Digest;
 use sha2::Sha256;
@@ -28,13 +30,15 @@ pub struct Job<'a> {
     pub project: Uuid,
     /// Identifies this very geometry: files with the same one are aligned.
     pub coordinates: Uuid,
+    /// Where the files are written.
+    pub folder: PathBuf,
     /// The files written so far, in order.
     pub written: Vec<Listed>,
 }
 
 impl<'a> Job<'a> {
-    /// Prepares the copper and the identity.
-    pub fn new(bundle: &'a Bundle<'a>) -> Job<'a> {
+    /// Prepares the copper and the identity; the files will go into `folder`.
+    pub fn new(bundle: &'a Bundle<'a>, folder: &Path) -> Job<'a> {
         let order = &bundle.dimensions.order;
         let artwork = match order.shop.compensation {
             Compensation::ByTheShop => Cow::Borrowed(bundle.board),
@@ -51,7 +55,7 @@ impl<'a> Job<'a> {
             hash.update(order.revision.as_bytes());
             hash_board(&artwork, hash);
         });
-        Job { bundle, artwork, project, coordinates, written: Vec::new() }
+        Job { bundle, artwork, project, coordinates, folder: folder.to_path_buf(), written: Vec::new() }
     }
 
     /// The order.

@@ -8,6 +8,10 @@ mod job;
 mod note;
 mod preview;
 mod put;
+mod read_drill;
+mod read_gerber;
+mod verify;
+mod zipped;
 
 use std::io;
 use std::io::Write;
@@ -20,16 +24,21 @@ pub use put::How;
 pub use put::may_go;
 pub use put::put;
 pub use put::write_all;
+pub use verify::Checked;
+pub use verify::verify;
 
 use crate::artwork::Board;
 use crate::artwork::Face;
 use crate::artwork::HoleUse;
 use crate::artwork::Layer;
 use crate::base::Problem;
+use crate::dimensions;
 use crate::dimensions::Dimensions;
 use crate::layout::Layout;
 use crate::network::Figures;
 use crate::network::Response;
+use crate::network::touchstone;
+use crate::order;
 
 /// What the writers read.
 pub struct Bundle<'a> {
@@ -158,6 +167,34 @@ pub static WRITERS: &[Writer] = &[
         for_board_house: true,
         applies: |_| true,
         write: note::write,
+    },
+    Writer {
+        file: FileName::Ending("-to-board-house.zip"),
+        about: "the files for the board house in one",
+        for_board_house: true,
+        applies: |_| true,
+        write: zipped::write,
+    },
+    Writer {
+        file: FileName::Fixed("dimensions.toml"),
+        about: "the dimension set with its order; change a value and draw again",
+        for_board_house: false,
+        applies: |_| true,
+        write: |job, out| out.write_all(dimensions::write(job.bundle.dimensions).as_bytes()),
+    },
+    Writer {
+        file: FileName::Fixed("order.toml"),
+        about: "the order as understood, every default resolved",
+        for_board_house: false,
+        applies: |_| true,
+        write: |job, out| out.write_all(order::write(job.order()).as_bytes()),
+    },
+    Writer {
+        file: FileName::Fixed("response.s2p"),
+        about: "the predicted S-parameters, Touchstone 1.1",
+        for_board_house: false,
+        applies: |_| true,
+        write: |job, out| touchstone::write(job.bundle.response, &touchstone::comments(job.order()), out),
     },
     Writer {
         file: FileName::Fixed("preview.svg"),

@@ -41,8 +41,12 @@ const STRIP_MM: f64 = 2.6;
 const HATCH_MM: f64 = 1.2;
 /// The level axis goes down to the deepest limit and this much below it, within its least and greatest.
 const BELOW_LIMITS_DB: f64 = 20.0;
-const LEAST_DEPTH_DB: f64 = 50.0;
+const LEAST_DEPTH_DB: f64 = 60.0;
 const GREATEST_DEPTH_DB: f64 = 120.0;
+/// The plot reaches from this share of the lowest frequency with a requirement to this multiple of the highest.
+const SHOWN_AROUND: [f64; 2] = [0.75, 1.35];
+/// Points of a curve closer than this on paper are left out.
+const POINT_MM: f64 = 0.05;
 /// About this many labelled frequencies.
 const FREQUENCY_TICKS: f64 = 8.0;
 
@@ -60,7 +64,9 @@ pub fn draw(job: &Job) -> String {
     let right = width - MARGIN_MM;
 
     let mut svg = Svg::default();
-    svg.text(MARGIN_MM, 16.0, 5.4, INK, "font-weight=\"600\"", &order.title);
+    // A bold letter is about 0.62 of its height wide on average; a long title is set smaller.
+    let title_size = number((1.6 * (right - MARGIN_MM) / order.title.chars().count().max(1) as f64).min(5.4), 2).parse().unwrap_or(5.4);
+    svg.text(MARGIN_MM, 16.0, title_size, INK, "font-weight=\"600\"", &order.title);
     let part = order.part_number.as_ref().map_or(String::new(), |part| format!("  \u{b7}  {part}"));
     let date = order.date.as_ref().map_or(String::new(), |date| format!("  \u{b7}  {date}"));
     let degree = job.bundle.dimensions.degree;
@@ -255,9 +261,7 @@ struct Plot {
 
 impl Plot {
     fn new(job: &Job, [left, top]: [f64; 2], [right, bottom]: [f64; 2]) -> Plot {
-        let response = job.bundle.response;
-        let first = response.f_hz.first().copied().unwrap_or(0.0);
-        let last = response.f_hz.last().copied().filter(|last| *last > first).unwrap_or(first + 1.0);
+        let [first, last] = shown_hz(job);
         let levels = job.bundle.figures.verdicts.iter().filter_map(|verdict| level(job, verdict));
         let deepest = levels.map(|(limit_db, _, _)| -limit_db).fold(0.0, f64::max);
         let depth_db = (10.0 * ((deepest + BELOW_LIMITS_DB) / 10.0).ceil()).clamp(LEAST_DEPTH_DB, GREATEST_DEPTH_DB);
@@ -283,10 +287,17 @@ impl Plot {
         }
         for (index, color, width) in [(0, REFLECTED, 0.4), (1, THROUGH, 0.6)] {
             let mut d = String::new();
-            for (i, (f_hz, s)) in job.bundle.response.f_hz.iter().zip(&job.bundle.response.s).enumerate() {
+            let mut last: Option<[f64; 2]> = None;
+            for (f_hz, s) in job.bundle.response.f_hz.iter().zip(&job.bundle.response.s) {
                 // Beyond the axis a point says nothing more, but it must stay finite.
                 let level = (-level_db(s[index])).clamp(-2.0 * self.depth_db, 3.0);
-                let _ = write!(d, "{}{} {}", if i == 0 { 'M' } else { 'L' }, number(self.x(*f_hz), 3), number(self.y(level), 3));
+                let [x, y] = [self.x(*f_hz), self.y(level)];
+                let off = x < self.left - 5.0 || x > self.right + 5.0;
+                if off || last.is_some_and(|[lx, ly]| (x - lx).abs() < POINT_MM && (y - ly).abs() < POINT_MM) {
+                    continue;
+                }
+                let _ = write!(d, "{}{} {}", if last.is_none() { 'M' } else { 'L' }, number(x, 2), number(y, 2));
+                last = Some([x, y]);
             }
             svg.add(format_args!("<path d=\"{d}\" fill=\"none\" stroke=\"{color}\" stroke-width=\"{width}\" stroke-linejoin=\"round\"/>"));
         }
@@ -377,6 +388,19 @@ impl Plot {
     }
 }
 
+/// The stretch of the response around all requirements; the whole response when there are none.
+fn shown_hz(job: &Job) -> [f64; 2] {
+    let swept = &job.bundle.response.f_hz;
+    let first = swept.first().copied().unwrap_or(0.0);
+    let last = swept.last().copied().unwrap_or(0.0);
+    let bands = || job.bundle.figures.verdicts.iter().map(|verdict| verdict.band_hz);
+    let low = bands().map(|band| band[0]).fold(f64::INFINITY, f64::min);
+    let high = bands().map(|band| band[1]).fold(0.0, f64::max);
+    let shown = [(SHOWN_AROUND[0] * low).max(first), (SHOWN_AROUND[1] * high).min(last)];
+    let shown = if high > 0.0 && shown[1] > shown[0] { shown } else { [first, last] };
+    if shown[1] > shown[0] { shown } else { [first, first + 1.0] }
+}
+
 /// Where a limit lies on the level axis, whether what is above it is forbidden, and the color of its curve; `None` for limits that are
 /// no level.
 fn level(job: &Job, verdict: &Verdict) -> Option<(f64, bool, &'static str)> {
@@ -408,7 +432,7 @@ fn figures(svg: &mut Svg, job: &Job, y: f64, right: f64) -> f64 {
     for (i, (name, value)) in cells.iter().enumerate() {
         let x = MARGIN_MM + step * i as f64;
         svg.text(x, y, 2.6, FAINT, "", name);
-        svg.text(x, y + 4.8, 3.8, INK, "font-weight=\"600\"", value);
+        svg.text(x, y + 4.6, 3.4, INK, "font-weight=\"600\"", value);
     }
     svg.line([MARGIN_MM, y + 8.5], [right, y + 8.5], RULE, 0.25);
     y + 14.5

@@ -27,30 +27,29 @@ use crate::package::contents::Listed;
 const LOCK_WAIT: Duration = Duration::from_secs(20);
 const LOCK_POLL: Duration = Duration::from_millis(10);
 
-/// Writes every file of the package into `folder`, which must exist; `withheld` leaves out what only the board house needs.
-pub fn write_all(job: &mut Job, folder: &Path, withheld: bool) -> io::Result<()> {
+/// Writes every file of the package into the job's folder, which must exist; `withheld` leaves out what only the board house needs.
+pub fn write_all(job: &mut Job, withheld: bool) -> io::Result<()> {
     let name = job.order().name.clone();
     for writer in WRITERS.iter().filter(|writer| !(withheld && writer.for_board_house)) {
         if !(writer.applies)(job) {
             continue;
         }
         let file = writer.file_name(&name);
-        let (bytes, sha256) = write_one(&folder.join(&file), |out| (writer.write)(job, out))?;
+        let (bytes, sha256) = write_one(&job.folder.join(&file), |out| (writer.write)(job, out))?;
         job.written.push(Listed { file, about: writer.about.to_string(), for_board_house: writer.for_board_house, bytes, sha256 });
     }
     let contents = Contents::of(job, withheld);
-    write_one(&folder.join(CONTENTS), |out| contents.write(out))?;
+    write_one(&job.folder.join(CONTENTS), |out| contents.write(out))?;
     Ok(())
 }
 
-/// Writes and syncs one new file; gives its length and checksum.
+/// Writes one new file; gives its length and checksum.
 fn write_one(path: &Path, write: impl FnOnce(&mut dyn Write) -> io::Result<()>) -> io::Result<(u64, String)> {
     let file = fs::File::create_new(path)?;
     let mut counted = Counted { out: BufWriter::new(&file), hash: Sha256::new(), bytes: 0 };
     write(&mut counted)?;
     counted.out.flush()?;
     let (bytes, sha256) = (counted.bytes, hex(&counted.hash.finalize()));
-    file.sync_all()?;
     Ok((bytes, sha256))
 }
 
@@ -74,7 +73,7 @@ impl<W: Write> Write for Counted<W> {
     }
 }
 
-pub(super) fn hex(bytes: &[u8]) -> String {
+fn hex(bytes: &[u8]) -> String {
     bytes.iter().map(|byte| format!("{byte:02x}")).collect()
 }
 
@@ -119,8 +118,8 @@ pub fn put(bundle: &Bundle, parent: &Path, how: How) -> Result<PathBuf, Problem>
     may_go(name, parent, how)?;
 
     let made = fs::create_dir(&fresh).and_then(|()| {
-        write_all(&mut Job::new(bundle), &fresh, how.withhold)?;
-        sync_folder(&fresh)
+        write_all(&mut Job::new(bundle, &fresh), how.withhold)?;
+        sync_files(&fresh)
     });
     if let Err(error) = made {
         // What is left, if even this fails, is removed by the next run.
@@ -197,8 +196,13 @@ fn foreign_files(folder: &Path, source: Option<&Path>) -> io::Result<Vec<String>
 
 /// Length and SHA-256 of a file.
 pub(super) fn checksum(path: &Path) -> io::Result<(u64, String)> {
+    checksum_of(fs::File::open(path)?)
+}
+
+/// Length and SHA-256 of what a reader gives.
+pub(super) fn checksum_of(mut from: impl io::Read) -> io::Result<(u64, String)> {
     let mut counted = Counted { out: io::sink(), hash: Sha256::new(), bytes: 0 };
-    io::copy(&mut fs::File::open(path)?, &mut counted)?;
+    io::copy(&mut from, &mut counted)?;
     Ok((counted.bytes, hex(&counted.hash.finalize())))
 }
 
@@ -243,6 +247,15 @@ fn exchange(one: &Path, other: &Path) -> io::Result<bool> {
 #[cfg(not(target_os = "linux"))]
 fn exchange(_: &Path, _: &Path) -> io::Result<bool> {
     Ok(false)
+}
+
+/// Brings a package's files to the disk. All at the end: the first sync mostly carries the others, where one after each file would not.
+fn sync_files(folder: &Path) -> io::Result<()> {
+    for entry in fs::read_dir(folder)? {
+        // Opened for writing: some systems sync only what may be written.
+        fs::OpenOptions::new().write(true).open(entry?.path())?.sync_all()?;
+    }
+    sync_folder(folder)
 }
 
 /// Brings a folder's entries to the disk.

@@ -75,7 +75,8 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
 fn figures(family: &dyn Family, refined: &Refined) -> Result<Figures, Vec<Problem>> {
     let layout = family.layout(&refined.dimensions)?;
     let order = &refined.dimensions.order;
-    Ok(Figures::of(order, &predict(order, &layout).map_err(|p| vec![p])?))
+    let (response, _) = predict(order, &layout)?;
+    Ok(Figures::of(order, &response))
 }
 
 /// Which rejection the lossless prototype of a degree already misses beyond hope.

@@ -6,7 +6,7 @@
 /// Times the damping is raised before an iteration gives up.
 const MAX_RAISES: usize = 8;
 /// An iteration that lessens the sum by less than this part is the last.
-const LEAST_GAIN: f64 = 1e-2;
+const LEAST_GAIN: f64 = 1e-3;
 
 /// Moves `x` to lessen the sum of squares of `residuals`; returns the final sum. `None` residuals count as infinitely bad.
 ///

@@ -19,12 +19,18 @@ use crate::order::Band;
 use crate::order::ResponseShape;
 pub use degree::{Chosen, synthesize};
 use least_squares::minimize;
+use num_complex::Complex64;
 pub use passband::{Goal, Miss, Passband};
 
-/// Iterations of the first stage, which fits |S11|^2 over the band to the prototype's.
+/// Iterations of the first stage, which fits the characteristic function over the band to the prototype's.
 const FIT_ITERATIONS: usize = 25;
-/// Iterations of one round of the second stage, which levels the ripple, and rounds of both stages.
+/// Iterations of one round of the second stage, which levels the ripple.
 const LEVEL_ITERATIONS: usize = 8;
+/// Before the stages: the passband is looked for this far to either side of the centre, at so many points, and moved so many times.
+const ALIGN_REACH: f64 = 0.25;
+const ALIGN_POINTS: usize = 201;
+const ALIGN_STEPS: usize = 3;
+/// Rounds of both stages.
 const ROUNDS: usize = 4;
 /// Sample points of the first stage per degree, over a quarter of the bandwidth more than the band on each side.
 const SAMPLES_PER_DEGREE: usize = 7;
@@ -169,10 +175,16 @@ impl Search<'_> {
         let greatest: Vec<f64> = self.knobs.iter().map(|k| k.greatest_step).collect();
         let mut x = vec![0.0; count];
         let mut best = (f64::INFINITY, x.clone());
+        self.align(&mut x);
+        let aligned = x.clone();
+        let ports = self.guess.order.filter.ports_ohm;
+        let mut measure = if ports[0] == ports[1] { Measure::Signed } else { Measure::Squared };
         for round in 0..ROUNDS {
             if round == 0 || best.0 > 1.0 {
-                minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, 0.3 * 3f64.powi(round as i32)));
+                x.copy_from_slice(&aligned);
+                minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, measure));
                 self.keep(&x, &mut best);
+                measure = Measure::Squared;
             }
             minimize(&mut x, &steps, &greatest, LEVEL_ITERATIONS, |x| self.level(x));
             self.keep(&x, &mut best);
@@ -190,19 +202,42 @@ impl Search<'_> {
         }
     }
 
-    /// First stage: |S11|^2 against the prototype's over the band and a little outside; `floor` in edge levels tempers the weight of the ripple.
-    fn fit(&self, x: &[f64], floor: f64) -> Option<Vec<f64>> {
+    /// Turns all resonators together until the passband lies about the ordered centre, so that the fit begins with its samples in the band.
+    fn align(&self, x: &mut [f64]) {
+        let center_hz = self.goal.frequency_hz(0.0);
+        let f: Vec<f64> =
+            (0..ALIGN_POINTS).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (ALIGN_POINTS - 1) as f64 - 1.0))).collect();
+        for _ in 0..ALIGN_STEPS {
+            let Some(circuit) = self.circuit(x) else { return };
+            let weights: Vec<f64> = circuit.sweep(&f).s.iter().map(|s| s[1].norm_sqr().powi(2)).collect();
+            let found_hz = f.iter().zip(&weights).map(|(f, w)| f * w).sum::<f64>() / weights.iter().sum::<f64>();
+            if !found_hz.is_finite() {
+                return;
+            }
+            for (x, _) in x.iter_mut().zip(self.knobs).filter(|(_, knob)| knob.is_resonator) {
+                *x += found_hz / center_hz - 1.0;
+            }
+        }
+    }
+
+    /// First stage: the characteristic function K against the prototype's over the band and a little outside, both compressed by an asinh
+    /// that is even-handed within the ripple and counts dB outside.
+    fn fit(&self, x: &[f64], measure: Measure) -> Option<Vec<f64>> {
         let points = SAMPLES_PER_DEGREE * self.goal.degree + 11;
         let at: Vec<f64> = (0..points).map(|i| SAMPLE_REACH * (2.0 * i as f64 / (points - 1) as f64 - 1.0)).collect();
         let f: Vec<f64> = at.iter().map(|x| self.goal.frequency_hz(*x)).collect();
-        let response = self.circuit(x)?.sweep(&f);
-        let floor = floor * self.goal.edge_reflection();
+        let ripple = self.goal.edge_characteristic();
+        let found: Vec<f64> = self.circuit(x)?.sweep(&f).s.iter().map(|s| characteristic(s) / ripple).collect();
+        let wanted: Vec<f64> = at.iter().map(|x| self.goal.characteristic(*x) / ripple).collect();
+        // The sign of the whole is free; outside the band, where there is no zero, the two must agree.
+        let sign = if found.first()? * wanted.first()? < 0.0 { -1.0 } else { 1.0 };
         Some(
-            at.iter()
-                .zip(&response.s)
-                .map(|(x, s)| {
-                    let wanted = self.goal.reflection(*x);
-                    (s[0].norm_sqr() - wanted) / (wanted + floor)
+            found
+                .iter()
+                .zip(&wanted)
+                .map(|(k, w)| match measure {
+                    Measure::Signed => (sign * k).asinh() - w.asinh(),
+                    Measure::Squared => 0.5 * ((k * k).asinh() - (w * w).asinh()),
                 })
                 .collect(),
         )
@@ -216,7 +251,7 @@ impl Search<'_> {
         let edges = [0, 1].map(|i| (passband.edges_hz[i] - self.goal.edges_hz[i]) / (0.01 * self.goal.width_hz()));
         if self.goal.shape == ResponseShape::MaximallyFlat {
             // Flatness is held by the fit; here only the edges are brought in, the rest of the band keeping its weight.
-            return Some(edges.into_iter().chain(self.fit(x, 1.0)?).collect());
+            return Some(edges.into_iter().chain(self.fit(x, Measure::Squared)?).collect());
         }
         if passband.minima.len() != self.goal.degree || passband.maxima.len() + 1 != self.goal.degree {
             return None;
@@ -227,6 +262,23 @@ impl Search<'_> {
         let depths: Vec<f64> = circuit.sweep(&zeros).s.iter().flat_map(|s| [s[0].re, s[0].im]).map(|v| 3.0 * v / level.sqrt()).collect();
         Some(edges.into_iter().chain(heights).chain(depths).collect())
     }
+}
+
+/// How the fit compares characteristic functions.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+enum Measure {
+    /// With their sign, which changes at every reflection zero: no fit can then mistake two zeros lost for two zeros met.
+    Signed,
+    /// By their squares.
+    Squared,
+}
+
+/// K = S11/S21 of a lossless reciprocal two-port over j: real, and with a sign, where the two-port is symmetric; elsewhere its magnitude counts.
+fn characteristic([s11, s21, _, s22]: &[Complex64; 4]) -> f64 {
+    /// Reflections of a symmetric circuit differ by rounding only.
+    const ALIKE: f64 = 1e-6;
+    let k = if (s11 - s22).norm() < ALIKE { (s11 * s21.conj()).im } else { s11.norm() * s21.norm() };
+    k / s21.norm_sqr().max(f64::MIN_POSITIVE)
 }
 
 /// Snaps to the shop grid once, then tries each dimension's neighbours on the grid and keeps what lessens the miss.

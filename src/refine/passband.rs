@@ -41,16 +41,21 @@ impl Goal {
         0.5 * (self.edges_hz[0] + self.edges_hz[1]) + 0.5 * self.width_hz() * x
     }
 
-    /// |S11|^2 of the prototype at `x`.
-    pub fn reflection(&self, x: f64) -> f64 {
+    /// |S11/S21| at the edges.
+    pub fn edge_characteristic(&self) -> f64 {
         let edge = self.edge_reflection();
+        (edge / (1.0 - edge)).sqrt()
+    }
+
+    /// The prototype's characteristic function at `x`: a power, or a Chebyshev polynomial of the ripple's height.
+    pub fn characteristic(&self, x: f64) -> f64 {
+        let n = self.degree as f64;
         let shape = match self.shape {
             ResponseShape::MaximallyFlat => x.powi(self.degree as i32),
-            ResponseShape::EqualRipple { .. } if x.abs() <= 1.0 => (self.degree as f64 * x.acos()).cos(),
-            ResponseShape::EqualRipple { .. } => (self.degree as f64 * x.abs().acosh()).cosh(),
+            ResponseShape::EqualRipple { .. } if x.abs() <= 1.0 => (n * x.acos()).cos(),
+            ResponseShape::EqualRipple { .. } => (n * x.abs().acosh()).cosh() * if x < 0.0 && self.degree % 2 == 1 { -1.0 } else { 1.0 },
         };
-        let k = edge / (1.0 - edge) * shape * shape;
-        k / (1.0 + k)
+        self.edge_characteristic() * shape
     }
 }
 

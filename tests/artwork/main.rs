@@ -5,6 +5,7 @@
 #![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
 
 mod copper;
+mod families;
 mod placing;
 mod rules;
 mod sample;

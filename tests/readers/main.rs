@@ -3,6 +3,9 @@
 #![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
 
 mod drawing;
+mod drills;
 mod gerbers;
+mod placing;
 mod sample;
 mod touchstone;
+mod verified;

@@ -1,118 +1,40 @@
-//! Boards and bundles the readers are tried on: one drawn by hand with voids, holes, lands and text, one drawn from a layout.
+//! What the readers are tried on: the starter order as `make` makes it, and a board drawn by hand with all that a board can hold.
 
 use std::collections::BTreeMap;
 
-use num_complex::Complex64;
+use stripwright::Made;
 use stripwright::artwork::*;
 use stripwright::base::{Nm, Point};
-use stripwright::dimensions::{Dimension, Dimensions};
-use stripwright::layout::{Layout, Node};
-use stripwright::network::{Figures, Method, Response, Verdict};
-use stripwright::order::{Limit, Order};
+use stripwright::layout::Node;
+use stripwright::order::{Order, Source};
 use stripwright::package::Bundle;
 
-#[path = "../artwork/sample.rs"]
-mod layouts;
-
-pub use layouts::{degree_3, order};
-
-/// Everything a bundle borrows.
-pub struct Sample {
-    pub dimensions: Dimensions,
-    pub layout: Layout,
-    pub board: Board,
-    pub response: Response,
-    pub figures: Figures,
+/// The starter order.
+pub fn order() -> Order {
+    let source = Source::from_text("edge-coupled.toml", include_str!("../../templates/orders/edge-coupled.toml"));
+    stripwright::order::read(&source, &stripwright::family::keys()).unwrap().0
 }
 
-impl Sample {
-    pub fn bundle(&self) -> Bundle<'_> {
-        Bundle {
-            dimensions: &self.dimensions,
-            layout: &self.layout,
-            board: &self.board,
-            response: &self.response,
-            figures: &self.figures,
-            findings: &[],
-        }
-    }
-
-    /// A board drawn from a layout, as `make` does it.
-    pub fn drawn(order: Order) -> Sample {
-        let layout = degree_3();
-        let (board, _) = board(&order, &layout).unwrap();
-        Sample::of(order, layout, board)
-    }
-
-    /// A board drawn by hand.
-    pub fn by_hand(order: Order) -> Sample {
-        Sample::of(order, degree_3(), hand_board())
-    }
-
-    fn of(order: Order, layout: Layout, board: Board) -> Sample {
-        let list = board
-            .callouts
-            .iter()
-            .map(|callout| {
-                let (dx, dy) = ((callout.to.x - callout.from.x).m(), (callout.to.y - callout.from.y).m());
-                let value_m = dx.hypot(dy);
-                Dimension {
-                    name: callout.dimension.clone(),
-                    value_m,
-                    first_guess_m: value_m * 1.05,
-                    serves: vec![("Z0e ohm".into(), 70.6)],
-                    corrections_m: vec![("refined".into(), -0.05 * value_m)],
-                }
-            })
-            .collect();
-        Sample { dimensions: Dimensions { order, degree: 3, list }, layout, board, response: response(), figures: figures() }
-    }
+/// All that a package is made from, without findings: what the rules think of it is tested elsewhere.
+pub fn made(order: &Order) -> Made {
+    let (mut made, _) = stripwright::make(order).unwrap();
+    made.findings.clear();
+    made
 }
 
-/// An invented third-order response around 3 GHz: enough shape for a plot, nothing to be trusted.
-fn response() -> Response {
-    let f_hz: Vec<f64> = (0..=400).map(|i| 2.0e9 + 5.0e6 * f64::from(i)).collect();
-    let s = f_hz
-        .iter()
-        .map(|f| {
-            let x = 15.0 * (f / 3.0e9 - 3.0e9 / f);
-            // Chebyshev polynomial of degree 3, ripple 0.1 dB, with 1 dB of loss.
-            let t3 = 4.0 * x.powi(3) - 3.0 * x;
-            let through = 1.0 / (1.0 + 0.0233 * t3 * t3).sqrt();
-            let (t, r) = (0.89 * through, 0.89 * (1.0 - through * through).sqrt());
-            let turn = Complex64::from_polar(1.0, -2.0 * x.atan());
-            [turn * r, turn * Complex64::new(0.0, t), turn * Complex64::new(0.0, t), turn * r]
-        })
-        .collect();
-    Response { method: Method::Network, z0_ohm: [50.0, 50.0], f_hz, s }
+/// The same with the board drawn by hand.
+pub fn made_by_hand(order: &Order) -> Made {
+    Made { board: hand_board(), ..made(order) }
 }
 
-fn figures() -> Figures {
-    let verdict = |limit, from_hz: f64, to_hz: f64, found, at_hz, margin| Verdict {
-        requirement: 0,
-        limit,
-        band_hz: [from_hz, to_hz],
-        found,
-        at_hz,
-        margin,
-    };
-    let rejection = |db, below_center| Limit::RejectionAtLeast { db, below_center };
-    Figures {
-        center_hz: 3.0e9,
-        center_loss_db: 1.01,
-        edges_3db_hz: Some([2.87e9, 3.13e9]),
-        ripple_edges_hz: Some([2.9e9, 3.1e9]),
-        worst_loss_db: 1.15,
-        return_loss_db: 16.4,
-        group_delay_s: 3.1e-9,
-        spurious_hz: Some(5.9e9),
-        verdicts: vec![
-            verdict(rejection(20.0, false), 3.4e9, 4.0e9, 31.2, 3.4e9, 11.2),
-            verdict(Limit::InsertionLossAtMost(2.5), 2.9e9, 3.1e9, 1.15, 2.9e9, 1.35),
-            verdict(Limit::ReturnLossAtLeast(14.0), 2.9e9, 3.1e9, 16.4, 3.0e9, 2.4),
-            verdict(rejection(45.0, true), 2.4e9, 2.7e9, 24.6, 2.7e9, -20.4),
-            verdict(Limit::GroupDelayVariationAtMost(2e-9), 2.95e9, 3.05e9, 0.4e-9, 2.95e9, 1.6e-9),
-        ],
+pub fn bundle(made: &Made) -> Bundle<'_> {
+    Bundle {
+        dimensions: &made.dimensions,
+        layout: &made.layout,
+        board: &made.board,
+        response: &made.response,
+        figures: &made.figures,
+        findings: &made.findings,
     }
 }
 

@@ -55,7 +55,7 @@ fn agrees_with_second_circuit(number: usize, set: &dimensions::Dimensions, degre
     let layout = family::of(&set.order).unwrap().layout(set).unwrap();
     let [low, high] = network::passband_hz(&set.order);
     let f: Vec<f64> = (0..101).map(|i| low + (high - low) * i as f64 / 100.0).collect();
-    let response = network::predict_at(&set.order, &layout, &f).unwrap();
+    let response = network::predict_at(&set.order, &layout, &f).unwrap().0;
     for (i, f) in f.iter().enumerate() {
         let (_, s21) = second_circuit::response(&set.order, &text, degree, *f);
         let other_db = -20.0 * s21.norm().log10();

@@ -1,0 +1,69 @@
+//! What are capacitance, inductance and loss of printed strips as they really are? The numerical quasi-static cross-section.
+//!
+//! Strips of any number up to [`STRIPS_AT_MOST`] on top of a grounded substrate: copper thickness (0 is a true sheet), trapezoidal profile, layers,
+//! uniaxial permittivity, lid, side walls, solder-mask coat. All lengths in metres, results in SI per metre of line.
+//!
+//! - [`Stackup`]: layers, copper and lid, tabulated once; [`Stackup::symmetric_pair`], [`Stackup::single`], [`Stackup::array`] on fixed panels, so that
+//!   results are smooth in every size; [`Stackup::pair_for`] and [`Stackup::width_for`] invert; [`Stackup::pair_loss`], [`Stackup::single_loss`].
+//! - [`solve`]: any [`CrossSection`], walls and coat included, to an accuracy asked for.
+//! - [`loss`]: conductor loss wall by wall and dielectric filling factors, for one strip or two equal ones.
+//!
+//! # Method
+//! Charge on the strips' contour only, constant on panels that shrink as the cube towards corners, potential matched at panel middles (method of moments:
+//! R. F. Harrington, "Field Computation by Moment Methods", 1968). Green function of layers and lid: direct charge and its image in the surface in closed form, the rest
+//! tabulated. Two grids and one Richardson step. Quasi-static: dispersion is for the closed forms of the room `line` to add.
+//!
+//! # Accuracy
+//! Fast pair ([`Stackup::symmetric_pair`]) against the solver on up to six times as many panels: largest error of the four capacitances, in per cent; in brackets that of the
+//! coupling k, of itself. `cargo bench --bench section` prints the whole table with times.
+//!
+//! | permittivity | t/h | s/h | w/h 0.5 | 1 | 2.5 | 8 |
+//! |---|---|---|---|---|---|---|
+//! | 2.2 | 0 | 0.05 | 0.000 (0.000) | 0.000 (0.000) | 0.001 (0.001) | 0.005 (0.010) |
+//! | 2.2 | 0.01 | 0.05 | 0.009 (0.004) | 0.011 (0.005) | 0.010 (0.003) | 0.030 (0.053) |
+//! | 2.2 | 0.01 | 1 | 0.002 (0.001) | 0.003 (0.003) | 0.004 (0.005) | 0.003 (0.005) |
+//! | 2.2 | 0.1 | 0.05 | 0.004 (0.001) | 0.006 (0.002) | 0.005 (0.002) | 0.019 (0.025) |
+//! | 2.2 | 0.1 | 1 | 0.000 (0.000) | 0.000 (0.000) | 0.002 (0.004) | 0.005 (0.014) |
+//! | 2.2 | 0.5 | 0.05 | 0.010 (0.001) | 0.008 (0.001) | 0.006 (0.002) | 0.008 (0.003) |
+//! | 2.2 | 0.5 | 4 | 0.002 (0.001) | 0.001 (0.001) | 0.000 (0.001) | 0.000 (0.001) |
+//! | 10.2 | 0 | 0.05 | 0.000 (0.000) | 0.000 (0.000) | 0.001 (0.001) | 0.005 (0.011) |
+//! | 10.2 | 0.01 | 0.05 | 0.009 (0.002) | 0.012 (0.001) | 0.024 (0.010) | 0.059 (0.096) |
+//! | 10.2 | 0.01 | 0.2 | 0.005 (0.002) | 0.007 (0.003) | 0.008 (0.003) | 0.014 (0.025) |
+//! | 10.2 | 0.1 | 0.05 | 0.004 (0.000) | 0.007 (0.000) | 0.020 (0.008) | 0.051 (0.060) |
+//! | 10.2 | 0.1 | 1 | 0.000 (0.000) | 0.000 (0.000) | 0.002 (0.003) | 0.005 (0.009) |
+//! | 10.2 | 0.5 | 0.05 | 0.012 (0.002) | 0.013 (0.003) | 0.022 (0.006) | 0.044 (0.022) |
+//! | 10.2 | 0.5 | 4 | 0.002 (0.000) | 0.001 (0.001) | 0.001 (0.001) | 0.001 (0.001) |
+//!
+//! So C is within 0.05 % but for strips eight heights wide with a slot a hundredth and less of their width. [`solve`] agrees with elliptic integrals (centred
+//! stripline, single and coupled) to 1e-5 and 2e-5, with finite differences to 1e-4 or so on layered, uniaxial, lidded, walled and coated cases (`tests/section`).
+//!
+//! # Not modelled
+//! Dispersion; copper thinner than about three skin depths; the rise of the effective permittivity that rough foil makes on thin laminates
+//! (A. F. Horn, J. W. Reynolds, J. C. Rautio, IEEE MTT-S Digest 2010).
+//!
+//! # Example
+//! ```
+//! use stripwright::line::section::{CopperOf, LayerOf, Stackup};
+//!
+//! let layers = [LayerOf::isotropic(3.0, 0.0013, 0.508e-3)];
+//! let stackup = Stackup::new(&layers, CopperOf { thickness_m: 35e-6, undercut_m: 0.0 }, None).unwrap();
+//! let pair = stackup.symmetric_pair(1.2e-3, 0.13e-3).unwrap();
+//! assert!((pair.coupling() - 0.2759).abs() < 1e-4);
+//! ```
+
+mod assembly;
+mod coat;
+mod elimination;
+mod geometry;
+mod green;
+mod inverse;
+mod logarithm;
+mod loss;
+mod panels;
+mod solve;
+mod stackup;
+
+pub use geometry::{CoatOf, CopperOf, CrossSection, HousingOf, LayerOf, STRIPS_AT_MOST, StripOf};
+pub use loss::{ModeLoss, Plating, Roughness, Surface, Surfaces, WallShares, loss, skin_depth_m};
+pub use solve::{Line, Mode, Pair, Solved, solve};
+pub use stackup::Stackup;

@@ -1,0 +1,574 @@
+//! What are the capacitance and inductance per unit length? Two grids, one Richardson step, and an estimate of what is left.
+
+use crate::base::Problem;
+
+use super::assembly::{Block, Square, add_logarithms, add_remainder, combine};
+use super::elimination::solve_in_place;
+use super::geometry::CrossSection;
+use super::geometry::fault;
+use super::geometry::mm;
+use super::green::{Kernel, Medium};
+use super::panels::{Contour, Grid, Interpolation};
+use super::stackup::{COARSE, Kernels, Stackup};
+
+/// Permittivity of free space, F/m (CODATA 2018).
+pub(super) const EPSILON_0: f64 = 8.854_187_812_8e-12;
+/// Speed of light, m/s (exact).
+pub(super) const LIGHT: f64 = 299_792_458.0;
+/// C on n panels is low by about n^-2.83 (seen over 300 random pairs): this share of the difference to the grid of half as many is put back (Richardson).
+const RICHARDSON: f64 = 0.164;
+/// Share of that step that may still be missing or too much; twice what was seen (see `tests/section`).
+const LEFT_OVER: f64 = 0.4;
+/// The same on the coarsest grids, whose difference is not yet all of that order.
+const LEFT_OVER_COARSEST: f64 = 0.8;
+/// Rounding and table errors that no grid removes.
+const FLOOR: f64 = 2e-6;
+/// Grids tried in turn for an accuracy asked for, as panels per width.
+const GRIDS: [usize; 7] = [6, 8, 12, 16, 24, 32, 48];
+/// Panels of all strips together at most: five matrices of that size take 100 MB.
+const UNKNOWNS_AT_MOST: usize = 1600;
+/// Coarser of the two grids for arrays: C within 0.1 %, and N = 9 in time.
+const ARRAY: Grid = Grid::new(6);
+/// An estimate above this says that the panels do not resolve the cross-section at all.
+const HOPELESS: f64 = 0.05;
+
+/// Capacitance per unit length of one mode, with the dielectric and without.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Mode {
+    /// Per line.
+    pub capacitance_f_per_m: f64,
+    /// Per line, all dielectric taken out.
+    pub air_capacitance_f_per_m: f64,
+}
+
+impl Mode {
+    /// Static characteristic impedance of the mode, per line.
+    pub fn z0_ohm(&self) -> f64 {
+        1.0 / (LIGHT * (self.capacitance_f_per_m * self.air_capacitance_f_per_m).sqrt())
+    }
+
+    /// Static effective permittivity.
+    pub fn eps_eff(&self) -> f64 {
+        self.capacitance_f_per_m / self.air_capacitance_f_per_m
+    }
+
+    /// Inductance per unit length.
+    pub fn inductance_h_per_m(&self) -> f64 {
+        1.0 / (LIGHT * LIGHT * self.air_capacitance_f_per_m)
+    }
+}
+
+/// One strip.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Line {
+    /// Its only mode.
+    pub mode: Mode,
+    /// Relative error of C that the two grids let expect.
+    pub error_estimate: f64,
+}
+
+/// Two equal strips.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Pair {
+    /// Both lines at the same potential.
+    pub even: Mode,
+    /// Opposite potentials.
+    pub odd: Mode,
+    /// Relative error of the worst of the four capacitances that the two grids let expect.
+    pub error_estimate: f64,
+}
+
+impl Pair {
+    /// (Z0e - Z0o) / (Z0e + Z0o).
+    pub fn coupling(&self) -> f64 {
+        let (even, odd) = (self.even.z0_ohm(), self.odd.z0_ohm());
+        (even - odd) / (even + odd)
+    }
+}
+
+/// N strips.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Solved {
+    /// Maxwell capacitance matrix: charge of line i for 1 V on line j, the others at 0.
+    pub capacitance_f_per_m: Vec<Vec<f64>>,
+    /// The same with all dielectric taken out.
+    pub air_capacitance_f_per_m: Vec<Vec<f64>>,
+    /// mu0 eps0 times the inverse of the matrix without dielectric.
+    pub inductance_h_per_m: Vec<Vec<f64>>,
+    /// Error that the two grids let expect, relative to the largest element of the row.
+    pub error_estimate: f64,
+    /// Panels along each width on the finer grid.
+    pub panels_per_width: usize,
+}
+
+impl Solved {
+    /// For one strip: its mode.
+    pub fn single(&self) -> Option<Mode> {
+        match (self.capacitance_f_per_m.as_slice(), self.air_capacitance_f_per_m.as_slice()) {
+            ([c], [c0]) => Some(Mode { capacitance_f_per_m: *c.first()?, air_capacitance_f_per_m: *c0.first()? }),
+            _ => None,
+        }
+    }
+
+    /// For two equal strips: even and odd mode.
+    pub fn pair(&self) -> Option<Pair> {
+        let modes = |matrix: &[Vec<f64>]| match matrix {
+            [one, other] => match (one.as_slice(), other.as_slice()) {
+                ([a, b], [c, d]) if (a - d).abs() <= 1e-6 * a.abs() => Some((0.5 * (a + d + b + c), 0.5 * (a + d - b - c))),
+                _ => None,
+            },
+            _ => None,
+        };
+        let (even, odd) = modes(&self.capacitance_f_per_m)?;
+        let (even_air, odd_air) = modes(&self.air_capacitance_f_per_m)?;
+        Some(Pair {
+            even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
+            odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
+            error_estimate: self.error_estimate,
+        })
+    }
+}
+
+/// Capacitance and inductance matrices, to the relative accuracy asked for.
+///
+/// # Units
+/// `accuracy`: relative error of the capacitances (1e-4 is 0.01 %); from 1e-5 up.
+/// # Valid range
+/// What [`CrossSection::check`] lets pass.
+/// # Accuracy
+/// `error_estimate` of the result; the table in [`crate::line::section`]. A coat adds its own error (some 1e-3 and less), which is in the estimate but is not held to
+/// the accuracy asked for.
+/// # Errors
+/// The first problem of [`CrossSection::check`]; `section-not-converged` when the finest grid still misses the accuracy.
+pub fn solve(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
+    if let Some(problem) = section.check().into_iter().next() {
+        return Err(problem);
+    }
+    if !(accuracy.is_finite() && accuracy >= 1e-5) {
+        return Err(fault(
+            "accuracy",
+            "",
+            format!("a relative accuracy of {accuracy:e} was asked for; 1e-5 or more can be had"),
+            "ask for 1e-4, say",
+        ));
+    }
+    let mut solved = solve_bare(section, accuracy)?;
+    add_coat(section, &mut solved)?;
+    Ok(solved)
+}
+
+/// Puts on top what the coat adds, and its error.
+pub(super) fn add_coat(section: &CrossSection, solved: &mut Solved) -> Result<(), Problem> {
+    let Some(coat) = section.coat else { return Ok(()) };
+    let coated = super::coat::coat_adds(section, coat)?;
+    for (row, added) in solved.capacitance_f_per_m.iter_mut().zip(&coated.added_f_per_m) {
+        for (value, added) in row.iter_mut().zip(added) {
+            *value += added;
+        }
+    }
+    solved.error_estimate += coated.error_estimate;
+    usable(solved.error_estimate).map(|_| ())
+}
+
+pub(super) fn solve_bare(section: &CrossSection, accuracy: f64) -> Result<Solved, Problem> {
+    let tables = Tables::new(section)?;
+    let shared = tables.borrow();
+    let mut best: Option<Solved> = None;
+    for coarse in GRIDS {
+        let unknowns = section.strips.len() * Grid::new(2 * coarse).panels(section.copper.thickness_m > 0.0);
+        if best.is_some() && unknowns > UNKNOWNS_AT_MOST {
+            break;
+        }
+        let solved = solve_on(section, &shared, Grid::new(coarse))?;
+        let good = solved.error_estimate <= accuracy;
+        best = Some(solved);
+        if good {
+            break;
+        }
+    }
+    match best {
+        Some(solved) if solved.error_estimate <= accuracy => Ok(solved),
+        Some(solved) => Err(not_converged(solved.error_estimate, accuracy)),
+        None => Err(not_converged(f64::INFINITY, accuracy)),
+    }
+}
+
+fn not_converged(estimate: f64, accuracy: f64) -> Problem {
+    fault(
+        "section-not-converged",
+        "",
+        format!("the cross-section is solved to a relative error of {estimate:.1e} only; {accuracy:.1e} is due"),
+        "ask for less accuracy, or look for a gap or thickness that is very small against the widths",
+    )
+}
+
+/// Tables of one cross-section, made for it alone.
+pub(super) struct Tables {
+    kernels: Kernels,
+    heights: Vec<f64>,
+}
+
+/// Tables of one cross-section, its own or a stackup's.
+#[derive(Clone, Copy)]
+pub(super) struct Shared<'a> {
+    kernels: &'a Kernels,
+    heights: &'a [f64],
+}
+
+impl Tables {
+    pub(super) fn new(section: &CrossSection) -> Result<Tables, Problem> {
+        let span = section.span_m();
+        let walls = section.housing.wall_m.map(|wall| span + 2.0 * wall);
+        let thickness = section.copper.thickness_m;
+        let dielectric = Medium::new(&section.layers, section.housing.lid_m, walls, thickness);
+        let air = Medium::air(&section.layers, section.housing.lid_m, walls, thickness);
+        let heights = dielectric.heights_m();
+        let reach = walls.unwrap_or(span);
+        let octaves = |medium: &Medium| Kernel::octaves_for(medium, reach).ok_or_else(|| too_wide(reach));
+        let kernels = Kernels {
+            dielectric: Kernel::build(&dielectric, &heights, octaves(&dielectric)?),
+            air: Kernel::build(&air, &heights, octaves(&air)?),
+        };
+        Ok(Tables { kernels, heights })
+    }
+
+    pub(super) fn borrow(&self) -> Shared<'_> {
+        Shared { kernels: &self.kernels, heights: &self.heights }
+    }
+}
+
+pub(super) fn too_wide(reach_m: f64) -> Problem {
+    fault(
+        "section-aspect",
+        "",
+        format!("a cross-section {} wide needs a larger table than is allowed", mm(reach_m)),
+        "leave out far strips or walls, or merge a very thin top layer with its neighbour",
+    )
+}
+
+fn has_dielectric(section: &CrossSection) -> bool {
+    section.layers.iter().any(|layer| layer.permittivity != 1.0 || layer.in_plane_permittivity != 1.0)
+}
+
+/// Charges of all panels for given potentials of the strips, on one grid.
+pub(super) struct Charges {
+    pub(super) contours: Vec<Contour>,
+    /// One vector over all panels for each set of potentials, in units of eps0.
+    pub(super) dielectric: Vec<Vec<f64>>,
+    pub(super) air: Vec<Vec<f64>>,
+}
+
+/// One unit of potential on each strip in turn.
+pub(super) fn charges(section: &CrossSection, shared: &Shared<'_>, grid: Grid) -> Result<Charges, Problem> {
+    let copper = section.copper;
+    let contours: Vec<Contour> = section
+        .left_edges_m()
+        .iter()
+        .zip(&section.strips)
+        .map(|(left, strip)| Contour::new(*left, strip.width_m, copper.thickness_m, copper.undercut_m, grid))
+        .collect();
+    let size: usize = contours.iter().map(Contour::len).sum();
+    let sides = Interpolation::new(shared.heights, grid.thickness);
+    let (dielectric, air) = (&shared.kernels.dielectric, &shared.kernels.air);
+    let has_dielectric = has_dielectric(section);
+    let mut direct = Square::zero(size);
+    let wants_image = has_dielectric && copper.thickness_m > 0.0 && dielectric.image_weight != 0.0;
+    let mut image = wants_image.then(|| Square::zero(size));
+    let mut remainder = Square::zero(size);
+    let mut remainder_air = Square::zero(size);
+    let wall_planes = section.housing.wall_m.map(|wall| 0.5 * section.span_m() + wall);
+    let mut row = 0;
+    for (i, field) in contours.iter().enumerate() {
+        let mut column = 0;
+        for (j, source) in contours.iter().enumerate() {
+            let block = Block { row, column, mirror: None, same: i == j, sign: 1.0 };
+            add_logarithms(field, source, block, &mut direct, image.as_mut());
+            let mut tables = vec![(block, &dielectric.table, &air.table)];
+            if let Some(plane) = wall_planes {
+                let left = Block { mirror: Some(-plane), same: false, sign: -1.0, ..block };
+                let right = Block { mirror: Some(plane), ..left };
+                add_logarithms(field, source, left, &mut direct, image.as_mut());
+                add_logarithms(field, source, right, &mut direct, image.as_mut());
+                if let (Some(one), Some(other)) = (&dielectric.mirror_table, &air.mirror_table) {
+                    tables.push((left, one, other));
+                }
+            }
+            for (block, table, table_air) in tables {
+                if has_dielectric {
+                    add_remainder(field, source, block, table, shared.heights, &sides, &mut remainder);
+                }
+                add_remainder(field, source, block, table_air, shared.heights, &sides, &mut remainder_air);
+            }
+            column += source.len();
+        }
+        row += field.len();
+    }
+    let potentials = || {
+        let mut first = 0;
+        contours
+            .iter()
+            .map(|contour| {
+                let mut vector = vec![0.0; size];
+                vector[first..first + contour.len()].fill(1.0);
+                first += contour.len();
+                vector
+            })
+            .collect::<Vec<_>>()
+    };
+    let solve_one = |kernel: &Kernel, remainder: Square| {
+        let image = image.as_ref().or((kernel.image_weight != 0.0).then_some(&direct));
+        let mut matrix = combine(&direct, image, kernel, remainder);
+        let mut vectors = potentials();
+        if solve_in_place(&mut matrix, &mut vectors) { Ok(vectors) } else { Err(not_solvable()) }
+    };
+    let air_charges = solve_one(air, remainder_air)?;
+    let dielectric_charges = if has_dielectric { solve_one(dielectric, remainder)? } else { air_charges.clone() };
+    Ok(Charges { contours, dielectric: dielectric_charges, air: air_charges })
+}
+
+fn not_solvable() -> Problem {
+    fault(
+        "section-not-converged",
+        "",
+        "the charges of this cross-section cannot be told apart in double precision".into(),
+        "look for a size that is very small against the others",
+    )
+}
+
+fn total(charges: &Charges, vectors: &[Vec<f64>]) -> Vec<Vec<f64>> {
+    let count = charges.contours.len();
+    let mut matrix = vec![vec![0.0; count]; count];
+    for (j, vector) in vectors.iter().enumerate() {
+        let mut first = 0;
+        for (i, contour) in charges.contours.iter().enumerate() {
+            matrix[i][j] = vector[first..first + contour.len()].iter().sum();
+            first += contour.len();
+        }
+    }
+    matrix
+}
+
+/// Extrapolated, symmetrical matrix in F/m, and the error estimate.
+fn extrapolate(coarse: &[Vec<f64>], fine: &[Vec<f64>], left_over: f64) -> (Vec<Vec<f64>>, f64) {
+    let count = fine.len();
+    let mut out = vec![vec![0.0; count]; count];
+    let mut estimate: f64 = 0.0;
+    for i in 0..count {
+        for j in 0..count {
+            let best = |i: usize, j: usize| fine[i][j] + RICHARDSON * (fine[i][j] - coarse[i][j]);
+            let (one, other) = (best(i, j), best(j, i));
+            out[i][j] = 0.5 * (one + other) * EPSILON_0;
+            let scale = fine[i][i].min(fine[j][j]);
+            let left = left_over * RICHARDSON * (fine[i][j] - coarse[i][j]).abs() + 0.5 * (one - other).abs();
+            estimate = estimate.max(left / scale);
+        }
+    }
+    (out, estimate + FLOOR)
+}
+
+fn solve_on(section: &CrossSection, shared: &Shared<'_>, coarse: Grid) -> Result<Solved, Problem> {
+    let fine = Grid::new(2 * coarse.width);
+    let low = charges(section, shared, coarse)?;
+    let high = charges(section, shared, fine)?;
+    let left_over = if coarse.width < COARSE.width { LEFT_OVER_COARSEST } else { LEFT_OVER };
+    let (capacitance, estimate) = extrapolate(&total(&low, &low.dielectric), &total(&high, &high.dielectric), left_over);
+    let (air_capacitance, air_estimate) = extrapolate(&total(&low, &low.air), &total(&high, &high.air), left_over);
+    let inductance = invert(&air_capacitance).ok_or_else(not_solvable)?;
+    let inductance = inductance.into_iter().map(|row| row.into_iter().map(|value| value / (LIGHT * LIGHT)).collect()).collect();
+    Ok(Solved {
+        capacitance_f_per_m: capacitance,
+        air_capacitance_f_per_m: air_capacitance,
+        inductance_h_per_m: inductance,
+        error_estimate: estimate.max(air_estimate),
+        panels_per_width: fine.width,
+    })
+}
+
+/// Inverse of a small symmetric positive definite matrix.
+fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
+    let size = matrix.len();
+    // In units that keep the pivots near one.
+    let scale = matrix.first()?.first()?;
+    let mut square = Square::zero(size);
+    for (row, values) in matrix.iter().enumerate() {
+        for (target, value) in square.row_mut(row, 0, size).iter_mut().zip(values) {
+            *target = value / scale;
+        }
+    }
+    let mut columns: Vec<Vec<f64>> = (0..size).map(|i| (0..size).map(|j| if i == j { 1.0 / scale } else { 0.0 }).collect()).collect();
+    if !solve_in_place(&mut square, &mut columns) {
+        return None;
+    }
+    Some((0..size).map(|i| (0..size).map(|j| 0.5 * (columns[j][i] + columns[i][j])).collect()).collect())
+}
+
+fn check_sizes(stackup: &Stackup, width_m: f64, gap_m: Option<f64>) -> Result<(), Problem> {
+    if !(width_m.is_finite() && width_m > 0.0) {
+        return Err(fault(
+            "strip-width",
+            "strip.width",
+            format!("the strip is {} wide; more than zero is due", mm(width_m)),
+            "give the width at the foot",
+        ));
+    }
+    if let Some(gap_m) = gap_m
+        && !(gap_m.is_finite() && gap_m > 0.0)
+    {
+        return Err(fault(
+            "strip-overlap",
+            "strip.gap-before",
+            format!("the gap is {}; the strips overlap or touch", mm(gap_m)),
+            "give a gap of more than zero",
+        ));
+    }
+    if stackup.copper.thickness_m > 0.0 && 2.0 * stackup.copper.undercut_m >= width_m {
+        return Err(fault(
+            "undercut-exceeds-strip",
+            "strip.width",
+            format!("an undercut of {} per side leaves no top on a strip of {}", mm(stackup.copper.undercut_m), mm(width_m)),
+            "make the strip wider than twice the undercut",
+        ));
+    }
+    Ok(())
+}
+
+/// Both modes on one grid: C even, C odd, C0 even, C0 odd, in units of eps0.
+fn pair_on(stackup: &Stackup, kernels: &Kernels, sides: &Interpolation, width_m: f64, gap_m: f64, grid: Grid) -> Result<[f64; 4], Problem> {
+    let copper = stackup.copper;
+    let strip = Contour::new(0.5 * gap_m, width_m, copper.thickness_m, copper.undercut_m, grid);
+    let size = strip.len();
+    let own = Block { row: 0, column: 0, mirror: None, same: true, sign: 1.0 };
+    let other = Block { mirror: Some(0.0), same: false, ..own };
+    let thick = copper.thickness_m > 0.0 && kernels.dielectric.image_weight != 0.0;
+    let parts = |block: Block| {
+        let mut direct = Square::zero(size);
+        let mut image = thick.then(|| Square::zero(size));
+        add_logarithms(&strip, &strip, block, &mut direct, image.as_mut());
+        let remainder = |kernel: &Kernel| {
+            let mut out = Square::zero(size);
+            add_remainder(&strip, &strip, block, &kernel.table, &stackup.heights, sides, &mut out);
+            out
+        };
+        let (dielectric, air) = (remainder(&kernels.dielectric), remainder(&kernels.air));
+        let weighted = image.as_ref().unwrap_or(&direct);
+        [combine(&direct, Some(weighted), &kernels.dielectric, dielectric), combine(&direct, None, &kernels.air, air)]
+    };
+    let (own, other) = (parts(own), parts(other));
+    let mut out = [0.0; 4];
+    for (medium, (own, other)) in own.iter().zip(&other).enumerate() {
+        for (mode, sign) in [1.0, -1.0].into_iter().enumerate() {
+            let mut matrix = own.clone();
+            for (value, other) in matrix.values.iter_mut().zip(&other.values) {
+                *value += sign * other;
+            }
+            let mut vectors = [vec![1.0; size]];
+            if !solve_in_place(&mut matrix, &mut vectors) {
+                return Err(not_solvable());
+            }
+            out[2 * medium + mode] = vectors[0].iter().sum();
+        }
+    }
+    Ok(out)
+}
+
+fn richardson(coarse: f64, fine: f64) -> (f64, f64) {
+    let step = RICHARDSON * (fine - coarse);
+    let value = fine + step;
+    (value * EPSILON_0, LEFT_OVER * (step / value).abs() + FLOOR)
+}
+
+fn usable(estimate: f64) -> Result<f64, Problem> {
+    if estimate.is_finite() && estimate < HOPELESS { Ok(estimate) } else { Err(not_converged(estimate, HOPELESS)) }
+}
+
+pub(super) fn solve_pair(stackup: &Stackup, width_m: f64, gap_m: f64) -> Result<Pair, Problem> {
+    check_sizes(stackup, width_m, Some(gap_m))?;
+    let kernels = stackup.kernels(2.0 * width_m + gap_m)?;
+    let [coarse, fine] = stackup.grids();
+    let coarse = pair_on(stackup, kernels, &stackup.coarse, width_m, gap_m, coarse)?;
+    let fine = pair_on(stackup, kernels, &stackup.fine, width_m, gap_m, fine)?;
+    let mut estimate: f64 = 0.0;
+    let mut values = [0.0; 4];
+    for ((value, coarse), fine) in values.iter_mut().zip(coarse).zip(fine) {
+        let (best, left) = richardson(coarse, fine);
+        *value = best;
+        estimate = estimate.max(left);
+    }
+    let [even, odd, even_air, odd_air] = values;
+    Ok(Pair {
+        even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
+        odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
+        error_estimate: usable(estimate)?,
+    })
+}
+
+/// The coarse grid alone: good to about one per cent, for slopes.
+pub(super) fn pair_roughly(stackup: &Stackup, width_m: f64, gap_m: f64) -> Result<Pair, Problem> {
+    check_sizes(stackup, width_m, Some(gap_m))?;
+    let kernels = stackup.kernels(2.0 * width_m + gap_m)?;
+    let [even, odd, even_air, odd_air] = pair_on(stackup, kernels, &stackup.coarse, width_m, gap_m, COARSE)?.map(|value| value * EPSILON_0);
+    Ok(Pair {
+        even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
+        odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
+        error_estimate: 0.02,
+    })
+}
+
+fn single_on(stackup: &Stackup, kernels: &Kernels, sides: &Interpolation, width_m: f64, grid: Grid) -> Result<[f64; 2], Problem> {
+    let copper = stackup.copper;
+    let strip = Contour::new(-0.5 * width_m, width_m, copper.thickness_m, copper.undercut_m, grid);
+    let size = strip.len();
+    let block = Block { row: 0, column: 0, mirror: None, same: true, sign: 1.0 };
+    let mut direct = Square::zero(size);
+    let mut image = (copper.thickness_m > 0.0 && kernels.dielectric.image_weight != 0.0).then(|| Square::zero(size));
+    add_logarithms(&strip, &strip, block, &mut direct, image.as_mut());
+    let image = image.as_ref().unwrap_or(&direct);
+    let mut out = [0.0; 2];
+    for (value, kernel) in out.iter_mut().zip([&kernels.dielectric, &kernels.air]) {
+        let mut remainder = Square::zero(size);
+        add_remainder(&strip, &strip, block, &kernel.table, &stackup.heights, sides, &mut remainder);
+        let mut matrix = combine(&direct, Some(image), kernel, remainder);
+        let mut vectors = [vec![1.0; size]];
+        if !solve_in_place(&mut matrix, &mut vectors) {
+            return Err(not_solvable());
+        }
+        *value = vectors[0].iter().sum();
+    }
+    Ok(out)
+}
+
+pub(super) fn solve_single(stackup: &Stackup, width_m: f64) -> Result<Line, Problem> {
+    check_sizes(stackup, width_m, None)?;
+    let kernels = stackup.kernels(width_m)?;
+    let [coarse, fine] = stackup.grids();
+    let coarse = single_on(stackup, kernels, &stackup.coarse, width_m, coarse)?;
+    let fine = single_on(stackup, kernels, &stackup.fine, width_m, fine)?;
+    let (capacitance, left) = richardson(coarse[0], fine[0]);
+    let (air, left_air) = richardson(coarse[1], fine[1]);
+    Ok(Line { mode: Mode { capacitance_f_per_m: capacitance, air_capacitance_f_per_m: air }, error_estimate: usable(left.max(left_air))? })
+}
+
+/// The coarse grid alone, for one strip.
+pub(super) fn single_roughly(stackup: &Stackup, width_m: f64) -> Result<Mode, Problem> {
+    check_sizes(stackup, width_m, None)?;
+    let kernels = stackup.kernels(width_m)?;
+    let [capacitance, air] = single_on(stackup, kernels, &stackup.coarse, width_m, COARSE)?.map(|value| value * EPSILON_0);
+    Ok(Mode { capacitance_f_per_m: capacitance, air_capacitance_f_per_m: air })
+}
+
+/// On the fixed grids of the fast path: smooth in every size.
+pub(super) fn solve_fixed(section: &CrossSection) -> Result<Solved, Problem> {
+    let tables = Tables::new(section)?;
+    solve_on(section, &tables.borrow(), COARSE)
+}
+
+/// Many strips on a stackup's tables, on the fixed grids of an array.
+pub(super) fn solve_array(stackup: &Stackup, section: &CrossSection) -> Result<Solved, Problem> {
+    if let Some(problem) = section.check().into_iter().next() {
+        return Err(problem);
+    }
+    let shared = Shared { kernels: stackup.kernels(section.span_m())?, heights: &stackup.heights };
+    let solved = solve_on(section, &shared, ARRAY)?;
+    usable(solved.error_estimate)?;
+    Ok(solved)
+}
