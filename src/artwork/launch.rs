@@ -197,7 +197,8 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
             });
             // Where the taper widens towards the feed, the ground pads end a gap before it begins, so that the gap holds to its corner.
             let widens = mouth.width().0 > 2 * half.0;
-            let ground_end = pull_back + Nm::from_m(if widens { ground_length_m.min(pad_length_m - ground_gap_m) } else { ground_length_m });
+            let ground_end =
+                pull_back + Nm::from_m(if widens { ground_length_m.min(pad_length_m - ground_gap_m) } else { ground_length_m });
             let (inner, ground_width) = (half + Nm::from_m(ground_gap_m), Nm::from_m(ground_width_m));
             let outer = inner + ground_width;
             let halfway = Nm((pull_back.0 + pad_end.0) / 2);

@@ -51,7 +51,7 @@ fn density(text: &str) -> Result<f64, String> {
 pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
     let source = match Source::open(&arguments.file) {
         Ok(source) => source,
-        Err(problem) => return refuse(&[problem], None, voice),
+        Err(found) => return refuse(&found, None, voice),
     };
     let (file, warnings) = match field::read_geometry(&source) {
         Ok(read) => read,

@@ -60,9 +60,10 @@ impl Outline {
             let mut slants: Vec<([f64; 2], [f64; 2])> = Vec::new();
             for (i, a) in ring.iter().enumerate() {
                 let b = &ring[(i + 1) % count];
-                for axis in 0..2 {
-                    outline.bounds_m[0][axis] = outline.bounds_m[0][axis].min(a[axis]);
-                    outline.bounds_m[1][axis] = outline.bounds_m[1][axis].max(a[axis]);
+                let [low, high] = &mut outline.bounds_m;
+                for ((low, high), at) in low.iter_mut().zip(high).zip(a) {
+                    *low = low.min(*at);
+                    *high = high.max(*at);
                 }
                 area += 0.5 * (a[0] * b[1] - b[0] * a[1]);
                 length += (b[0] - a[0]).hypot(b[1] - a[1]);

@@ -3,7 +3,7 @@
 use num_complex::Complex64;
 
 /// Permittivity of free space, F/m (2018 CODATA).
-pub const EPS0: f64 = 8.854_187_8128e-12;
+pub const EPS0: f64 = 8.854_187_812_8e-12;
 /// Permeability of free space, H/m (2018 CODATA).
 pub const MU0: f64 = 1.256_637_062_12e-6;
 

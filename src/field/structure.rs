@@ -211,8 +211,12 @@ impl Solver {
                 for (position, &inner) in group.inner.iter().enumerate() {
                     // The line the current crosses, its width, and the rooftop at the next line.
                     let (line, width, next) = match axis {
-                        Axis::X => (inner, patch.y_m[group.outer + 1] - patch.y_m[group.outer], family.number(group.patch, inner + 1, group.outer)),
-                        Axis::Y => (group.outer, patch.x_m[inner + 1] - patch.x_m[inner], family.number(group.patch, inner, group.outer + 1)),
+                        Axis::X => {
+                            (inner, patch.y_m[group.outer + 1] - patch.y_m[group.outer], family.number(group.patch, inner + 1, group.outer))
+                        }
+                        Axis::Y => {
+                            (group.outer, patch.x_m[inner + 1] - patch.x_m[inner], family.number(group.patch, inner, group.outer + 1))
+                        }
                     };
                     let at = offset + group.start + position;
                     let mut add = |a: usize, b: usize, value: f64| {

@@ -38,6 +38,12 @@ fn main() {
         exact.iter().zip(&response.s[i]).map(|(a, b)| (a - b).norm()).fold(0.0, f64::max)
     });
     let (error, point_us) = (error.fold(0.0, f64::max), best * 1e6 / POINTS as f64);
-    println!("sweep, degree 5, loss and dispersion, {POINTS} points: {point_us:.2} us a point (best of {RUNS}), limit {LIMIT_US} us, ratio {:.2}", point_us / LIMIT_US);
-    println!("sweep, interpolation of the line constants: |S| error {error:.1e}, limit {LIMIT_ERROR:.0e}, ratio {:.3}", error / LIMIT_ERROR);
+    println!(
+        "sweep, degree 5, loss and dispersion, {POINTS} points: {point_us:.2} us a point (best of {RUNS}), limit {LIMIT_US} us, ratio {:.2}",
+        point_us / LIMIT_US
+    );
+    println!(
+        "sweep, interpolation of the line constants: |S| error {error:.1e}, limit {LIMIT_ERROR:.0e}, ratio {:.3}",
+        error / LIMIT_ERROR
+    );
 }

@@ -2,6 +2,7 @@
 #![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
 
 mod board;
+mod command;
 mod faults;
 mod line_constants;
 mod networks;

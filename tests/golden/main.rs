@@ -42,7 +42,10 @@ fn assert_same_files(made: &Path, kept: &Path) {
     let (made, kept) = (files(made), files(kept));
     assert_eq!(made.keys().collect::<Vec<_>>(), kept.keys().collect::<Vec<_>>());
     for (name, bytes) in &kept {
-        assert!(made[name] == *bytes, "{name} differs; if that was meant: BLESS=1 cargo test --release --test golden, read the diff, say why");
+        assert!(
+            made[name] == *bytes,
+            "{name} differs; if that was meant: BLESS=1 cargo test --release --test golden, read the diff, say why"
+        );
     }
 }
 
