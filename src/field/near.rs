@@ -285,8 +285,15 @@ mod tests {
             for profile in [Profile::Pulse, Profile::Triangle] {
                 let table = Overlaps::new(one, other, profile, length, &cut);
                 let count = |lines: &[f64]| if profile == Profile::Pulse { lines.len() - 1 } else { lines.len() };
-                for i in 0..count(one) {
-                    for j in 0..count(other) {
+                // Half a triangle stands at a wall only.
+                let stands = |lines: &[f64], i: usize| {
+                    profile == Profile::Pulse
+                        || (i > 0 && i + 1 < lines.len())
+                        || lines[i].abs() < 1e-12
+                        || (lines[i] - length).abs() < 1e-12
+                };
+                for i in (0..count(one)).filter(|&i| stands(one, i)) {
+                    for j in (0..count(other)).filter(|&j| stands(other, j)) {
                         let (found, from) = table.of(i, j);
                         let expected = series(profile, one, i, other, j);
                         let found = if from == 0 { found[0] } else { 0.0 };
