@@ -68,7 +68,13 @@ pub struct Made {
 /// Why no set exists: an unreachable coupling, no degree that meets the requirements, a passband refinement cannot reach.
 pub fn dimension(order: &Order) -> Result<Chosen, Vec<Problem>> {
     let family = family::of(order).map_err(|problem| vec![problem])?;
-    refine::synthesize(family, order)
+    refine::synthesize(family, order).map_err(|mut problems| {
+        // Where refinement fails, the rules on the first guess often say why: strips wider than long, surface modes, transverse resonance.
+        let guess = order.filter.degree.and_then(|degree| family.first_guess(order, degree).ok());
+        let drawn = guess.and_then(|(guess, _)| draw(&guess).ok());
+        problems.extend(drawn.into_iter().flat_map(|made| made.findings).filter(Problem::is_error));
+        problems
+    })
 }
 
 /// The whole way: order -> dimensions -> layout -> board -> response -> checks.
@@ -99,6 +105,7 @@ pub fn draw(dimensions: &Dimensions) -> Result<Made, Vec<Problem>> {
     let family = family::of(order).map_err(|problem| vec![problem])?;
     let layout = family.layout(dimensions)?;
     let (board, mut findings) = artwork::board(order, &layout)?;
+    let layout = board.run_on(&layout);
     let (response, warnings) = network::predict(order, &layout)?;
     findings.extend(warnings);
     let figures = Figures::of(order, &response);

@@ -42,9 +42,6 @@ use crate::order::Mask;
 use crate::order::Order;
 use crate::order::TextOn;
 
-/// A board may be this much longer than circuit and launches, at each port, before the feeds' run is worth a word.
-const MAX_FEED_RUN: Nm = Nm(250_000);
-
 /// The circuit in the drawing's frame, level and with square feed ends, before it is seated on the board.
 pub(super) struct Placed {
     pub circuit: Region,
@@ -93,8 +90,6 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
         })
         .collect();
 
-    problems.extend(feed_lengthened(order, &placed, edges));
-
     let circuit = placed.circuit.mapped(|p| seat.point(p));
     let joined: Vec<Ring> = placed.bends.iter().map(|ring| seat.ring(ring)).chain(launches.iter().flat_map(|l| l.signal.clone())).collect();
     let signal = circuit.union(&Region::union_of(&joined));
@@ -127,7 +122,7 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let plated: Vec<Point> = holes.iter().filter(|hole| hole.is_plated()).map(|hole| hole.at).collect();
     let touch = [0, 1].map(|i| middle(&launches[i].touch));
     let mut strips = nets::named(&signal, &top_ground, &plated, touch);
-    let ports = ports(&placed, &launches, &seat, &strips);
+    let ports = ports(&placed, feed_runs(order, &placed, edges), &launches, &seat, &strips);
     let lands: Vec<_> = launches
         .iter()
         .flat_map(|launch| launch.lands.iter().cloned())
@@ -233,24 +228,11 @@ fn level_deg(nodes: [Node; 2]) -> f64 {
     if dy == 0.0 { 0.0 } else { -dy.atan2(dx).to_degrees() }
 }
 
-/// A warning when the board is so long that the feeds must run on to reach their launches.
-fn feed_lengthened(order: &Order, placed: &Placed, edges: [Nm; 2]) -> Option<Problem> {
-    let runs = [0, 1].map(|i| {
+/// How far each feed runs on beyond its layout to reach the launch at the board's edge.
+fn feed_runs(order: &Order, placed: &Placed, edges: [Nm; 2]) -> [Nm; 2] {
+    [0, 1].map(|i| {
         let mouth = &placed.mouths[i];
         (mouth.low.x - edges[i]).abs() - launch::extent(&placed.shapes[i], &order.shop, order.board.outline, mouth.width()).length
-    });
-    let longest = runs[0].max(runs[1]);
-    (longest > MAX_FEED_RUN).then(|| {
-        Problem::warning(
-            "feed-lengthened",
-            Place::Key("board.size".to_string()),
-            format!(
-                "the feeds run on by {:.2} mm and {:.2} mm from their reference planes to reach the launches at the board's edges; the predicted response leaves this out",
-                runs[0].mm(),
-                runs[1].mm()
-            ),
-            "board.margin in place of board.size makes the board as long as the circuit, or raise the feed lengths in the dimension set",
-        )
     })
 }
 
@@ -332,7 +314,7 @@ fn launch_gaps(layout: &Layout, launches: &[Launched]) -> Vec<Callout> {
 }
 
 /// The ports on the board, with the net their copper has.
-fn ports(placed: &Placed, launches: &[Launched], seat: &Seat, strips: &[Shape]) -> Vec<Port> {
+fn ports(placed: &Placed, runs: [Nm; 2], launches: &[Launched], seat: &Seat, strips: &[Shape]) -> Vec<Port> {
     launches
         .iter()
         .enumerate()
@@ -343,7 +325,7 @@ fn ports(placed: &Placed, launches: &[Launched], seat: &Seat, strips: &[Shape]) 
             let edge = if left_is_low { Node { left: low, right: high } } else { Node { left: high, right: low } };
             let at = middle(&launch.touch);
             let net = strips.iter().find(|shape| Region::from_shape(shape).contains(at)).map_or(String::new(), |shape| shape.net.clone());
-            Port { number: i + 1, edge, plane: seat.node(plane), net }
+            Port { number: i + 1, edge, plane: seat.node(plane), run: runs[i], net }
         })
         .collect()
 }

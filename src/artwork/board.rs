@@ -1,9 +1,12 @@
 //! The board: shapes per layer with role and net, holes, ports, call-outs, outline.
 
 use std::collections::BTreeMap;
+use std::fmt;
 
 use crate::base::{Nm, Point};
+use crate::layout::Layout;
 use crate::layout::Node;
+use crate::layout::Part;
 
 /// The side of the board a layer lies on.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
@@ -23,6 +26,17 @@ pub enum Layer {
     Mask(Face),
     /// Legend print.
     Legend(Face),
+}
+
+impl fmt::Display for Layer {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        let side = |face: &Face| if *face == Face::Top { "top" } else { "bottom" };
+        match self {
+            Layer::Copper(number) => write!(f, "copper {number}"),
+            Layer::Mask(face) => write!(f, "{} mask", side(face)),
+            Layer::Legend(face) => write!(f, "{} legend", side(face)),
+        }
+    }
 }
 
 /// What a shape is for.
@@ -106,6 +120,8 @@ pub struct Port {
     pub edge: Node,
     /// Where launch meets feed.
     pub plane: Node,
+    /// Feed between reference plane and launch beyond the layout's: what the board's length adds.
+    pub run: Nm,
     /// Net of the signal copper.
     pub net: String,
 }
@@ -144,4 +160,17 @@ pub struct Board {
     pub turn_deg: f64,
     /// Nets the family expects its circuit to form.
     pub expected_nets: usize,
+}
+
+impl Board {
+    /// The layout with its feeds run on to the launches as drawn on this board, so that what is predicted is what is drawn.
+    pub fn run_on(&self, layout: &Layout) -> Layout {
+        let mut layout = layout.clone();
+        for placed in &mut layout.parts {
+            if let Part::Launch { port, run, .. } = &mut placed.part {
+                *run = self.ports.iter().find(|p| p.number == *port).map_or(*run, |p| p.run);
+            }
+        }
+        layout
+    }
 }

@@ -29,7 +29,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
                     RULE.code,
                     Place::Board(hole.at),
                     format!(
-                        "{} on {layer:?} is {:.3} mm from the wall of the {:.3} mm hole, {:.3} mm are due",
+                        "{} on {layer} is {:.3} mm from the wall of the {:.3} mm hole, {:.3} mm are due",
                         shape.net,
                         closest.distance_m * 1e3,
                         hole.diameter.mm(),

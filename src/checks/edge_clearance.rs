@@ -47,7 +47,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
                     RULE.code,
                     Place::Board(closest.from),
                     format!(
-                        "{what} on {layer:?} is {:.3} mm from the edge, the shop asks for {:.3} mm",
+                        "{what} on {layer} is {:.3} mm from the edge, the shop asks for {:.3} mm",
                         closest.distance_m * 1e3,
                         limit_m * 1e3
                     ),

@@ -27,7 +27,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
                     found.push(Problem::error(
                         RULE.code,
                         Place::Board(at),
-                        format!("a polygon of {:?} on {layer:?} has {fault}", shape.role),
+                        format!("a polygon of {:?} on {layer} has {fault}", shape.role),
                         "this is a fault of the program; please report the order",
                     ));
                 }

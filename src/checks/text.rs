@@ -33,7 +33,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
                 RULE.code,
                 Place::Board(thin.middle()),
                 format!(
-                    "a stroke of {:.3} mm on {layer:?}, the shop's thinnest is {:.3} mm",
+                    "a stroke of {:.3} mm on {layer}, the shop's thinnest is {:.3} mm",
                     thin.distance_m * 1e3,
                     shop.text_stroke_m * 1e3
                 ),
@@ -48,7 +48,7 @@ fn run(subject: &Subject) -> Vec<Problem> {
             found.push(Problem::error(
                 RULE.code,
                 Place::Board(first.outer.first().copied().unwrap_or_default()),
-                format!("text {:.3} mm high on {layer:?}, the shop's least is {:.3} mm", tallest_m * 1e3, shop.text_height_m * 1e3),
+                format!("text {:.3} mm high on {layer}, the shop's least is {:.3} mm", tallest_m * 1e3, shop.text_height_m * 1e3),
                 "board.text = \"none\", or a larger board",
             ));
         }

@@ -4,11 +4,10 @@ use std::path::PathBuf;
 
 use super::Ending;
 use super::Voice;
+use super::fresh_file;
 use super::read::Ordered;
 use super::results;
 use super::table;
-use crate::base::Place;
-use crate::base::Problem;
 use crate::dimensions;
 use crate::refine::Chosen;
 
@@ -34,15 +33,8 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
     let text = dimensions::write(&chosen.refined.dimensions);
     let written = match &arguments.file {
         Some(path) => {
-            let written = std::fs::OpenOptions::new()
-                .write(true)
-                .create_new(true)
-                .open(path)
-                .and_then(|mut file| std::io::Write::write_all(&mut file, text.as_bytes()));
-            if let Err(error) = written {
-                let help = "choose another file name or folder; nothing is overwritten";
-                return ordered
-                    .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+            if let Err(problem) = fresh_file::write(path, text.as_bytes()) {
+                return ordered.refuse(&[problem], voice);
             }
             voice.say(&format!("wrote {}", path.display()));
             Ending::Done
@@ -60,8 +52,10 @@ pub fn say_reached(chosen: &Chosen, voice: Voice) {
         voice.say(reason);
     }
     let line = |miss: &crate::refine::Miss| {
-        let [low, high] = miss.edges_hz.map(|e| e / 1e6);
-        format!("edges {low:+.2} and {high:+.2} MHz, return loss {:+.2} dB from the prototype's", miss.return_loss_db)
+        // Rounded first: nobody wants to read -0.00.
+        let shown = |v: f64| (v * 100.0).round() / 100.0 + 0.0;
+        let [low, high] = miss.edges_hz.map(|e| shown(e / 1e6));
+        format!("edges {low:+.2} and {high:+.2} MHz, return loss {:+.2} dB from the prototype's", shown(miss.return_loss_db))
     };
     voice.say(&format!("refined: lossless {}", line(&chosen.refined.before_snapping)));
     voice.say(&format!("on the shop grid: lossless {}", line(&chosen.refined.after_snapping)));

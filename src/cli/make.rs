@@ -100,16 +100,26 @@ fn finish(made: &Made, target: &Target, source: &Source, voice: Voice) -> Ending
         Err(problem) => return super::read::refuse(&[problem], None, voice),
     };
     let order = &made.dimensions.order;
+    let models = match crate::network::models(order, &made.layout) {
+        Ok(models) => models,
+        Err(found) => return super::read::refuse(&found, Some(source), voice),
+    };
     let written = if voice.json {
         let mut value = table::figures_json(order, &made.figures, None);
         value["package"] = folder.display().to_string().into();
+        value["line_models"] = table::models_json(&models);
         value["degree"] = made.dimensions.degree.into();
         value["board_house_files_withheld"] = withhold.into();
         value["findings"] = made.findings.iter().map(|p| problems::to_json(p, Some(source))).collect();
         table::print_json(&value)
     } else {
         let note = if withhold { "  (files for the board house withheld: a design rule is broken)" } else { "" };
-        results(&format!("{}\n  package: {}{note}\n", table::figures_text(order, &made.figures), folder.display()))
+        results(&format!(
+            "{}{}\n  package: {}{note}\n",
+            table::figures_text(order, &made.figures),
+            table::models_text(&models),
+            folder.display()
+        ))
     };
     let met = made.figures.all_met() && !rules_broken;
     if written == Ending::Done && !met { Ending::Unmet } else { written }

@@ -2,6 +2,7 @@
 
 mod check;
 mod dimension;
+mod fresh_file;
 mod line;
 mod list;
 mod make;
@@ -9,6 +10,8 @@ mod new;
 mod predict;
 pub mod problems;
 mod read;
+mod section;
+mod section_file;
 mod solve;
 mod table;
 

@@ -1,12 +1,12 @@
 //! `stripwright new`: a commented starter order.
 
-use std::fs::OpenOptions;
-use std::io::Write;
 use std::path::PathBuf;
 
 use clap::Args;
 
-use super::{Ending, Voice, problems, results};
+use serde_json::json;
+
+use super::{Ending, Voice, fresh_file, problems, results, table};
 use crate::base::Place;
 use crate::base::Problem;
 use crate::family::FAMILIES;
@@ -35,29 +35,15 @@ pub fn run(arguments: &New, voice: Voice) -> Ending {
         return refuse("family-unknown", format!("there is no family \"{}\"; known: {}", arguments.family, known.join(", ")), help);
     };
     let Some(path) = &arguments.file else {
-        return results(family.starter());
+        return if voice.json {
+            table::print_json(&json!({ "family": family.name(), "order": family.starter() }))
+        } else {
+            results(family.starter())
+        };
     };
-    // Creating only what is not there yet leaves no moment between asking and writing.
-    let mut file = match OpenOptions::new().write(true).create_new(true).open(path) {
-        Ok(file) => file,
-        Err(error) if error.kind() == std::io::ErrorKind::AlreadyExists => {
-            return refuse(
-                "file-exists",
-                format!("{} is there already and was left alone", path.display()),
-                "name another file, or remove it".to_string(),
-            );
-        }
-        Err(error) => {
-            let help = "name a file in a folder that exists and can be written to".to_string();
-            return refuse("file-unwritable", format!("{} cannot be written: {error}", path.display()), help);
-        }
-    };
-    if let Err(error) = file.write_all(family.starter().as_bytes()) {
-        // Half an order is worse than none; this file is ours, it was not there before.
-        drop(file);
-        let _ = std::fs::remove_file(path);
-        let help = "make room on the disk".to_string();
-        return refuse("file-unwritable", format!("{} cannot be written: {error}", path.display()), help);
+    if let Err(problem) = fresh_file::write(path, family.starter().as_bytes()) {
+        problems::print(&[problem], None, voice);
+        return Ending::NothingMade;
     }
     if voice.json {
         results(&(serde_json::json!({ "family": arguments.family, "file": path.display().to_string() }).to_string() + "\n"))

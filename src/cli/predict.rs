@@ -1,10 +1,10 @@
 //! `predict`: the response of an order or a dimension set.
 
-use std::io::Write as _;
 use std::path::PathBuf;
 
 use super::Ending;
 use super::Voice;
+use super::fresh_file;
 use super::problems;
 use super::read::Drawing;
 use super::results;
@@ -14,7 +14,6 @@ use crate::base::Place;
 use crate::base::Problem;
 use crate::base::parse_quantity;
 use crate::network;
-use crate::network::Figures;
 
 /// Predicts the response: a table of figures with the verdict of each requirement, and a Touchstone file if asked
 #[derive(clap::Args, Debug)]
@@ -27,9 +26,9 @@ pub struct Arguments {
     /// Last frequency
     #[arg(long)]
     to: Option<String>,
-    /// Number of frequencies, evenly spaced
-    #[arg(long, default_value_t = 1001)]
-    points: usize,
+    /// Number of frequencies, evenly spaced from --from to --to; 1001 without
+    #[arg(long)]
+    points: Option<usize>,
     /// Writes the S-parameters as Touchstone 1.1 (refuses to overwrite)
     #[arg(long, value_name = "FILE")]
     touchstone: Option<PathBuf>,
@@ -42,39 +41,44 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         Err(ending) => return ending,
     };
     let order = &drawing.dimensions.order;
-    let predicted = drawing.layout().and_then(|layout| {
-        let (full, warnings) = network::predict(order, &layout)?;
-        problems::print(&warnings, Some(&drawing.source), voice);
-        let figures = Figures::of(order, &full);
-        let shown = match frequencies(arguments)? {
-            Some(f_hz) => network::predict_at(order, &layout, &f_hz)?.0,
-            None => full,
+    let predicted = frequencies(arguments).and_then(|f_hz| {
+        let made = crate::draw(&drawing.dimensions)?;
+        let models = network::models(order, &made.layout)?;
+        let shown = match f_hz {
+            Some(f_hz) => network::predict_at(order, &made.layout, &f_hz)?,
+            None => (made.response, made.findings),
         };
-        Ok((figures, shown))
+        Ok((made.figures, models, shown))
     });
-    let (figures, shown) = match predicted {
+    let (figures, models, (shown, findings)) = match predicted {
         Ok(predicted) => predicted,
         Err(problems) => return drawing.refuse(&problems, voice),
     };
+    let warnings: Vec<Problem> = findings.into_iter().filter(|p| !p.is_error()).collect();
+    problems::print(&warnings, Some(&drawing.source), voice);
     if let Some(path) = &arguments.touchstone {
-        let written = std::fs::OpenOptions::new().write(true).create_new(true).open(path).and_then(|mut file| {
-            network::touchstone::write(&shown, &network::touchstone::comments(order), &mut file)?;
-            file.flush()
-        });
-        if let Err(error) = written {
-            let help = "choose another file name or folder; nothing is overwritten";
-            return drawing
-                .refuse(&[Problem::error("file-not-written", Place::Whole, format!("{}: {error}", path.display()), help)], voice);
+        let mut bytes = Vec::new();
+        let written = network::touchstone::write(&shown, &network::touchstone::comments(order), &mut bytes);
+        if let Err(problem) = written.map_err(|error| unwritten(&error)).and_then(|()| fresh_file::write(path, &bytes)) {
+            return drawing.refuse(&[problem], voice);
         }
     }
     let written = if voice.json {
-        table::print_json(&table::figures_json(order, &figures, Some(&shown)))
+        let mut json = table::figures_json(order, &figures, Some(&shown));
+        if let Some(map) = json.as_object_mut() {
+            map.insert("line_models".into(), table::models_json(&models));
+        }
+        table::print_json(&json)
     } else if arguments.from.is_some() {
-        results(&(table::figures_text(order, &figures) + &table::response_text(&shown)))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models) + &table::response_text(&shown)))
     } else {
-        results(&table::figures_text(order, &figures))
+        results(&(table::figures_text(order, &figures) + &table::models_text(&models)))
     };
     if written == Ending::Done && !figures.all_met() { Ending::Unmet } else { written }
+}
+
+fn unwritten(error: &std::io::Error) -> Problem {
+    Problem::error("touchstone-unwritten", Place::Whole, format!("the response cannot be written: {error}"), "ask for fewer points")
 }
 
 /// The frequencies asked for; `None` when neither end is given.
@@ -87,15 +91,22 @@ fn frequencies(arguments: &Arguments) -> Result<Option<Vec<f64>>, Vec<Problem>> 
         None => Err(problem(format!("--{name} is missing"), "give both --from and --to")),
     };
     if arguments.from.is_none() && arguments.to.is_none() {
-        return Ok(None);
+        return match arguments.points {
+            Some(_) => Err(problem("--points without a sweep".into(), "give --from and --to as well")),
+            None => Ok(None),
+        };
     }
+    let points = arguments.points.unwrap_or(1001);
     let (from_hz, to_hz) = (end(&arguments.from, "from")?, end(&arguments.to, "to")?);
     if from_hz <= 0.0 || to_hz <= from_hz {
-        return Err(problem(format!("the sweep runs from {from_hz} Hz to {to_hz} Hz"), "give --from above zero and below --to"));
+        return Err(problem(
+            format!("the sweep runs from {} GHz to {} GHz", from_hz / 1e9, to_hz / 1e9),
+            "give --from above zero and below --to",
+        ));
     }
-    if !(2..=MOST).contains(&arguments.points) {
-        return Err(problem(format!("--points is {}", arguments.points), "give 2 to 1000000 points"));
+    if !(2..=MOST).contains(&points) {
+        return Err(problem(format!("--points is {points}"), "give 2 to 1000000 points"));
     }
-    let step = (to_hz - from_hz) / (arguments.points - 1) as f64;
-    Ok(Some((0..arguments.points).map(|i| from_hz + step * i as f64).collect()))
+    let step = (to_hz - from_hz) / (points - 1) as f64;
+    Ok(Some((0..points).map(|i| from_hz + step * i as f64).collect()))
 }

@@ -5,11 +5,11 @@ use std::path::Path;
 use super::Ending;
 use super::Voice;
 use super::problems;
+use crate::base::Place;
 use crate::base::Problem;
 use crate::dimensions;
 use crate::dimensions::Dimensions;
 use crate::family;
-use crate::layout::Layout;
 use crate::order;
 use crate::order::Order;
 use crate::order::Source;
@@ -26,6 +26,14 @@ impl Ordered {
     /// Opens and reads an order; problems are printed.
     pub fn open(path: &Path, voice: Voice) -> Result<Ordered, Ending> {
         let source = open_source(path, voice)?;
+        if dimensions::is_dimension_file(&source) {
+            let message = format!("{} is a dimension set, an order is wanted here", path.display());
+            return Err(refuse(
+                &[Problem::error("file-of-another-kind", Place::Whole, message, "`stripwright draw` makes the package of a dimension set")],
+                None,
+                voice,
+            ));
+        }
         let (order, warnings) = order::read(&source, &family::keys()).map_err(|found| refuse(&found, Some(&source), voice))?;
         problems::print(&warnings, Some(&source), voice);
         Ok(Ordered { source, order })
@@ -59,7 +67,16 @@ impl Drawing {
 
     /// Opens a dimension set; problems are printed.
     pub fn open_set(path: &Path, voice: Voice) -> Result<Drawing, Ending> {
-        Drawing::read(open_source(path, voice)?, voice)
+        let source = open_source(path, voice)?;
+        if !dimensions::is_dimension_file(&source) {
+            let message = format!("{} is no dimension set: it has no [[dimension]]", path.display());
+            return Err(refuse(
+                &[Problem::error("file-of-another-kind", Place::Whole, message, "`stripwright make` makes the package of an order")],
+                None,
+                voice,
+            ));
+        }
+        Drawing::read(source, voice)
     }
 
     fn read(source: Source, voice: Voice) -> Result<Drawing, Ending> {
@@ -68,11 +85,6 @@ impl Drawing {
             dimensions::read(&source, &family::keys(), &names).map_err(|found| refuse(&found, Some(&source), voice))?;
         problems::print(&warnings, Some(&source), voice);
         Ok(Drawing { source, dimensions })
-    }
-
-    /// The set's layout.
-    pub fn layout(&self) -> Result<Layout, Vec<Problem>> {
-        family::of(&self.dimensions.order).map_err(|problem| vec![problem])?.layout(&self.dimensions)
     }
 
     /// Prints problems against the text; nothing was made.

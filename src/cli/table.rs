@@ -7,6 +7,7 @@ use serde_json::json;
 
 use super::Ending;
 use super::results;
+use crate::line::Models;
 use crate::network::Figures;
 use crate::network::Response;
 use crate::network::Verdict;
@@ -48,7 +49,7 @@ pub fn figures_text(order: &Order, figures: &Figures) -> String {
         ("worst loss in the band", format!("{:.2} dB", figures.worst_loss_db)),
         ("least return loss in the band", format!("{:.2} dB", figures.return_loss_db)),
         ("3 dB edges", band(figures.edges_3db_hz)),
-        ("equal-ripple edges", figures.ripple_edges_hz.map_or_else(|| "-".into(), |e| band(Some(e)))),
+        ("return loss of the prototype", figures.ripple_edges_hz.map_or_else(|| "-".into(), |e| band(Some(e)))),
         ("group delay at the centre", format!("{:.3} ns", figures.group_delay_s * 1e9)),
         ("nearest spurious passband", figures.spurious_hz.map_or_else(|| "none within the sweep".into(), ghz)),
     ];
@@ -56,6 +57,23 @@ pub fn figures_text(order: &Order, figures: &Figures) -> String {
         let _ = writeln!(text, "  {name:<30}{value}");
     }
     text
+}
+
+/// Where the line constants come from, as text.
+pub fn models_text(models: &Models) -> String {
+    format!("  line constants                {}\n", models.describe())
+}
+
+/// The same as JSON.
+pub fn models_json(models: &Models) -> Value {
+    json!({
+        "solved": models.solved,
+        "closed_form": models.closed_form,
+        "error_estimate": models.error_estimate,
+        "closed_form_impedance_difference": models.impedance_difference,
+        "closed_form_permittivity_difference": models.permittivity_difference,
+        "closed_form_coupling_difference": models.coupling_difference,
+    })
 }
 
 fn margin(verdict: &Verdict) -> String {
@@ -78,13 +96,7 @@ pub fn response_text(response: &Response) -> String {
 
 /// The figures as JSON, with the response when given.
 pub fn figures_json(order: &Order, figures: &Figures, response: Option<&Response>) -> Value {
-    let verdicts: Vec<Value> = figures
-        .verdicts
-        .iter()
-        .map(|v| {
-            json!({ "requirement": v.requirement + 1, "band_hz": v.band_hz, "limit": v.describe(), "found": v.found, "at_hz": v.at_hz, "margin": v.margin, "met": v.is_met() })
-        })
-        .collect();
+    let verdicts: Vec<Value> = figures.verdicts.iter().map(verdict_json).collect();
     let mut value = json!({
         "name": order.name,
         "revision": order.revision,
@@ -106,4 +118,20 @@ pub fn figures_json(order: &Order, figures: &Figures, response: Option<&Response
             json!({ "z0_ohm": response.z0_ohm, "f_hz": response.f_hz, "s11": pairs(0), "s21": pairs(1), "s12": pairs(2), "s22": pairs(3) });
     }
     value
+}
+
+/// A verdict for programs: what was asked, what was found, where.
+fn verdict_json(verdict: &Verdict) -> Value {
+    let (quantity, bound, limit, unit) = match verdict.limit {
+        Limit::InsertionLossAtMost(db) => ("insertion-loss", "at-most", db, "dB"),
+        Limit::ReturnLossAtLeast(db) => ("return-loss", "at-least", db, "dB"),
+        Limit::RejectionAtLeast { db, below_center: false } => ("rejection", "at-least", db, "dB"),
+        Limit::RejectionAtLeast { db, below_center: true } => ("rejection-below-center", "at-least", db, "dB"),
+        Limit::RippleAtMost(db) => ("ripple", "at-most", db, "dB"),
+        Limit::GroupDelayVariationAtMost(seconds) => ("group-delay-variation", "at-most", seconds, "s"),
+    };
+    json!({
+        "requirement": verdict.requirement + 1, "band_hz": verdict.band_hz, "quantity": quantity, "bound": bound, "limit": limit, "unit": unit,
+        "found": verdict.found, "at_hz": verdict.at_hz, "margin": verdict.margin, "met": verdict.is_met(),
+    })
 }

@@ -101,7 +101,9 @@ pub fn read(source: &Source, families: &[FamilyKeys], expected: &dyn Fn(&Order, 
     let dimensions = match (order, degree) {
         (Some(order), Some(degree)) if there => {
             let names = expected(&order, degree);
-            let list = sort(&context, &names, read, degree, order.shop.grid_m);
+            // Where one could not be read, that is reported; it is not missing as well.
+            let all_read = read.len() == root.tables("dimension").len();
+            let list = sort(&context, &names, read, degree, order.shop.grid_m, all_read);
             Some(Dimensions { order, degree, list })
         }
         _ => None,
@@ -160,7 +162,14 @@ fn one(t: &Table<'_>) -> Option<Dimension> {
 }
 
 /// Puts the dimensions in drawing order and on the grid; reports what is missing, doubled or unknown.
-fn sort(context: &Context, names: &[String], read: Vec<(Dimension, Place, Place)>, degree: usize, grid_m: f64) -> Vec<Dimension> {
+fn sort(
+    context: &Context,
+    names: &[String],
+    read: Vec<(Dimension, Place, Place)>,
+    degree: usize,
+    grid_m: f64,
+    all_read: bool,
+) -> Vec<Dimension> {
     let mut slots: Vec<Option<Dimension>> = names.iter().map(|_| None).collect();
     for (mut dimension, at_name, at_value) in read {
         let Some(slot) = names.iter().position(|n| *n == dimension.name).and_then(|i| slots.get_mut(i)) else {
@@ -198,7 +207,7 @@ fn sort(context: &Context, names: &[String], read: Vec<(Dimension, Place, Place)
         *slot = Some(dimension);
     }
     for (name, slot) in names.iter().zip(&slots) {
-        if slot.is_none() {
+        if slot.is_none() && all_read {
             context.report(Problem::error(
                 "dimension-missing",
                 Place::Key("dimension".to_string()),

@@ -93,7 +93,7 @@ impl Structure for EdgeCoupled {
         let mut x = Nm::ZERO;
         let mut low = first_feed.width - first[0];
         let start = build.mouth(x, Nm::ZERO, first_feed.width, false);
-        build.place(Part::Launch { port: 1, shape: first_feed.launch }, vec![start], feeds::launch_names(&set.order, 1));
+        build.place(Part::Launch { port: 1, shape: first_feed.launch, run: Nm::ZERO }, vec![start], feeds::launch_names(&set.order, 1));
         x = x + first_feed.length;
         let mut arriving = build.mouth(x, Nm::ZERO, first_feed.width, true);
         build.place(
@@ -129,7 +129,7 @@ impl Structure for EdgeCoupled {
             vec![near, end],
             feeds::line_names(2),
         );
-        build.place(Part::Launch { port: 2, shape: last_feed.launch }, vec![end], feeds::launch_names(&set.order, 2));
+        build.place(Part::Launch { port: 2, shape: last_feed.launch, run: Nm::ZERO }, vec![end], feeds::launch_names(&set.order, 2));
 
         let mut layout =
             Layout { nodes: build.nodes, parts: build.parts, ports: vec![start, end], turn_deg: 0.0, expected_nets: set.degree + 2 };

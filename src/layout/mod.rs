@@ -49,6 +49,8 @@ pub enum Part {
         port: usize,
         /// Its copper.
         shape: LaunchShape,
+        /// Feed between the plane and the launch that a board longer than the circuit adds; zero until the board is known.
+        run: Nm,
     },
 }
 
@@ -82,7 +84,7 @@ impl Layout {
     /// The launch of a port (1 or 2) as drawn.
     pub fn launch(&self, port: usize) -> Option<&LaunchShape> {
         self.parts.iter().find_map(|placed| match &placed.part {
-            Part::Launch { port: number, shape } if *number == port => Some(shape),
+            Part::Launch { port: number, shape, .. } if *number == port => Some(shape),
             _ => None,
         })
     }

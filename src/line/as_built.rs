@@ -1,6 +1,21 @@
 //! What the laminate and copper really are: the one place where nominal, toleranced and measured boards differ.
 
+use super::section::Plating;
 use crate::order::Order;
+
+/// Nickel of an electroless-nickel finish on top and sides of the strips. Thickness: middle of the 3 to 6 um of IPC-4552. Conductivity and permeability: what
+/// Y. Shlepnev and S. McMorrow found on plated microstrip ("Nickel characterization for interconnect analysis", IEEE EMC Symposium 2011; from memory,
+/// rounded); the gold on it is far thinner than a skin depth.
+const NICKEL: Plating = Plating { conductivity_s_per_m: 1.4e7, permeability: 5.0, thickness_m: 4.5e-6 };
+
+/// Where the static constants of strips and pairs come from.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum StaticsModel {
+    /// Published closed forms: no lid, thickness and taper by effective sizes. A first guess, and a check.
+    ClosedForm,
+    /// The numerical cross-section [`crate::line::section`]: lid, thickness, taper and uniaxial laminate as they are.
+    Numerical,
+}
 
 /// Laminate, copper and lid as built, SI.
 #[derive(Clone, Debug, PartialEq)]
@@ -21,12 +36,16 @@ pub struct AsBuilt {
     pub roughness_m: f64,
     /// Copper conductivity, S/m.
     pub conductivity_s_per_m: f64,
+    /// Metal over the copper that the current feels: the nickel of a finish.
+    pub plating: Option<Plating>,
     /// Lid above the laminate surface.
     pub lid_m: Option<f64>,
     /// Added to every strip's drawn width (and taken from every gap): etch error of the batch.
     pub widening_m: f64,
     /// Without loss of any kind (conductor, dielectric, radiation); for synthesis against the lossless prototype.
     pub lossless: bool,
+    /// Where static constants come from.
+    pub statics: StaticsModel,
 }
 
 impl AsBuilt {
@@ -42,9 +61,11 @@ impl AsBuilt {
             undercut_m: order.shop.undercut_m,
             roughness_m: laminate.copper.roughness_m,
             conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
+            plating: plating_of(&laminate.finish),
             lid_m: order.housing.and_then(|housing| housing.lid_m),
             widening_m: 0.0,
             lossless: false,
+            statics: StaticsModel::Numerical,
         }
     }
 
@@ -57,11 +78,22 @@ impl AsBuilt {
     pub fn without_loss(&self) -> AsBuilt {
         AsBuilt { lossless: true, ..self.clone() }
     }
+
+    /// The same board with its static constants from another model.
+    pub fn with_statics(&self, statics: StaticsModel) -> AsBuilt {
+        AsBuilt { statics, ..self.clone() }
+    }
+}
+
+/// The metal of a finish (a word of [`crate::order::FINISHES`]) that carries current besides the copper; silver, tin and solder on top of copper are either as
+/// good or too thin to count.
+pub fn plating_of(finish: &str) -> Option<Plating> {
+    matches!(finish, "enig" | "enepig").then_some(NICKEL)
 }
 
 #[cfg(test)]
 impl AsBuilt {
-    /// An isotropic board for tests: 0.762 mm, copper of `copper_thickness_m`, square edges, smooth, with loss.
+    /// An isotropic board for tests of the closed forms: 0.762 mm, copper of `copper_thickness_m`, square edges, smooth, with loss.
     pub(crate) fn for_tests(permittivity: f64, copper_thickness_m: f64) -> AsBuilt {
         AsBuilt {
             permittivity,
@@ -72,9 +104,11 @@ impl AsBuilt {
             undercut_m: 0.0,
             roughness_m: 0.0,
             conductivity_s_per_m: 5.8e7,
+            plating: None,
             lid_m: None,
             widening_m: 0.0,
             lossless: false,
+            statics: StaticsModel::ClosedForm,
         }
     }
 }

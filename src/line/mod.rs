@@ -2,6 +2,9 @@
 //!
 //! A [`Strip`] or [`Pair`] is made once for a drawn geometry on a board [`AsBuilt`] and then asked for its [`Mode`]s at any frequency; both are smooth in
 //! frequency and in their sizes. Every number outside the range of its source is a warning from `problems`.
+//!
+//! Static constants come from the numerical cross-section [`section`] (thickness, taper, lid, uniaxial laminate); published closed forms are the first guess of
+//! the inverse, the check beside it, and what [`StaticsModel::ClosedForm`] asks for. Frequency is added by published dispersion laws in both cases.
 
 mod as_built;
 mod book;
@@ -11,6 +14,8 @@ mod dispersion;
 pub mod gap;
 mod inverse;
 mod mode;
+mod models;
+mod numerical;
 pub mod open_end;
 mod pair;
 mod range;
@@ -22,12 +27,13 @@ mod strip;
 pub mod stripline;
 mod surface;
 
-pub use as_built::AsBuilt;
+pub use as_built::{AsBuilt, StaticsModel, plating_of};
 pub use book::Book;
 pub use coplanar::Coplanar;
 pub use coupled::EvenOdd;
 pub use inverse::{OutOfReach, Unreachable, pair_for_impedances, width_for_impedance};
 pub use mode::Mode;
+pub use models::Models;
 pub use pair::Pair;
 pub use step::{Step, step};
 pub use strip::Strip;

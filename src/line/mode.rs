@@ -5,6 +5,9 @@ use std::f64::consts::PI;
 use super::AsBuilt;
 use super::C_M_PER_S;
 use super::ETA0_OHM;
+use super::numerical;
+use super::section::ModeLoss;
+use super::section::Surfaces;
 use super::statics::StaticMode;
 use super::surface::hammerstad_roughness_factor;
 use super::surface::surface_resistance_ohm;
@@ -47,6 +50,7 @@ pub(super) struct Losses {
     roughness_m: f64,
     er: f64,
     loss_tangent: f64,
+    surfaces: Surfaces,
 }
 
 impl Losses {
@@ -57,19 +61,35 @@ impl Losses {
             roughness_m: board.roughness_m,
             er: board.permittivity,
             loss_tangent: board.loss_tangent,
+            surfaces: numerical::surfaces(board),
         }
     }
 
-    /// The mode at a frequency.
+    /// The mode at a frequency; `solved` is the loss of the numerical cross-section, without which the closed forms serve.
     ///
     /// Copper: H. A. Wheeler's incremental-inductance rule ("Formulas for the skin effect", Proc. IRE 30, 1942), alpha = Rs K / (2 Z0 eta0) dZair/dn, all
     /// walls of strip and ground receding; K the roughness factor, taken for the whole surface although only the laminate side is rough, so on the safe side.
     /// Valid where the copper is some skin depths thick; towards zero frequency the loss goes to zero instead of to the direct-current resistance.
+    /// Of a solved cross-section each wall has its own surface: roughness on the laminate's side only, plating on top and sides only.
     /// Laminate: alpha = k0 er (eps_eff - 1) tan d / (2 sqrt(eps_eff) (er - 1)), the filling factor of each mode (Matthaei, Young, Jones 1964; any textbook).
-    pub(super) fn mode(&self, f_hz: f64, statics: &StaticMode, eps_eff: f64, impedance_factor: f64) -> Mode {
+    /// Of a solved cross-section the static filling is the solver's, and grows with the frequency as that formula grows.
+    pub(super) fn mode(&self, f_hz: f64, statics: &StaticMode, eps_eff: f64, impedance_factor: f64, solved: Option<&ModeLoss>) -> Mode {
         let z0_ohm = statics.z0_ohm() * impedance_factor;
         if self.lossless {
             return Mode { z0_ohm, eps_eff, conductor_np_per_m: 0.0, dielectric_np_per_m: 0.0 };
+        }
+        if f_hz == 0.0 {
+            return Mode { z0_ohm, eps_eff, conductor_np_per_m: 0.0, dielectric_np_per_m: 0.0 };
+        }
+        if let Some(loss) = solved {
+            let share = |eps_eff: f64| (eps_eff - 1.0) / eps_eff;
+            let growth = if statics.eps_eff > 1.0 { share(eps_eff) / share(statics.eps_eff) } else { 1.0 };
+            return Mode {
+                z0_ohm,
+                eps_eff,
+                conductor_np_per_m: loss.conductor_np_per_m(f_hz, z0_ohm, &self.surfaces),
+                dielectric_np_per_m: growth * loss.dielectric_np_per_m(f_hz, eps_eff),
+            };
         }
         let resistance_ohm = surface_resistance_ohm(f_hz, self.conductivity_s_per_m)
             * hammerstad_roughness_factor(f_hz, self.conductivity_s_per_m, self.roughness_m);

@@ -1,25 +1,40 @@
 //! Two equal coupled microstrip lines as built: even and odd mode at any frequency.
 
+use std::sync::OnceLock;
+
 use super::AsBuilt;
 use super::Mode;
 use super::coupled::EvenOdd;
 use super::dispersion::Dispersion;
 use super::mode::Losses;
+use super::numerical;
+use super::section::ModeLoss;
 use super::statics;
 use super::statics::StaticMode;
+use super::statics::Statics;
+use crate::base::Problem;
 
 /// Two equal strips of a drawn width and gap on a board as built.
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug)]
 pub struct Pair {
     pub(super) board: AsBuilt,
     pub(super) width_m: f64,
     pub(super) gap_m: f64,
     pub(super) built_width_m: f64,
     pub(super) built_gap_m: f64,
-    static_modes: EvenOdd<StaticMode>,
+    statics: Statics<EvenOdd<StaticMode>>,
     single_eps_eff: f64,
     dispersion: Dispersion,
     losses: Losses,
+    /// Asked for once, and only where there is loss: it costs more than all the rest.
+    solved_loss: OnceLock<Result<EvenOdd<ModeLoss>, Problem>>,
+}
+
+impl PartialEq for Pair {
+    /// Board, width and gap settle everything else.
+    fn eq(&self, other: &Pair) -> bool {
+        self.width_m == other.width_m && self.gap_m == other.gap_m && self.board == other.board
+    }
 }
 
 impl Pair {
@@ -28,10 +43,11 @@ impl Pair {
         let (built_width_m, built_gap_m) = (statics::built_width_m(board, width_m), statics::built_gap_m(board, gap_m));
         let h = board.thickness_m;
         Pair {
-            static_modes: statics::pair(board, width_m, gap_m),
-            single_eps_eff: statics::strip_values(board, built_width_m).1,
+            statics: statics::pair(board, width_m, gap_m),
+            single_eps_eff: statics::strip(board, width_m).modes.eps_eff,
             dispersion: Dispersion::pair(built_width_m / h, built_gap_m / h, board.permittivity),
             losses: Losses::new(board),
+            solved_loss: OnceLock::new(),
             board: board.clone(),
             width_m,
             gap_m,
@@ -57,12 +73,12 @@ impl Pair {
 
     /// Even and odd impedance at zero frequency, ohm.
     pub fn static_z0_ohm(&self) -> EvenOdd<f64> {
-        EvenOdd { even: self.static_modes.even.z0_ohm(), odd: self.static_modes.odd.z0_ohm() }
+        EvenOdd { even: self.statics.modes.even.z0_ohm(), odd: self.statics.modes.odd.z0_ohm() }
     }
 
     /// Even and odd effective permittivity at zero frequency.
     pub fn static_eps_eff(&self) -> EvenOdd<f64> {
-        EvenOdd { even: self.static_modes.even.eps_eff, odd: self.static_modes.odd.eps_eff }
+        EvenOdd { even: self.statics.modes.even.eps_eff, odd: self.statics.modes.odd.eps_eff }
     }
 
     /// Both quasi-TEM modes at a frequency (zero allowed); cheaper than asking for each.
@@ -70,10 +86,27 @@ impl Pair {
         let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
         let eps = self.dispersion.pair_eps_eff(f_n, self.static_eps_eff());
         let factor = self.impedance_factor(f_n);
+        let solved = self.solved_loss().and_then(|loss| loss.as_ref().ok());
         EvenOdd {
-            even: self.losses.mode(f_hz, &self.static_modes.even, eps.even, factor),
-            odd: self.losses.mode(f_hz, &self.static_modes.odd, eps.odd, factor),
+            even: self.losses.mode(f_hz, &self.statics.modes.even, eps.even, factor, solved.map(|loss| &loss.even)),
+            odd: self.losses.mode(f_hz, &self.statics.modes.odd, eps.odd, factor, solved.map(|loss| &loss.odd)),
         }
+    }
+
+    /// Loss of the solved cross-section; `None` where there is no loss or no solution.
+    fn solved_loss(&self) -> Option<&Result<EvenOdd<ModeLoss>, Problem>> {
+        let wanted = !self.board.lossless && self.statics.error_estimate.is_some();
+        wanted.then(|| self.solved_loss.get_or_init(|| numerical::pair_loss(&self.board, self.width_m, self.gap_m)))
+    }
+
+    /// Relative error of the static constants that the solver expects; `None` when they come from the closed form.
+    pub fn error_estimate(&self) -> Option<f64> {
+        self.statics.error_estimate
+    }
+
+    /// Why the solver's values are not used although the board asks for them.
+    pub(super) fn not_solved(&self) -> Vec<&Problem> {
+        self.statics.not_solved.iter().chain(self.solved_loss().and_then(|loss| loss.as_ref().err())).collect()
     }
 
     /// The even mode at a frequency.
@@ -89,7 +122,7 @@ impl Pair {
     /// Even and odd impedance alone, ohm: what the inverse search asks for many times.
     pub(super) fn impedances_ohm(&self, f_hz: f64) -> [f64; 2] {
         let factor = self.impedance_factor(self.board.normalised_frequency_ghz_mm(f_hz));
-        [self.static_modes.even.z0_ohm() * factor, self.static_modes.odd.z0_ohm() * factor]
+        [self.statics.modes.even.z0_ohm() * factor, self.statics.modes.odd.z0_ohm() * factor]
     }
 
     fn impedance_factor(&self, f_n: f64) -> f64 {

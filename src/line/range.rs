@@ -1,4 +1,7 @@
 //! Is a strip or pair inside what the sources of its formulas cover?
+//!
+//! Static values from the numerical cross-section have no range: the solver refuses what it cannot do (`section-not-solved`). What is left is the dispersion
+//! law, and that only where it moves anything.
 
 use super::AsBuilt;
 use super::C_M_PER_S;
@@ -8,6 +11,8 @@ use crate::base::Place;
 use crate::base::Problem;
 
 const SINGLE_SOURCE: &str = "Hammerstad & Jensen 1980; Kirschning & Jansen 1982";
+const SINGLE_DISPERSION_SOURCE: &str = "dispersion: Kirschning & Jansen 1982";
+const PAIR_DISPERSION_SOURCE: &str = "dispersion: Kirschning & Jansen 1984";
 const PAIR_SOURCE: &str = "Kirschning & Jansen 1984";
 /// Height over wavelength up to which the single-strip dispersion is claimed (Kirschning & Jansen 1982).
 const SINGLE_HEIGHT_IN_WAVELENGTHS: f64 = 0.13;
@@ -20,16 +25,29 @@ const PAIR_THICKNESS: f64 = 0.07;
 /// Gap over thickness below which side walls facing each other carry a good part of the odd mode, which the effective width does not know.
 const PAIR_GAP_IN_THICKNESSES: f64 = 3.0;
 
+/// Rise of the effective permittivity from which the range of the dispersion law matters when the static value is solved: 0.1 % of a frequency.
+const DISPERSION_MATTERS: f64 = 2e-3;
+
 impl Strip {
     /// Frequency (Hz) up to which its dispersion is claimed by the source.
     pub fn trusted_up_to_hz(&self) -> f64 {
         SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m
     }
 
-    /// Warnings (`line-model-range`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
+    /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, SINGLE_SOURCE);
         let h = self.board.thickness_m;
+        range.not_solved(&self.not_solved());
+        if self.error_estimate().is_some() {
+            range.source = SINGLE_DISPERSION_SOURCE;
+            if self.at(up_to_hz).eps_eff > (1.0 + DISPERSION_MATTERS) * self.static_eps_eff() {
+                range.inside("width over thickness of the laminate", self.built_width_m / h, 0.1, 100.0);
+                range.inside("permittivity", self.board.permittivity, 1.0, 20.0);
+            }
+            range.up_to(up_to_hz, self.trusted_up_to_hz());
+            return range.problems;
+        }
         range.inside("width over thickness of the laminate", self.built_width_m / h, 0.01, 100.0);
         range.inside("permittivity", self.board.permittivity, 1.0, 20.0);
         range.inside("copper thickness over thickness of the laminate", self.board.copper_thickness_m / h, 0.0, SINGLE_THICKNESS);
@@ -45,10 +63,22 @@ impl Pair {
         PAIR_GHZ_MM * 1e6 / self.board.thickness_m
     }
 
-    /// Warnings (`line-model-range`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
+    /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, PAIR_SOURCE);
         let (h, t) = (self.board.thickness_m, self.board.copper_thickness_m);
+        range.not_solved(&self.not_solved());
+        if self.error_estimate().is_some() {
+            range.source = PAIR_DISPERSION_SOURCE;
+            let (modes, statics) = (self.at(up_to_hz), self.static_eps_eff());
+            if (modes.even.eps_eff / statics.even).max(modes.odd.eps_eff / statics.odd) > 1.0 + DISPERSION_MATTERS {
+                range.inside("width over thickness of the laminate", self.built_width_m / h, 0.1, 10.0);
+                range.inside("gap over thickness of the laminate", self.built_gap_m / h, 0.1, 10.0);
+                range.inside("permittivity", self.board.permittivity, 1.0, 18.0);
+            }
+            range.up_to(up_to_hz, self.trusted_up_to_hz());
+            return range.problems;
+        }
         range.inside("width over thickness of the laminate", self.built_width_m / h, 0.1, 10.0);
         range.inside("gap over thickness of the laminate", self.built_gap_m / h, 0.1, 10.0);
         range.inside("permittivity", self.board.permittivity, 1.0, 18.0);
@@ -75,6 +105,14 @@ impl Range<'_> {
 
     fn warn(&mut self, code: &'static str, message: String, help: &str) {
         self.problems.push(Problem::warning(code, Place::Whole, message, help).with_source(self.source));
+    }
+
+    /// The solver was to give these numbers and did not: the closed form stands in.
+    fn not_solved(&mut self, reasons: &[&Problem]) {
+        for reason in reasons {
+            let message = format!("the cross-section is not solved, the closed form stands in: {} ({})", reason.message, reason.code);
+            self.warn("section-not-solved", message, &reason.help);
+        }
     }
 
     fn inside(&mut self, what: &str, value: f64, low: f64, high: f64) {

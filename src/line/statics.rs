@@ -1,20 +1,24 @@
-//! The seam behind which the static constants of a strip or a pair come from: today closed forms, with thickness, taper of the sides and uniaxial laminate.
+//! The seam behind which the static constants of a strip or a pair come from: the numerical cross-section or the closed forms, as the board says.
 //!
 //! Per mode three numbers: the impedance in air (it fixes the inductance), the effective permittivity, and how fast the impedance in air rises when every
 //! copper wall recedes (it fixes the conductor loss). Everything above this file works from those.
 
 use super::AsBuilt;
+use super::StaticsModel;
 use super::coupled::EvenOdd;
 use super::coupled::air_impedances_ohm;
 use super::coupled::effective_permittivities;
+use super::numerical;
+use super::section;
 use super::single::air_impedance_ohm;
 use super::single::effective_permittivity;
 use super::single::thickness_widening;
+use crate::base::Problem;
 
 /// Narrowest strip and gap the formulas are asked for: keeps a nonsense size finite until its problem is reported.
 const SMALLEST_SIZE_M: f64 = 1e-9;
 /// Copper assumed at least this thick for its loss: without thickness the edge currents of the recession rule have no limit.
-const THINNEST_LOSSY_COPPER_M: f64 = 1e-6;
+pub(super) const THINNEST_LOSSY_COPPER_M: f64 = 1e-6;
 /// Up to this share of the gap, thickness narrows it by the full widening of the strips; beyond it the gap tends to zero without reaching it.
 const PLAIN_GAP_SHARE: f64 = 0.6;
 /// Recession step over the smallest size of the section; a central difference, so its error is the square of this.
@@ -27,11 +31,36 @@ pub(super) struct StaticMode {
     pub(super) air_ohm: f64,
     /// Static effective permittivity.
     pub(super) eps_eff: f64,
-    /// d(air_ohm)/dn when every wall recedes by n, ohm per metre.
+    /// d(air_ohm)/dn when every wall recedes by n, ohm per metre: always the closed form's, for where the solver's loss is not to be had.
     pub(super) recession_ohm_per_m: f64,
 }
 
+/// Static constants and where they come from.
+#[derive(Clone, Debug, PartialEq)]
+pub(super) struct Statics<T> {
+    /// One mode, or even and odd.
+    pub(super) modes: T,
+    /// The solver's; `None`: these are the closed form's.
+    pub(super) error_estimate: Option<f64>,
+    /// Why the solver was asked and could not: said by `problems`, never passed over.
+    pub(super) not_solved: Option<Problem>,
+}
+
+impl<T> Statics<T> {
+    fn closed_form(modes: T) -> Statics<T> {
+        Statics { modes, error_estimate: None, not_solved: None }
+    }
+}
+
 impl StaticMode {
+    fn with(self, solved: &section::Mode) -> StaticMode {
+        StaticMode {
+            air_ohm: 1.0 / (super::C_M_PER_S * solved.air_capacitance_f_per_m),
+            eps_eff: solved.eps_eff(),
+            recession_ohm_per_m: self.recession_ohm_per_m,
+        }
+    }
+
     /// Static impedance, ohm.
     pub(super) fn z0_ohm(&self) -> f64 {
         self.air_ohm / self.eps_eff.sqrt()
@@ -57,9 +86,19 @@ impl Slab {
     }
 }
 
+/// Width at the foot of a strip drawn `width_m` wide.
+pub(super) fn foot_m(board: &AsBuilt, width_m: f64) -> f64 {
+    (width_m + board.widening_m).max(SMALLEST_SIZE_M)
+}
+
+/// Gap between the feet of two strips drawn `gap_m` apart.
+pub(super) fn foot_gap_m(board: &AsBuilt, gap_m: f64) -> f64 {
+    (gap_m - board.widening_m).max(SMALLEST_SIZE_M)
+}
+
 /// The equivalent width of a strip drawn `width_m` wide: etch error added, and a trapezoid taken as the rectangle of its mean width.
 pub(super) fn built_width_m(board: &AsBuilt, width_m: f64) -> f64 {
-    let foot_m = (width_m + board.widening_m).max(SMALLEST_SIZE_M);
+    let foot_m = foot_m(board, width_m);
     // A strip narrower than its own undercut is reported as a problem; here it only has to stay a strip.
     (foot_m - board.undercut_m.min(0.45 * foot_m)).max(SMALLEST_SIZE_M)
 }
@@ -70,7 +109,18 @@ pub(super) fn built_gap_m(board: &AsBuilt, gap_m: f64) -> f64 {
 }
 
 /// Static constants of one strip; `width_m` as drawn.
-pub(super) fn strip(board: &AsBuilt, width_m: f64) -> StaticMode {
+pub(super) fn strip(board: &AsBuilt, width_m: f64) -> Statics<StaticMode> {
+    let guess = strip_in_closed_form(board, width_m);
+    match board.statics {
+        StaticsModel::ClosedForm => Statics::closed_form(guess),
+        StaticsModel::Numerical => match numerical::strip(board, width_m) {
+            Ok(line) => Statics { modes: guess.with(&line.mode), error_estimate: Some(line.error_estimate), not_solved: None },
+            Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },
+        },
+    }
+}
+
+fn strip_in_closed_form(board: &AsBuilt, width_m: f64) -> StaticMode {
     let w = built_width_m(board, width_m);
     let (h, t) = (board.thickness_m, board.copper_thickness_m);
     let (air_ohm, eps_eff) = strip_values(board, w);
@@ -103,7 +153,22 @@ fn strip_in_air(h: f64, w: f64, t: f64) -> f64 {
 }
 
 /// Static constants of a pair; `width_m` and `gap_m` as drawn.
-pub(super) fn pair(board: &AsBuilt, width_m: f64, gap_m: f64) -> EvenOdd<StaticMode> {
+pub(super) fn pair(board: &AsBuilt, width_m: f64, gap_m: f64) -> Statics<EvenOdd<StaticMode>> {
+    let guess = pair_in_closed_form(board, width_m, gap_m);
+    match board.statics {
+        StaticsModel::ClosedForm => Statics::closed_form(guess),
+        StaticsModel::Numerical => match numerical::pair(board, width_m, gap_m) {
+            Ok(pair) => Statics {
+                modes: EvenOdd { even: guess.even.with(&pair.even), odd: guess.odd.with(&pair.odd) },
+                error_estimate: Some(pair.error_estimate),
+                not_solved: None,
+            },
+            Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },
+        },
+    }
+}
+
+fn pair_in_closed_form(board: &AsBuilt, width_m: f64, gap_m: f64) -> EvenOdd<StaticMode> {
     let (w, s) = (built_width_m(board, width_m), built_gap_m(board, gap_m));
     let values = pair_values(board, w, s);
     let recession = if board.lossless {

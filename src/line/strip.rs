@@ -1,32 +1,48 @@
 //! One microstrip line as built: impedance, effective permittivity and loss at any frequency.
 
+use std::sync::OnceLock;
+
 use super::AsBuilt;
 use super::Mode;
 use super::dispersion::Dispersion;
 use super::mode::Losses;
+use super::numerical;
+use super::section::ModeLoss;
 use super::statics;
 use super::statics::StaticMode;
+use super::statics::Statics;
+use crate::base::Problem;
 
 /// One strip of a drawn width on a board as built.
 ///
 /// # Example
 /// ```
-/// use stripwright::line::{AsBuilt, Strip};
+/// use stripwright::line::{AsBuilt, StaticsModel, Strip};
 /// let board = AsBuilt {
 ///     permittivity: 3.0, in_plane_permittivity: 3.0, loss_tangent: 0.0013, thickness_m: 0.762e-3, copper_thickness_m: 0.0, undercut_m: 0.0,
-///     roughness_m: 0.0, conductivity_s_per_m: 5.8e7, lid_m: None, widening_m: 0.0, lossless: true,
+///     roughness_m: 0.0, conductivity_s_per_m: 5.8e7, plating: None, lid_m: None, widening_m: 0.0, lossless: true,
+///     statics: StaticsModel::Numerical,
 /// };
 /// let strip = Strip::new(&board, 2.5 * 0.762e-3);
-/// assert!((strip.static_z0_ohm() / 50.162 - 1.0).abs() < 0.0012); // exact value of the thin strip
+/// assert!((strip.static_z0_ohm() / 50.162 - 1.0).abs() < 1e-4); // exact value of the thin strip
 /// ```
-#[derive(Clone, Debug, PartialEq)]
+#[derive(Clone, Debug)]
 pub struct Strip {
     pub(super) board: AsBuilt,
     pub(super) width_m: f64,
     pub(super) built_width_m: f64,
-    static_mode: StaticMode,
+    statics: Statics<StaticMode>,
     dispersion: Dispersion,
     losses: Losses,
+    /// Asked for once, and only where there is loss: it costs more than all the rest.
+    solved_loss: OnceLock<Result<ModeLoss, Problem>>,
+}
+
+impl PartialEq for Strip {
+    /// Board and width settle everything else.
+    fn eq(&self, other: &Strip) -> bool {
+        self.width_m == other.width_m && self.board == other.board
+    }
 }
 
 impl Strip {
@@ -34,9 +50,10 @@ impl Strip {
     pub fn new(board: &AsBuilt, width_m: f64) -> Strip {
         let built_width_m = statics::built_width_m(board, width_m);
         Strip {
-            static_mode: statics::strip(board, width_m),
+            statics: statics::strip(board, width_m),
             dispersion: Dispersion::single(built_width_m / board.thickness_m, board.permittivity),
             losses: Losses::new(board),
+            solved_loss: OnceLock::new(),
             board: board.clone(),
             width_m,
             built_width_m,
@@ -55,20 +72,37 @@ impl Strip {
 
     /// Impedance at zero frequency.
     pub fn static_z0_ohm(&self) -> f64 {
-        self.static_mode.z0_ohm()
+        self.statics.modes.z0_ohm()
     }
 
     /// Effective permittivity at zero frequency.
     pub fn static_eps_eff(&self) -> f64 {
-        self.static_mode.eps_eff
+        self.statics.modes.eps_eff
     }
 
     /// The quasi-TEM mode at a frequency (zero allowed).
     pub fn at(&self, f_hz: f64) -> Mode {
         let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
-        let eps_eff = self.dispersion.single_eps_eff(f_n, self.static_mode.eps_eff);
-        let factor = self.dispersion.impedance_factor(f_n, self.static_mode.eps_eff, eps_eff);
-        self.losses.mode(f_hz, &self.static_mode, eps_eff, factor)
+        let eps_eff = self.dispersion.single_eps_eff(f_n, self.statics.modes.eps_eff);
+        let factor = self.dispersion.impedance_factor(f_n, self.statics.modes.eps_eff, eps_eff);
+        let solved = self.solved_loss().and_then(|loss| loss.as_ref().ok());
+        self.losses.mode(f_hz, &self.statics.modes, eps_eff, factor, solved)
+    }
+
+    /// Loss of the solved cross-section; `None` where there is no loss or no solution.
+    fn solved_loss(&self) -> Option<&Result<ModeLoss, Problem>> {
+        let wanted = !self.board.lossless && self.statics.error_estimate.is_some();
+        wanted.then(|| self.solved_loss.get_or_init(|| numerical::strip_loss(&self.board, self.width_m)))
+    }
+
+    /// Relative error of the static constants that the solver expects; `None` when they come from the closed form.
+    pub fn error_estimate(&self) -> Option<f64> {
+        self.statics.error_estimate
+    }
+
+    /// Why the solver's values are not used although the board asks for them.
+    pub(super) fn not_solved(&self) -> Vec<&Problem> {
+        self.statics.not_solved.iter().chain(self.solved_loss().and_then(|loss| loss.as_ref().err())).collect()
     }
 }
 

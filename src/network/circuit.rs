@@ -16,6 +16,7 @@ use crate::layout::Layout;
 use crate::layout::Part;
 use crate::line::Book;
 use crate::line::Coplanar;
+use crate::line::Models;
 use crate::line::Pair;
 use crate::line::Strip;
 use crate::line::open_end;
@@ -108,9 +109,15 @@ impl Circuit {
                 }
                 Part::OpenEnd => Block::OpenEnd { strip: circuit.strip(book, width(placed.nodes[0])) },
                 Part::Step => step_block(&book.strip(width(placed.nodes[0])), &book.strip(width(placed.nodes[1]))),
-                Part::Launch { port, shape } => {
+                Part::Launch { port, shape, run } => {
                     if planes == Planes::Edge {
-                        let end = circuit.launch(book, shape, placed.nodes[0], width(placed.nodes[0]), &mut nodes, &mut fresh);
+                        let mut end = placed.nodes[0];
+                        for piece in circuit.launch(book, shape, *run, width(end)) {
+                            circuit.blocks.push(piece);
+                            nodes.push(vec![end, fresh]);
+                            end = fresh;
+                            fresh += 1;
+                        }
                         if let Some(place) = external.get_mut(port - 1) {
                             *place = end;
                         }
@@ -147,9 +154,12 @@ impl Circuit {
         })
     }
 
-    /// Adds the blocks of a launch outwards from `node` and returns the node at the board's edge.
-    fn launch(&mut self, book: &Book, shape: &LaunchShape, node: usize, feed: Nm, nodes: &mut Vec<Vec<usize>>, fresh: &mut usize) -> usize {
+    /// The blocks of a launch from the feed's mouth outwards: the feed's run on, the taper, the pad.
+    fn launch(&mut self, book: &Book, shape: &LaunchShape, run: Nm, feed: Nm) -> Vec<Block> {
         let mut pieces = Vec::new();
+        if run > Nm::ZERO {
+            pieces.push(Block::Line { strip: self.strip(book, feed), length_m: run.m() });
+        }
         match *shape {
             LaunchShape::Open => {}
             LaunchShape::Pads { pad_length_m, pad_width_m } => {
@@ -165,14 +175,12 @@ impl Circuit {
                 pieces.push(Block::Coplanar { line: self.coplanar.len() - 1, length_m: pad_length_m });
             }
         }
-        let mut end = node;
-        for piece in pieces {
-            self.blocks.push(piece);
-            nodes.push(vec![end, *fresh]);
-            end = *fresh;
-            *fresh += 1;
-        }
-        end
+        pieces
+    }
+
+    /// Which models gave the constants of its strips and pairs.
+    pub fn models(&self) -> Models {
+        Models::of(self.strips.iter().map(|(_, strip)| &**strip), self.pairs.iter().map(|(_, pair)| &**pair))
     }
 
     /// Warnings of the line models where the circuit leaves their ranges up to a frequency, one of each kind.

@@ -44,27 +44,37 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
         )]);
     }
     let (least, most) = family.degrees();
-    let mut misses: Vec<(usize, String)> = Vec::new();
+    let mut misses: Vec<Miss> = Vec::new();
     for degree in least..=most {
         if let Some(miss) = hopeless(order, degree) {
-            misses.push((degree, miss));
+            misses.push(Miss { degree, falls_short: true, why: miss });
             continue;
         }
         let tried = family.first_guess(order, degree).and_then(|(guess, _)| refine(family, &guess));
         let refined = match tried {
             Ok(refined) => refined,
             Err(problems) => {
-                misses.push((degree, problems.iter().map(|p| p.message.clone()).collect::<Vec<_>>().join("; ")));
+                // A port or a laminate no degree can mend is reported as what it is.
+                if problems.iter().any(|p| p.code == "impedance-out-of-reach" || p.code == "band-not-of-the-family") {
+                    return Err(problems);
+                }
+                let first = problems.first().map_or_else(String::new, |p| p.message.clone());
+                misses.push(Miss { degree, falls_short: false, why: first });
                 continue;
             }
         };
         let figures = figures(family, &refined)?;
-        let Some(worst) = figures.verdicts.iter().filter(|v| !v.is_met()).min_by(|a, b| a.margin.total_cmp(&b.margin)) else {
+        if figures.all_met() {
             return Ok(Chosen { reason: Some(reason(degree, &figures)), refined });
+        }
+        let worst = |falls_short: bool| {
+            let of_kind = figures.verdicts.iter().filter(|v| !v.is_met() && rejects(&v.limit) == falls_short);
+            of_kind.min_by(|a, b| a.margin.total_cmp(&b.margin)).map(|v| Miss { degree, falls_short, why: v.describe() })
         };
-        misses.push((degree, worst.describe()));
+        misses.extend(worst(true));
         // Loss grows with the degree: once it fails, no greater degree can do better.
-        if figures.verdicts.iter().any(|v| !v.is_met() && matches!(v.limit, Limit::InsertionLossAtMost(_))) {
+        if let Some(lossy) = worst(false) {
+            misses.push(lossy);
             break;
         }
     }
@@ -75,7 +85,8 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
 fn figures(family: &dyn Family, refined: &Refined) -> Result<Figures, Vec<Problem>> {
     let layout = family.layout(&refined.dimensions)?;
     let order = &refined.dimensions.order;
-    let (response, _) = predict(order, &layout)?;
+    let (board, _) = crate::artwork::board(order, &layout)?;
+    let (response, _) = predict(order, &board.run_on(&layout))?;
     Ok(Figures::of(order, &response))
 }
 
@@ -110,16 +121,23 @@ fn reason(degree: usize, figures: &Figures) -> String {
     }
 }
 
-/// Names the last degree that fails for want of rejection and the first that fails for another reason.
-fn out_of_reach(misses: &[(usize, String)]) -> Problem {
-    let shown: Vec<String> = match misses {
-        [.., low, high] => [low, high].into_iter().map(|(degree, miss)| format!("degree {degree}: {miss}")).collect(),
-        rest => rest.iter().map(|(degree, miss)| format!("degree {degree}: {miss}")).collect(),
-    };
+/// Why a degree does not do.
+struct Miss {
+    degree: usize,
+    /// It rejects too little; otherwise it loses or reflects too much, or has no geometry.
+    falls_short: bool,
+    why: String,
+}
+
+/// Names the greatest degree that rejects too little, and the first that fails otherwise.
+fn out_of_reach(misses: &[Miss]) -> Problem {
+    let short = misses.iter().rev().find(|m| m.falls_short);
+    let otherwise = misses.iter().find(|m| !m.falls_short);
+    let shown: Vec<String> = short.into_iter().chain(otherwise).map(|m| format!("degree {}: {}", m.degree, m.why)).collect();
     Problem::error(
         "degree-out-of-reach",
         Place::Key("filter.degree".into()),
         format!("no degree meets the requirements (loss grows with the degree, rejection shrinks without). {}", shown.join("; ")),
-        "allow more insertion loss or less rejection, move the stopband away from the passband, or choose a laminate with less loss",
+        "allow more insertion loss or less rejection, move the stopband away from the passband and from the spurious passbands near two and three times it, or choose a laminate with less loss",
     )
 }

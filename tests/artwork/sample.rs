@@ -25,7 +25,7 @@ pub fn staircase(feed_um: i64, widths_um: &[i64], gaps_um: &[i64], length_um: i6
     let port = add(&mut layout, mouth(x, y, width));
     layout.ports.push(port);
     layout.parts.push(Placed {
-        part: Part::Launch { port: 1, shape: edge_coax().shape },
+        part: Part::Launch { port: 1, shape: edge_coax().shape, run: Nm::ZERO },
         nodes: vec![port],
         serves: vec!["launch 1 ground gap".into()],
     });
@@ -70,7 +70,7 @@ pub fn staircase(feed_um: i64, widths_um: &[i64], gaps_um: &[i64], length_um: i6
         nodes: vec![start, end],
         serves: vec!["feed width".into()],
     });
-    layout.parts.push(Placed { part: Part::Launch { port: 2, shape: edge_coax().shape }, nodes: vec![end], serves: vec![] });
+    layout.parts.push(Placed { part: Part::Launch { port: 2, shape: edge_coax().shape, run: Nm::ZERO }, nodes: vec![end], serves: vec![] });
     layout.ports.push(end);
     layout
 }

@@ -17,22 +17,22 @@ const THIN: [&str; 8] = ["--laminate", "ceramic-ptfe-3.0", "--permittivity", "3.
 
 #[test]
 fn strip_has_the_exact_static_impedance() {
-    // Exact static solution, thin strip, er 3.0, w/h 2.5: 50.162176 ohm, 2.4261309; Hammerstad & Jensen 1980 within 0.12 % and 0.2 %.
+    // Exact static solution, thin strip, er 3.0, w/h 2.5: 50.162176 ohm, 2.4261309; the solver's own claim is 1e-4 and better for sheets.
     let json = json(&[&THIN[..], &["--width", "2.5 mm"]].concat());
-    assert!((json["z0_ohm"].as_f64().unwrap() / 50.162176 - 1.0).abs() < 1.2e-3, "{json}");
-    assert!((json["eps_eff"].as_f64().unwrap() / 2.4261309 - 1.0).abs() < 2e-3, "{json}");
+    assert!((json["z0_ohm"].as_f64().unwrap() / 50.162176 - 1.0).abs() < 1e-4, "{json}");
+    assert!((json["eps_eff"].as_f64().unwrap() / 2.4261309 - 1.0).abs() < 1e-4, "{json}");
     assert!(json["conductor_loss_db_per_m"].as_f64().unwrap() > 0.0 && json["dielectric_loss_db_per_m"].as_f64().unwrap() > 0.0);
 }
 
 #[test]
 fn pair_has_the_exact_static_impedances_and_its_inverse_finds_it() {
-    // Exact static solution, thin pair, er 3.0, w/h 2.0, s/h 0.2: 70.38658 and 38.86396 ohm; Kirschning & Jansen 1984 within 0.8 and 0.9 %.
+    // Exact static solution, thin pair, er 3.0, w/h 2.0, s/h 0.2: 70.38658 and 38.86396 ohm; the solver's own claim is 1e-4 and better for sheets.
     let there = json(&[&THIN[..], &["--width", "2 mm", "--gap", "0.2 mm"]].concat());
     let [even, odd] = ["even", "odd"].map(|mode| there[mode]["z0_ohm"].as_f64().unwrap());
-    assert!((even / 70.38658 - 1.0).abs() < 8e-3 && (odd / 38.86396 - 1.0).abs() < 9e-3, "{there}");
+    assert!((even / 70.38658 - 1.0).abs() < 1e-4 && (odd / 38.86396 - 1.0).abs() < 1e-4, "{there}");
     assert!((there["coupling"].as_f64().unwrap() - (even - odd) / (even + odd)).abs() < 1e-12);
     let back = json(&[&THIN[..], &["--even", &format!("{even} ohm"), "--odd", &format!("{odd} ohm")]].concat());
-    // The inverse stops at 1e-7 of a size, and shortest decimals lose nothing.
+    // The inverse stops at 1e-7 of coupling and impedance, and shortest decimals lose nothing.
     assert!((back["width_m"].as_f64().unwrap() / 2e-3 - 1.0).abs() < 1e-6 && (back["gap_m"].as_f64().unwrap() / 0.2e-3 - 1.0).abs() < 1e-6);
 }
 
@@ -48,15 +48,26 @@ fn impedance_is_found_at_the_frequency_asked_for() {
 fn people_read_units_and_models() {
     let done = line(&["--laminate", "ceramic-ptfe-3.0", "--width", "1.9 mm", "--gap", "0.3 mm", "--at", "2.45 GHz"]).success();
     let text = String::from_utf8(done.get_output().stdout.clone()).unwrap();
-    for word in ["ohm", "dB/m", "mm", "Kirschning & Jansen 1984", "2.4500 GHz", "coupling", "trusted to"] {
+    for word in [
+        "ohm",
+        "dB/m",
+        "mm",
+        "numerical cross-section",
+        "closed form differs by",
+        "Kirschning & Jansen 1984",
+        "2.4500 GHz",
+        "coupling",
+        "trusted to",
+    ] {
         assert!(text.contains(word), "{word} missing in\n{text}");
     }
 }
 
 #[test]
 fn warns_outside_the_range_of_the_model() {
-    let wide = ["--laminate", "ceramic-ptfe-3.0", "--width", "500 mm", "--json"];
-    let done = line(&wide).success();
+    // 0.762 mm thick: the dispersion law ends at 0.13 wavelengths, 51 GHz.
+    let fast = ["--laminate", "ceramic-ptfe-3.0", "--width", "1.9 mm", "--at", "60 GHz", "--json"];
+    let done = line(&fast).success();
     assert!(String::from_utf8_lossy(&done.get_output().stderr).contains("line-model-range"));
     let json: Value = serde_json::from_slice(&done.get_output().stdout).unwrap();
     assert_eq!(json["warnings"][0]["code"], "line-model-range");

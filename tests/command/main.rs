@@ -7,6 +7,8 @@ mod dimension_file;
 mod files;
 mod line;
 mod mistakes;
+mod packages;
+mod section_file;
 
 use std::path::Path;
 

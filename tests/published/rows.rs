@@ -1,6 +1,7 @@
 //! How a row is held against its printed value.
 
 use stripwright::line::AsBuilt;
+use stripwright::line::StaticsModel;
 
 /// Counts rows and fails at the end of a table with all misses at once.
 pub struct Table {
@@ -44,7 +45,7 @@ impl Table {
     }
 }
 
-/// A lossless isotropic board with infinitely thin copper.
+/// A lossless isotropic board with infinitely thin copper, for the closed forms.
 pub fn thin(er: f64, h_m: f64) -> AsBuilt {
     thick(er, h_m, 0.0)
 }
@@ -60,8 +61,10 @@ pub fn thick(er: f64, h_m: f64, t_m: f64) -> AsBuilt {
         undercut_m: 0.0,
         roughness_m: 0.0,
         conductivity_s_per_m: 5.8e7,
+        plating: None,
         lid_m: None,
         widening_m: 0.0,
         lossless: true,
+        statics: StaticsModel::ClosedForm,
     }
 }

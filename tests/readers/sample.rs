@@ -82,6 +82,7 @@ pub fn hand_board() -> Board {
         number,
         edge: Node { left: mm(x, 15.2), right: mm(x, 14.0) },
         plane: Node { left: mm(plane, 15.2), right: mm(plane, 14.0) },
+        run: Nm::ZERO,
         net: format!("PORT{number}"),
     };
     let callout = |name: &str, from: Point, to: Point| Callout { dimension: name.into(), from, to };

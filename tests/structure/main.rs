@@ -93,11 +93,19 @@ fn outside_crates_have_one_door_each() {
 }
 
 #[test]
-fn every_family_has_its_starter_order() {
+fn every_family_has_its_starter_its_golden_case_and_its_published_design() {
     for family in stripwright::family::FAMILIES {
         let template = root().join(format!("templates/orders/{}.toml", family.name()));
         assert!(template.exists(), "{} is missing", template.display());
         assert!(root().join(format!("src/family/{}.rs", family.name().replace('-', "_"))).exists());
+        let golden = fs::read_dir(root().join("tests/golden"))
+            .unwrap()
+            .map(|e| e.unwrap().path())
+            .filter(|p| p.extension().is_some_and(|e| e == "toml"));
+        let named = format!("family = \"{}\"", family.name());
+        assert!(golden.into_iter().any(|p| fs::read_to_string(p).unwrap().contains(&named)), "no golden order says {named}");
+        let published = fs::read_to_string(root().join("tests/synthesis/published_designs.rs")).unwrap();
+        assert!(published.contains(&named.replace('"', "\\\"")), "no published design says {named}");
     }
 }
 

@@ -2,6 +2,7 @@
 #![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
 
 mod orders;
+mod published_designs;
 mod random_orders;
 mod response_laws;
 mod second_circuit;

@@ -182,7 +182,7 @@ impl CrossSection {
             if copper.thickness_m > 0.0 && strip.width_m > 0.0 && 2.0 * copper.undercut_m >= strip.width_m {
                 problems.push(fault(
                     "undercut-exceeds-strip",
-                    &format!("strip[{index}].width"),
+                    &format!("strip[{}].width", index + 1),
                     format!("an undercut of {} per side leaves no top on a strip of {}", mm(copper.undercut_m), mm(strip.width_m)),
                     "make the strip wider than twice the undercut, or the undercut smaller",
                 ));
@@ -206,7 +206,7 @@ impl CrossSection {
             if !(strip.width_m.is_finite() && strip.width_m >= SMALLEST_SIZE_M) {
                 problems.push(fault(
                     "strip-width",
-                    &format!("strip[{index}].width"),
+                    &format!("strip[{}].width", index + 1),
                     format!("the strip is {} wide; more than zero is due", mm(strip.width_m)),
                     "give the width at the foot, such as \"1.2 mm\"",
                 ));
@@ -214,7 +214,7 @@ impl CrossSection {
             if index > 0 && !(strip.gap_before_m.is_finite() && strip.gap_before_m >= SMALLEST_SIZE_M) {
                 problems.push(fault(
                     "strip-overlap",
-                    &format!("strip[{index}].gap-before"),
+                    &format!("strip[{}].gap-before", index + 1),
                     format!("the gap before the strip is {}: it overlaps or touches the strip before it", mm(strip.gap_before_m)),
                     "give a gap of more than zero, or join the two into one strip",
                 ));
@@ -270,10 +270,10 @@ impl CrossSection {
             return;
         }
         for (index, strip) in self.strips.iter().enumerate().skip(1) {
-            if strip.gap_before_m <= 2.0 * coat.on_copper_m {
+            if strip.gap_before_m > 0.0 && strip.gap_before_m <= 2.0 * coat.on_copper_m {
                 problems.push(fault(
                     "coat-fills-gap",
-                    &format!("strip[{index}].gap-before"),
+                    &format!("strip[{}].gap-before", index + 1),
                     format!(
                         "the gap of {} is filled by a coat of {} from both sides; only a coat that leaves the gap open is solved",
                         mm(strip.gap_before_m),
@@ -340,7 +340,7 @@ impl CrossSection {
             let ratio = self.strips.iter().map(|other| other.width_m).fold(0.0, f64::max) / least.min(thickness).min(strip.width_m);
             if ratio > WIDTH_RATIO_AT_MOST {
                 problems.push(finding(
-                    format!("the widest strip is {ratio:.1e} times as wide as the smallest of gap, thickness and width of strip {index}; up to {WIDTH_RATIO_AT_MOST:.0e} is solved"),
+                    format!("the widest strip is {ratio:.1e} times as wide as the smallest of gap, thickness and width of strip {}; up to {WIDTH_RATIO_AT_MOST:.0e} is solved", index + 1),
                     "round the very small size to zero (copper) or widen the gap",
                 ));
             }
@@ -368,7 +368,7 @@ fn check_layers(layers: &[LayerOf]) -> Vec<Problem> {
         ));
     }
     for (index, layer) in layers.iter().enumerate() {
-        let key = |name: &str| format!("layer[{index}].{name}");
+        let key = |name: &str| format!("layer[{}].{name}", index + 1);
         if !(layer.thickness_m.is_finite() && layer.thickness_m >= SMALLEST_SIZE_M) {
             problems.push(fault(
                 "layer-thickness",

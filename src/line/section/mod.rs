@@ -62,8 +62,12 @@ mod loss;
 mod panels;
 mod solve;
 mod stackup;
+mod surface;
+mod walls;
 
 pub use geometry::{CoatOf, CopperOf, CrossSection, HousingOf, LayerOf, STRIPS_AT_MOST, StripOf};
-pub use loss::{ModeLoss, Plating, Roughness, Surface, Surfaces, WallShares, loss, skin_depth_m};
+pub use loss::{ModeLoss, loss};
 pub use solve::{Line, Mode, Pair, Solved, solve};
 pub use stackup::Stackup;
+pub use surface::{Plating, Roughness, Surface, Surfaces, skin_depth_m};
+pub use walls::WallShares;
