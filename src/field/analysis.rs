@@ -17,6 +17,7 @@ use crate::base::Point;
 use crate::base::Problem;
 use crate::line::AsBuilt;
 use crate::line::C_M_PER_S;
+use crate::line::StaticsModel;
 use crate::line::Strip;
 use crate::order::Side;
 
@@ -339,9 +340,12 @@ fn sheet_factor(feed: &Feed, geometry: &Geometry, plain: Sheet, highest_hz: f64,
         undercut_m: 0.0,
         roughness_m: 0.0,
         conductivity_s_per_m: conductor.conductivity_s_per_m,
+        plating: None,
         lid_m: None,
         widening_m: 0.0,
         lossless: false,
+        // The rule differentiates the closed form of the impedance.
+        statics: StaticsModel::ClosedForm,
     };
     let wanted = Strip::new(&board, last - first).at(f_hz).conductor_np_per_m;
     let found = line.gamma_per_m.re;
