@@ -15,6 +15,7 @@
 //! | [`family`] | requirement -> prototype -> dimensions -> layout, one file each |
 //! | [`network`] | layout + as-built -> S-parameters, figures, Touchstone |
 //! | [`artwork`] | layout -> board |
+//! | [`field`] | board -> S-parameters, numerically |
 //! | [`refine`] | from response back to dimensions |
 //! | [`checks`] | design rules and microwave sense |
 //! | [`package`] | every output file |
@@ -26,6 +27,7 @@ pub mod checks;
 pub mod cli;
 pub mod dimensions;
 pub mod family;
+pub mod field;
 pub mod layout;
 pub mod line;
 pub mod network;

@@ -12,6 +12,7 @@ pub mod problems;
 mod read;
 mod section;
 mod section_file;
+mod solve;
 mod table;
 
 use std::io::IsTerminal;
@@ -43,6 +44,7 @@ enum Command {
     Dimension(dimension::Arguments),
     Draw(make::DrawArguments),
     Predict(predict::Arguments),
+    Solve(solve::Arguments),
     Line(line::Arguments),
     Check(check::Arguments),
     List(list::List),
@@ -113,6 +115,7 @@ pub fn run() -> ExitCode {
         Command::Dimension(arguments) => dimension::run(arguments, voice),
         Command::Draw(arguments) => make::run_draw(arguments, voice),
         Command::Predict(arguments) => predict::run(arguments, voice),
+        Command::Solve(arguments) => solve::run(arguments, voice),
         Command::Line(arguments) => line::run(arguments, voice),
         Command::Check(arguments) => check::run(arguments, voice),
         Command::List(arguments) => list::run(arguments, voice),
