@@ -64,7 +64,7 @@ impl Case {
     }
 
     pub fn order(&self) -> Order {
-        let source = Source::from_text("random.toml", &self.text());
+        let source = Source::from_text("random.toml", self.text());
         order::read(&source, &family::keys()).unwrap_or_else(|problems| panic!("{problems:?}\n{}", self.text())).0
     }
 }

@@ -82,9 +82,9 @@ fn half_the_size_at_twice_the_frequency_is_the_same_response() {
         let f = wide_sweep(&set);
         let doubled: Vec<f64> = f.iter().map(|f| 2.0 * f).collect();
         let (a, b) = (respond(&set, full, &f), respond(&small, half, &doubled));
-        for i in 0..f.len() {
+        for (f, (a, b)) in f.iter().zip(a.s.iter().zip(&b.s)) {
             // Both are drawn in whole nanometres: half a nanometre on a gap of 50 um is 1e-5 of a coupling, and Q magnifies it near the edges.
-            assert!((a.s[i][1] - b.s[i][1]).norm() < 2e-3, "{} Hz: {} {}", f[i], a.s[i][1], b.s[i][1]);
+            assert!((a[1] - b[1]).norm() < 2e-3, "{f} Hz: {} {}", a[1], b[1]);
         }
     }
 }
