@@ -33,6 +33,8 @@ const MAX_SOLVED_STEPS: usize = 14;
 const REACHED: f64 = 1e-9;
 /// Step at which the growth of impedance with frequency is taken from the solved single strip once: the width is then known well enough for it.
 const GROWTH_STEP: usize = 2;
+/// And again when ln(width) has changed by more than this since: the ratio of the two growths moves a ten-thousandth as much.
+const GROWTH_REACH: f64 = 1e-4;
 /// Residual that is good enough when no step lessens it any more.
 const GOOD: f64 = 1e-7;
 /// Bracket in ln(size) of the sure search on solved impedances: what it finds is polished, or only reported.
@@ -193,7 +195,11 @@ pub fn pair_for_impedances(board: &AsBuilt, z0e_ohm: f64, z0o_ohm: f64, f_hz: f6
                 return Ok(found);
             }
             let start = search.nested(SOLVED_CLOSE)?;
-            Ok(search.by_quasi_newton(&closed, start).unwrap_or(start))
+            // What the bracket holds may be a closed form's value that stood in; only a solved pair is an answer.
+            search.by_quasi_newton(&closed, start).ok_or_else(|| {
+                let message = format!("no pair with a solved cross-section is found for {z0e_ohm:.3} ohm even and {z0o_ohm:.3} ohm odd");
+                Unreachable::not_a_line(0.0, message, "ask for a stronger coupling, or for impedances nearer to those of usual strips")
+            })
         }
     }
 }
@@ -209,7 +215,14 @@ struct PairSearch {
 impl PairSearch {
     /// How far the pair is from what is wanted.
     fn residual(&self, ln_w: f64, ln_s: f64) -> [f64; 2] {
-        let [even, odd] = Pair::new(&self.board, ln_w.exp(), ln_s.exp()).impedances_ohm(self.f_hz);
+        let pair = Pair::new(&self.board, ln_w.exp(), ln_s.exp());
+        let is_refused = self.board.statics == StaticsModel::Numerical && pair.error_estimate().is_none();
+        if is_refused && ln_s > self.board.thickness_m.ln() {
+            // Too far apart to be solved together: two single strips. The closed form, which knows no lid, would bring a coupling back.
+            let z0_ohm = Strip::new(&self.board, ln_w.exp()).at(self.f_hz).z0_ohm;
+            return [z0_ohm.ln() - self.ln_mean, -self.ln_ratio];
+        }
+        let [even, odd] = pair.impedances_ohm(self.f_hz);
         [0.5 * (even * odd).ln() - self.ln_mean, (even / odd).ln() - self.ln_ratio]
     }
 
@@ -260,14 +273,18 @@ impl PairSearch {
         let mut slopes = [0, 1].map(|i| [(by_w[i] - here[i]) / SLOPE_STEP, (by_s[i] - here[i]) / SLOPE_STEP]);
         let size = |r: [f64; 2]| r[0].abs().max((r[1] / self.ln_ratio).abs());
         let mut ln_growth = 0.0;
+        let mut growth_taken_at = None;
         let mut now = self.solved_residual(closed, at, ln_growth)?;
         for step_number in 0..MAX_SOLVED_STEPS {
-            if step_number == GROWTH_STEP {
+            // Once, and again at the end where the width has moved on since.
+            let moved = growth_taken_at.is_none_or(|ln_w: f64| (at[0] - ln_w).abs() > GROWTH_REACH);
+            if moved && (step_number == GROWTH_STEP || size(now) < REACHED) {
                 let [even, odd] = Pair::new(&self.board, at[0].exp(), at[1].exp()).impedances_ohm(self.f_hz);
                 let ln_missing = 0.5 * (even * odd).ln() - self.ln_mean - now[0];
-                (ln_growth, now[0]) = (ln_missing, now[0] + ln_missing);
+                (ln_growth, now[0]) = (ln_growth + ln_missing, now[0] + ln_missing);
+                growth_taken_at = Some(at[0]);
             }
-            if step_number >= GROWTH_STEP && size(now) < REACHED {
+            if size(now) < REACHED {
                 break;
             }
             let [[a, b], [c, d]] = slopes;
@@ -283,7 +300,7 @@ impl PairSearch {
                 return None;
             }
             let after = self.solved_residual(closed, next, ln_growth)?;
-            if step_number >= GROWTH_STEP && size(after) >= size(now) && size(now) < GOOD {
+            if growth_taken_at.is_some() && size(after) >= size(now) && size(now) < GOOD {
                 break;
             }
             let length = step[0] * step[0] + step[1] * step[1];
