@@ -351,12 +351,12 @@ fn pair_answer(pair: &Pair, at: At, text: &mut String, json: &mut Map<String, Va
     let solved = [("even", [z.even, eps.even]), ("odd", [z.odd, eps.odd])];
     let _ = write!(
         text,
-        "pair, width {}, gap {}\n{}{}  coupling                {coupling:.5} ({:.2} dB)\n  open-end extension      even {}, odd {}\n{}{}",
+        "pair, width {}, gap {}\n{}{}  coupling                {coupling:.5} ({})\n  open-end extension      even {}, odd {}\n{}{}",
         millimetres(pair.width_m()),
         millimetres(pair.gap_m()),
         mode_lines(&modes.even, [z.even, eps.even], &lossy.even, at, "even "),
         mode_lines(&modes.odd, [z.odd, eps.odd], &lossy.odd, at, "odd "),
-        20.0 * coupling.log10(),
+        coupling_level(coupling),
         millimetres(extensions.even),
         millimetres(extensions.odd),
         closed_form_lines(&solved, &closed, json),
@@ -377,6 +377,13 @@ fn pair_answer(pair: &Pair, at: At, text: &mut String, json: &mut Map<String, Va
     json.insert("model".into(), json!(model));
     json.insert("trusted_up_to_hz".into(), json!(pair.trusted_up_to_hz()));
     pair.problems(at.f_hz.max(at.loss_hz))
+}
+
+/// A coupling in dB; below the solver's rounding there is none to speak of.
+pub(super) fn coupling_level(coupling: f64) -> String {
+    /// Even and odd impedance agree to this by rounding alone.
+    const ROUNDING: f64 = 1e-8;
+    if coupling > ROUNDING { format!("{:.2} dB", 20.0 * coupling.log10()) } else { "none".into() }
 }
 
 /// Which model gave the numbers.

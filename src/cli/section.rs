@@ -4,7 +4,7 @@ use std::fmt::Write as _;
 
 use serde_json::{Map, Value, json};
 
-use super::line::{At, DB_PER_NP, check_closed_form, closed_form_lines, gigahertz, millimetres};
+use super::line::{At, DB_PER_NP, check_closed_form, closed_form_lines, coupling_level, gigahertz, millimetres};
 use super::section_file::SectionFile;
 use crate::base::Place;
 use crate::base::Problem;
@@ -73,7 +73,7 @@ pub fn answer(file: &SectionFile, accuracy: f64, at: At) -> Result<Answer, Vec<P
     }
     if let [(_, even), (_, odd)] = modes.as_slice() {
         let coupling = (even.z0_ohm() - odd.z0_ohm()) / (even.z0_ohm() + odd.z0_ohm());
-        let _ = writeln!(answer.text, "  coupling                {coupling:.5} ({:.2} dB)", 20.0 * coupling.log10());
+        let _ = writeln!(answer.text, "  coupling                {coupling:.5} ({})", coupling_level(coupling));
         answer.json.insert("coupling".into(), json!(coupling));
     }
     let _ = writeln!(answer.text, "  model                   {MODEL}, error estimate {:.1e}", solved.error_estimate);
