@@ -12,7 +12,7 @@ use super::kernel::{Kernels, near_share};
 use super::near::{Near, rows_of_groups};
 use super::stack::{EPS0, MU0, Stack};
 
-/// Where the far part may stop; see [`Modes::new`].
+/// Where the far part may stop; see `Modes::new`.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Split {
     /// The highest mode decays as exp(-2 times this) over the thinner layer at the copper.

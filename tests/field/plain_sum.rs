@@ -72,7 +72,7 @@ fn the_plain_double_sum_over_modes_gives_the_same_matrix() {
             for i in 0..n {
                 for j in 0..n {
                     let (p, q) = (transforms[i], transforms[j]);
-                    let mut sum = p.2 * q.2 * scalar.re * -1.0 / (omega * omega);
+                    let mut sum = -(p.2 * q.2 * scalar.re) / (omega * omega);
                     if p.0 == q.0 {
                         sum += p.1 * q.1 * vector.re;
                     }
