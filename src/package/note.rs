@@ -503,33 +503,33 @@ fn is_resonator(board: &Board, net: &str, roles: &BTreeSet<Role>) -> bool {
 
 fn process(note: &mut Note, order: &Order) {
     note.section("PROCESS");
-    match order.laminate.kind {
-        LaminateKind::Ptfe => {
-            note.bullet("PTFE: prepare hole walls by plasma or sodium etch before plating; plate soon after.");
-            note.bullet("No mechanical scrubbing: it stretches the sheet and moves the gaps.");
-            note.bullet("Drill and rout with entry and backing boards, sharp tools, slow feeds; no smear, no lifted foil.");
-        }
-        LaminateKind::Hydrocarbon => {
-            note.bullet("Hydrocarbon thermoset: sharp tools, dust drawn off; hole walls desmeared as the maker of the laminate says.")
-        }
-        LaminateKind::Ceramic => {
-            note.bullet("Fired ceramic: brittle; scribe or laser-cut, no clamping on edges, holes as the substrate's maker says.")
-        }
-        LaminateKind::GlassEpoxy => note.bullet("Glass-epoxy: the usual process; strips along the warp of the weave."),
-        LaminateKind::Other => note.bullet("Process as the maker of the laminate says."),
-    }
+    note.standing(match order.laminate.kind {
+        LaminateKind::Ptfe => "process ptfe",
+        LaminateKind::Hydrocarbon => "process hydrocarbon",
+        LaminateKind::Ceramic => "process ceramic",
+        LaminateKind::GlassEpoxy => "process glass-epoxy",
+        LaminateKind::Other => "process other",
+    });
 }
 
 fn cautions(note: &mut Note, order: &Order) {
     note.section("CAUTIONS");
     if order.laminate.kind == LaminateKind::Ptfe {
-        note.bullet("PTFE gives off toxic fumes when overheated: no open flame, no grinding dry; keep tobacco away from its dust.");
+        note.standing("cautions ptfe");
     }
-    note.bullet("Dust of laminate (glass, ceramic, resin) harms lungs and eyes: extraction and masks when drilling, routing and cutting.");
-    note.bullet("Etching, plating and finishing baths are corrosive or toxic: trained people, ventilation, disposal as the law says.");
-    note.bullet("Soldering gives off fumes and burns: ventilate.");
-    note.bullet(
-        "In use the filter may carry radio-frequency power: no touching of live conductors, lids closed, no radiation into people.",
-    );
-    note.bullet("Local codes and licensed practice come before anything written here.");
+    note.standing("cautions");
+}
+
+/// The note's standing text, by heading.
+const STANDING: &str = include_str!("../../templates/fabrication-note.txt");
+
+impl Note {
+    /// Bullets of the standing text under a heading.
+    fn standing(&mut self, heading: &str) {
+        let heading = format!("[{heading}]");
+        let lines = STANDING.lines().skip_while(|line| *line != heading).skip(1).take_while(|line| !line.starts_with('['));
+        for line in lines.filter(|line| !line.is_empty()) {
+            self.bullet(line);
+        }
+    }
 }
