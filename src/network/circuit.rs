@@ -4,6 +4,14 @@ use std::rc::Rc;
 
 use num_complex::Complex64;
 
+use super::block::Block;
+use super::block::INNER_OHM;
+use super::block::gap_s;
+use super::block::ground_s;
+use super::block::junction_s;
+use super::block::ladder_s;
+use super::block::line_s;
+use super::block::transformer_s;
 use super::curve::Curves;
 use super::join::JoinPlan;
 use super::join::Scratch;
@@ -19,33 +27,15 @@ use crate::line::Coplanar;
 use crate::line::Models;
 use crate::line::Pair;
 use crate::line::Strip;
+use crate::line::gap::gap;
 use crate::line::open_end;
 use crate::line::step;
 use crate::order::LaunchShape;
 
-/// Reference impedance of every inner joint; any real value gives the same result.
-const INNER_OHM: f64 = 50.0;
 /// Straight pieces that stand for a taper; more changes |S11| by less than 1e-4 on the launches of the embedded classes.
 const TAPER_PIECES: usize = 6;
 /// With fewer frequencies than this the constants are computed at each of them instead of being interpolated.
 const INTERPOLATE_FROM: usize = 48;
-
-/// What one scattering block of the circuit is.
-#[derive(Clone, Debug)]
-enum Block {
-    /// A single strip: index into the strips, length.
-    Line { strip: usize, length_m: f64 },
-    /// A pad between grounds.
-    Coplanar { line: usize, length_m: f64 },
-    /// Two coupled strips, nodes near 1, near 2, far 1, far 2.
-    Pair { pair: usize, length_m: f64 },
-    /// Open end of a strip.
-    OpenEnd { strip: usize },
-    /// Step in width: series inductance either side of a shunt capacitance.
-    Step { first_h: f64, shunt_f: f64, second_h: f64 },
-    /// From the reference impedance of a port to the inner one.
-    Reference { gamma: f64 },
-}
 
 /// Constants of one strip at one frequency: index, impedance, attenuation, conductance and extension of its open end.
 type StripConstants = [f64; 5];
@@ -87,57 +77,68 @@ impl Circuit {
             ports_ohm,
             lossless: book.built().lossless,
         };
-        let mut nodes: Vec<Vec<usize>> = Vec::new();
-        let mut fresh = layout.nodes.len();
+        let mut joints = Joints { blocks: Vec::new(), nodes: Vec::new(), fresh: layout.nodes.len() };
         let mut external = layout.ports.clone();
-        let width = |node: usize| layout.nodes[node].width();
         for placed in &layout.parts {
-            let block = match &placed.part {
-                Part::Lines { widths, length, .. } if widths.len() == 1 => {
-                    Block::Line { strip: circuit.strip(book, widths[0]), length_m: length.m() }
-                }
-                Part::Lines { widths, gaps, length } if widths.len() == 2 && widths[0] == widths[1] => {
-                    Block::Pair { pair: circuit.pair(book, widths[0], gaps[0]), length_m: length.m() }
-                }
-                Part::Lines { widths, .. } => {
-                    return Err(Problem::error(
-                        "strips-not-modelled",
-                        Place::Whole,
-                        format!("{} coupled strips of unequal width have no line model here", widths.len()),
-                        "use sections of two equal strips",
-                    ));
-                }
-                Part::OpenEnd => Block::OpenEnd { strip: circuit.strip(book, width(placed.nodes[0])) },
-                Part::Step => step_block(&book.strip(width(placed.nodes[0])), &book.strip(width(placed.nodes[1]))),
+            match &placed.part {
                 Part::Launch { port, shape, run } => {
                     if planes == Planes::Edge {
                         let mut end = placed.nodes[0];
-                        for piece in circuit.launch(book, shape, *run, width(end)) {
-                            circuit.blocks.push(piece);
-                            nodes.push(vec![end, fresh]);
-                            end = fresh;
-                            fresh += 1;
+                        for piece in circuit.launch(book, shape, *run, layout.nodes[end].width()) {
+                            end = joints.onward(end, piece);
                         }
                         if let Some(place) = external.get_mut(port - 1) {
                             *place = end;
                         }
                     }
-                    continue;
                 }
-            };
-            circuit.blocks.push(block);
-            nodes.push(placed.nodes.clone());
+                part => circuit.part(book, layout, part, &placed.nodes, &mut joints)?,
+            }
         }
         for (place, z0_ohm) in external.iter_mut().zip(ports_ohm) {
             if z0_ohm != INNER_OHM {
-                circuit.blocks.push(Block::Reference { gamma: (INNER_OHM - z0_ohm) / (INNER_OHM + z0_ohm) });
-                nodes.push(vec![fresh, *place]);
-                *place = fresh;
-                fresh += 1;
+                let outer = joints.node();
+                joints.push(Block::Reference { gamma: (INNER_OHM - z0_ohm) / (INNER_OHM + z0_ohm) }, vec![outer, *place]);
+                *place = outer;
             }
         }
-        circuit.plan = JoinPlan::new(&nodes, &external).ok_or_else(not_joined)?;
+        circuit.blocks = joints.blocks;
+        circuit.plan = JoinPlan::new(&joints.nodes, &external).ok_or_else(not_joined)?;
         Ok(circuit)
+    }
+
+    /// The blocks of a part other than a launch.
+    fn part(&mut self, book: &Book, layout: &Layout, part: &Part, nodes: &[usize], joints: &mut Joints) -> Result<(), Problem> {
+        let width = |arm: usize| layout.nodes[nodes[arm]].width();
+        let block = match part {
+            Part::Lines { widths, length, .. } if widths.len() == 1 => {
+                Block::Line { strip: self.strip(book, widths[0]), length_m: length.m() }
+            }
+            Part::Lines { widths, gaps, length } if widths.len() == 2 && widths[0] == widths[1] => {
+                Block::Pair { pair: self.pair(book, widths[0], gaps[0]), length_m: length.m() }
+            }
+            Part::Lines { widths, .. } => {
+                return Err(Problem::error(
+                    "strips-not-modelled",
+                    Place::Whole,
+                    format!("{} coupled strips of unequal width have no line model here", widths.len()),
+                    "use sections of two equal strips",
+                ));
+            }
+            Part::OpenEnd => Block::OpenEnd { strip: self.strip(book, width(0)) },
+            Part::Step => step_block(&book.strip(width(0)), &book.strip(width(1))),
+            Part::Gap { width: across } => {
+                let model = gap(&book.strip(width(0)), across.m());
+                Block::Gap { first_f: model.shunt_f, series_f: model.series_f, second_f: model.shunt_f }
+            }
+            Part::Bend(_) => Block::Ladder { first_h: 0.0, shunt_f: 0.0, second_h: 0.0 },
+            Part::Tee => Block::Junction { arms: 3, shunt_f: 0.0 },
+            Part::Cross => Block::Junction { arms: 4, shunt_f: 0.0 },
+            Part::Via { .. } => Block::Ground { inductance_h: 0.0, ohm_at_1_ghz: 0.0 },
+            Part::Launch { .. } => return Ok(()),
+        };
+        joints.push(block, nodes.to_vec());
+        Ok(())
     }
 
     fn strip(&mut self, book: &Book, width: Nm) -> usize {
@@ -269,7 +270,14 @@ impl Circuit {
                     ]);
                 }
                 Block::OpenEnd { strip } => out[0] = ends[*strip],
-                Block::Step { first_h, shunt_f, second_h } => out.copy_from_slice(&step_s([*first_h, *shunt_f, *second_h], f_hz)),
+                Block::Ladder { first_h, shunt_f, second_h } => out.copy_from_slice(&ladder_s([*first_h, *shunt_f, *second_h], f_hz)),
+                Block::Gap { first_f, series_f, second_f } => out.copy_from_slice(&gap_s([*first_f, *series_f, *second_f], f_hz)),
+                Block::Junction { arms, shunt_f } => junction_s(*arms, *shunt_f, f_hz, out),
+                Block::Transformer { ratio } => out.copy_from_slice(&transformer_s(*ratio)),
+                Block::Ground { inductance_h, ohm_at_1_ghz } => {
+                    let ohm = if self.lossless { 0.0 } else { ohm_at_1_ghz * (f_hz * 1e-9).sqrt() };
+                    out[0] = ground_s(*inductance_h, ohm, f_hz);
+                }
                 Block::Reference { gamma } => {
                     let through = Complex64::from((1.0 - gamma * gamma).sqrt());
                     out.copy_from_slice(&[Complex64::from(*gamma), through, through, Complex64::from(-gamma)]);
@@ -298,12 +306,30 @@ fn pair_constants(pair: &Pair, f_hz: f64) -> PairConstants {
     [even.eps_eff.sqrt(), even.z0_ohm, even.alpha_np_per_m(), odd.eps_eff.sqrt(), odd.z0_ohm, odd.alpha_np_per_m()]
 }
 
-/// S11 and S21 of a line between the inner reference impedance.
-fn line_s(beta_rad_per_m: f64, alpha_np_per_m: f64, z0_ohm: f64, length_m: f64) -> (Complex64, Complex64) {
-    let t = Complex64::from_polar((-alpha_np_per_m * length_m).exp(), -beta_rad_per_m * length_m);
-    let gamma = (z0_ohm - INNER_OHM) / (z0_ohm + INNER_OHM);
-    let inverse = (1.0 - gamma * gamma * t * t).inv();
-    (gamma * (1.0 - t * t) * inverse, (1.0 - gamma * gamma) * t * inverse)
+/// The blocks so far with the nodes each joins, and the next node that is free.
+struct Joints {
+    blocks: Vec<Block>,
+    nodes: Vec<Vec<usize>>,
+    fresh: usize,
+}
+
+impl Joints {
+    fn node(&mut self) -> usize {
+        self.fresh += 1;
+        self.fresh - 1
+    }
+
+    fn push(&mut self, block: Block, nodes: Vec<usize>) {
+        self.blocks.push(block);
+        self.nodes.push(nodes);
+    }
+
+    /// A two-port from a node to a new one, which is returned.
+    fn onward(&mut self, from: usize, block: Block) -> usize {
+        let to = self.node();
+        self.push(block, vec![from, to]);
+        to
+    }
 }
 
 /// The step from one strip to the next, whichever is wider.
@@ -311,17 +337,5 @@ fn step_block(from: &Strip, to: &Strip) -> Block {
     let model = step(from, to);
     let (wide, narrow) = (model.wide_inductance_h, model.narrow_inductance_h);
     let (first_h, second_h) = if from.width_m() >= to.width_m() { (wide, narrow) } else { (narrow, wide) };
-    Block::Step { first_h, shunt_f: model.capacitance_f, second_h }
-}
-
-/// The step as series inductance, shunt capacitance, series inductance.
-fn step_s([first_h, shunt_f, second_h]: [f64; 3], f_hz: f64) -> [Complex64; 4] {
-    let w = std::f64::consts::TAU * f_hz;
-    let (l1, l2) = (Complex64::new(0.0, w * first_h), Complex64::new(0.0, w * second_h));
-    let y = Complex64::new(0.0, w * shunt_f);
-    let (a, b, c, d) = (1.0 + l1 * y, l1 + l2 + l1 * l2 * y, y, 1.0 + l2 * y);
-    let (b, c) = (b / INNER_OHM, c * INNER_OHM);
-    let inverse = (a + b + c + d).inv();
-    let through = 2.0 * inverse;
-    [(a + b - c - d) * inverse, through, through, (d + b - c - a) * inverse]
+    Block::Ladder { first_h, shunt_f: model.capacitance_f, second_h }
 }
