@@ -78,6 +78,7 @@
 //! | 10.2 | 0.1 | 8 | .13 +4 | ..1 +1 | .13 -3 | ..3 -5 | ..3 -5 | ..3 -6 | ..3 -10 |
 
 mod array;
+mod array_inverse;
 mod as_built;
 mod book;
 mod coplanar;
@@ -101,6 +102,7 @@ pub mod stripline;
 mod surface;
 
 pub use array::{Array, ArrayModes};
+pub use array_inverse::{ArrayTarget, array_for};
 pub use as_built::{AsBuilt, StaticsModel, plating_of};
 pub use book::Book;
 pub use coplanar::Coplanar;

@@ -10,7 +10,7 @@ use std::hint::black_box;
 use std::time::Instant;
 
 use stripwright::line::section::{CopperOf, CrossSection, HousingOf, LayerOf, Stackup, StripOf, solve};
-use stripwright::line::{Array, AsBuilt, StaticsModel};
+use stripwright::line::{Array, ArrayTarget, AsBuilt, StaticsModel, array_for};
 
 const H: f64 = 0.508e-3;
 const COPPER: CopperOf = CopperOf { thickness_m: 35e-6, undercut_m: 0.0 };
@@ -95,6 +95,15 @@ fn main() {
     print(
         "loss of 9 unequal strips, once a geometry",
         best(6, |i| Array::new(&built, &widths.iter().map(|w| w * vary(i + 100)).collect::<Vec<_>>(), &gaps[1..]).at(2e9)),
+        None,
+    );
+    let target = ArrayTarget::of(&array);
+    print(
+        "N = 9: impedances and couplings to widths and gaps",
+        best(5, |i| {
+            let own_ohm = target.own_ohm.iter().map(|ohm| ohm * vary(i + 1)).collect();
+            array_for(&built, &ArrayTarget { own_ohm, couplings: target.couplings.clone() }).unwrap()
+        }),
         None,
     );
     print("loss of a pair", best(20, |i| stackup.pair_loss(1.2e-3 * vary(i), 0.2e-3).unwrap()), None);
