@@ -63,6 +63,15 @@ struct CoupledLaw {
     odd_gap: f64,
 }
 
+/// How far a strip's effective permittivity has risen towards the laminate's, and what the neighbour does to that.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Rise {
+    /// P of the single strip.
+    pub(super) single: f64,
+    /// Factor on P when the neighbour has the same voltage, and the opposite one.
+    pub(super) by_neighbour: EvenOdd<f64>,
+}
+
 impl Dispersion {
     /// For a single strip.
     pub(super) fn single(u: f64, er: f64) -> Dispersion {
@@ -122,23 +131,31 @@ impl Dispersion {
 
     /// Even and odd effective permittivity at `fn` from their static values.
     pub(super) fn pair_eps_eff(&self, f_n: f64, eps_eff_static: EvenOdd<f64>) -> EvenOdd<f64> {
-        let Some(law) = &self.coupled else {
-            return EvenOdd { even: self.single_eps_eff(f_n, eps_eff_static.even), odd: self.single_eps_eff(f_n, eps_eff_static.odd) };
-        };
+        let Rise { single, by_neighbour } = self.rise(f_n);
+        EvenOdd {
+            even: self.raised(eps_eff_static.even, single * by_neighbour.even),
+            odd: self.raised(eps_eff_static.odd, single * by_neighbour.odd),
+        }
+    }
+
+    /// P of the laws at `fn`, taken apart: that of the single strip and what a neighbour makes of it in either mode.
+    pub(super) fn rise(&self, f_n: f64) -> Rise {
         let [p12, p34] = self.common(f_n);
+        let single = p12 * ((p34 + 0.1844) * f_n).powf(1.5763);
+        let Some(law) = &self.coupled else { return Rise { single, by_neighbour: EvenOdd { even: 1.0, odd: 1.0 } } };
         let p6 = law.p5 * (-(f_n / 18.0).powf(0.368)).exp();
         let p7 = 1.0 + p6 * law.even_gap;
-        let even = p12 * ((p34 + 0.1844 * p7) * f_n).powf(1.5763);
         let p9 = law.p8 + law.p9_slope * (-(f_n / 20.0).powf(1.424)).exp_m1();
         let p11 = law.p11_slope * (-0.3401 * f_n).exp_m1();
         let p12_odd = p9 + (1.0 - p9) / law.p12_fall;
         let p14 = 0.8928 - 0.1072 * (-0.42 * (f_n / 20.0).powf(3.215)).exp_m1();
         let p15 = (1.0 - 0.8928 * (1.0 + p11) * p12_odd * law.odd_gap / p14).abs();
-        let odd = p12 * ((p34 + 0.1844) * f_n * p15).powf(1.5763);
-        EvenOdd { even: self.raised(eps_eff_static.even, even), odd: self.raised(eps_eff_static.odd, odd) }
+        let even = ((p34 + 0.1844 * p7) / (p34 + 0.1844)).powf(1.5763);
+        Rise { single, by_neighbour: EvenOdd { even, odd: p15.powf(1.5763) } }
     }
 
-    fn raised(&self, eps_eff_static: f64, p: f64) -> f64 {
+    /// Effective permittivity from its static value and P.
+    pub(super) fn raised(&self, eps_eff_static: f64, p: f64) -> f64 {
         self.er - (self.er - eps_eff_static) / (1.0 + p)
     }
 

@@ -77,6 +77,8 @@
 //! | 10.2 | 0.1 | 2.5 | .33 +10 | .33 +6 | ... +1 | ..1 -2 | ..3 -3 | ..3 -9 | ..3 -24 |
 //! | 10.2 | 0.1 | 8 | .13 +4 | ..1 +1 | .13 -3 | ..3 -5 | ..3 -5 | ..3 -6 | ..3 -10 |
 
+mod array;
+mod array_inverse;
 mod as_built;
 mod book;
 mod coplanar;
@@ -84,6 +86,7 @@ mod coupled;
 mod dispersion;
 pub mod gap;
 mod inverse;
+mod many;
 mod mode;
 mod models;
 mod numerical;
@@ -98,6 +101,8 @@ mod strip;
 pub mod stripline;
 mod surface;
 
+pub use array::{Array, ArrayModes};
+pub use array_inverse::{ArrayTarget, array_for};
 pub use as_built::{AsBuilt, StaticsModel, plating_of};
 pub use book::Book;
 pub use coplanar::Coplanar;

@@ -8,6 +8,8 @@ use super::StaticsModel;
 use super::coupled::EvenOdd;
 use super::coupled::air_impedances_ohm;
 use super::coupled::effective_permittivities;
+use super::many;
+use super::many::Capacitances;
 use super::numerical;
 use super::section;
 use super::single::air_impedance_ohm;
@@ -161,6 +163,26 @@ pub(super) fn pair(board: &AsBuilt, width_m: f64, gap_m: f64) -> Statics<EvenOdd
             Ok(pair) => Statics {
                 modes: EvenOdd { even: guess.even.with(&pair.even), odd: guess.odd.with(&pair.odd) },
                 error_estimate: Some(pair.error_estimate),
+                not_solved: None,
+            },
+            Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },
+        },
+    }
+}
+
+/// Static capacitances of N strips; sizes as drawn. The receding walls' part is the closed form's.
+pub(super) fn array(board: &AsBuilt, widths_m: &[f64], gaps_m: &[f64]) -> Statics<Capacitances> {
+    let guess = many::closed_form(board, widths_m, gaps_m);
+    match board.statics {
+        StaticsModel::ClosedForm => Statics::closed_form(guess),
+        StaticsModel::Numerical => match numerical::array(board, widths_m, gaps_m) {
+            Ok(solved) => Statics {
+                modes: Capacitances {
+                    laminate: solved.capacitance_f_per_m.concat(),
+                    air: solved.air_capacitance_f_per_m.concat(),
+                    air_recession: guess.air_recession,
+                },
+                error_estimate: Some(solved.error_estimate),
                 not_solved: None,
             },
             Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },

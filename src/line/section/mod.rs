@@ -59,6 +59,7 @@ mod green;
 mod inverse;
 mod logarithm;
 mod loss;
+mod modal;
 mod panels;
 mod solve;
 mod stackup;
@@ -66,7 +67,8 @@ mod surface;
 mod walls;
 
 pub use geometry::{CoatOf, CopperOf, CrossSection, HousingOf, LayerOf, STRIPS_AT_MOST, StripOf};
-pub use loss::{ModeLoss, loss};
+pub use loss::{MatrixLoss, ModeLoss, loss, matrix_loss};
+pub use modal::Modes;
 pub use solve::{Line, Mode, Pair, Solved, solve};
 pub use stackup::Stackup;
 pub use surface::{Plating, Roughness, Surface, Surfaces, skin_depth_m};

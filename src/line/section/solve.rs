@@ -27,8 +27,10 @@ const FLOOR: f64 = 2e-6;
 const GRIDS: [usize; 7] = [6, 8, 12, 16, 24, 32, 48];
 /// Panels of all strips together at most: five matrices of that size take 100 MB.
 const UNKNOWNS_AT_MOST: usize = 1600;
-/// Coarser of the two grids for arrays: C within 0.1 %, and N = 9 in time.
+/// Coarser of the two grids for more than [`FEW`] strips: C within 0.1 %, and N = 9 in time.
 const ARRAY: Grid = Grid::new(6);
+/// Strips up to which an array has the panels of the fast pair.
+const FEW: usize = 4;
 /// An estimate above this says that the panels do not resolve the cross-section at all.
 const HOPELESS: f64 = 0.05;
 
@@ -326,7 +328,7 @@ pub(super) fn charges(section: &CrossSection, shared: &Shared<'_>, grid: Grid) -
     Ok(Charges { contours, dielectric: dielectric_charges, air: air_charges })
 }
 
-fn not_solvable() -> Problem {
+pub(super) fn not_solvable() -> Problem {
     fault(
         "section-not-converged",
         "",
@@ -335,7 +337,7 @@ fn not_solvable() -> Problem {
     )
 }
 
-fn total(charges: &Charges, vectors: &[Vec<f64>]) -> Vec<Vec<f64>> {
+pub(super) fn total(charges: &Charges, vectors: &[Vec<f64>]) -> Vec<Vec<f64>> {
     let count = charges.contours.len();
     let mut matrix = vec![vec![0.0; count]; count];
     for (j, vector) in vectors.iter().enumerate() {
@@ -385,7 +387,7 @@ fn solve_on(section: &CrossSection, shared: &Shared<'_>, coarse: Grid) -> Result
 }
 
 /// Inverse of a small symmetric positive definite matrix.
-fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
+pub(super) fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
     let size = matrix.len();
     // In units that keep the pivots near one.
     let scale = matrix.first()?.first()?;
@@ -559,7 +561,13 @@ pub(super) fn single_roughly(stackup: &Stackup, width_m: f64) -> Result<Mode, Pr
 /// On the fixed grids of the fast path: smooth in every size.
 pub(super) fn solve_fixed(section: &CrossSection) -> Result<Solved, Problem> {
     let tables = Tables::new(section)?;
-    solve_on(section, &tables.borrow(), COARSE)
+    solve_on(section, &tables.borrow(), array_grid(section))
+}
+
+/// Coarser of the two grids of an array; sheets have so few panels that both can be twice as fine.
+fn array_grid(section: &CrossSection) -> Grid {
+    let grid = if section.strips.len() > FEW { ARRAY } else { COARSE };
+    if section.copper.thickness_m > 0.0 { grid } else { Grid::new(2 * grid.width) }
 }
 
 /// Many strips on a stackup's tables, on the fixed grids of an array.
@@ -568,7 +576,7 @@ pub(super) fn solve_array(stackup: &Stackup, section: &CrossSection) -> Result<S
         return Err(problem);
     }
     let shared = Shared { kernels: stackup.kernels(section.span_m())?, heights: &stackup.heights };
-    let solved = solve_on(section, &shared, ARRAY)?;
+    let solved = solve_on(section, &shared, array_grid(section))?;
     usable(solved.error_estimate)?;
     Ok(solved)
 }

@@ -160,9 +160,12 @@ impl Stackup {
     /// # Errors
     /// The codes of [`CrossSection::check`]; `section-not-converged`.
     pub fn array(&self, strips: &[StripOf]) -> Result<Solved, Problem> {
-        let section =
-            CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() };
-        solve_array(self, &section)
+        solve_array(self, &self.section(strips))
+    }
+
+    /// Strips on this stackup.
+    pub(super) fn section(&self, strips: &[StripOf]) -> CrossSection {
+        CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() }
     }
 
     pub(super) fn housing(&self) -> HousingOf {
