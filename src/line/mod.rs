@@ -78,9 +78,12 @@
 //! | 10.2 | 0.1 | 8 | .13 +4 | ..1 +1 | .13 -3 | ..3 -5 | ..3 -5 | ..3 -6 | ..3 -10 |
 
 mod as_built;
+mod bend;
 mod book;
 mod coplanar;
 mod coupled;
+mod covered;
+mod cross;
 mod dispersion;
 pub mod gap;
 mod inverse;
@@ -89,6 +92,7 @@ mod models;
 mod numerical;
 pub mod open_end;
 mod pair;
+mod radial_stub;
 mod range;
 pub mod section;
 mod single;
@@ -97,18 +101,27 @@ mod step;
 mod strip;
 pub mod stripline;
 mod surface;
+mod taper;
+mod tee;
+mod via;
 
 pub use as_built::{AsBuilt, StaticsModel, plating_of};
+pub use bend::{Bend, Corner, Curve, Mitre, bend, curve, optimum_cut, rounded_bend};
 pub use book::Book;
 pub use coplanar::Coplanar;
 pub use coupled::EvenOdd;
+pub use cross::{Cross, CrossAt, cross};
 pub use inverse::{OutOfReach, Unreachable, pair_for_impedances, width_for_impedance};
 pub use mode::Mode;
 pub use models::Models;
 pub use pair::Pair;
-pub use step::{Step, step};
+pub use radial_stub::{RadialStub, radial_line_reactance_ohm, radial_stub};
+pub use step::{Step, offset_step, step};
 pub use strip::Strip;
 pub use surface::{hammerstad_roughness_factor, skin_depth_m, sphere_roughness_factor, surface_resistance_ohm};
+pub use taper::{Piece, taper};
+pub use tee::{Tee, TeeAt, tee};
+pub use via::{VIA_MODEL_ERROR_H, Via, ViaHoles, post_inductance_h, via};
 
 /// Speed of light, m/s (exact).
 pub const C_M_PER_S: f64 = 299_792_458.0;
