@@ -309,6 +309,7 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         roughness_m: arguments.roughness.unwrap_or(laminate.copper.roughness_m),
         conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
         plating: plating_of(&laminate.finish),
+        hole_plating_m: 25e-6,
         lid_m: arguments.lid,
         widening_m: 0.0,
         lossless: false,

@@ -203,6 +203,7 @@ impl Dispersive {
             roughness_m: 0.0,
             conductivity_s_per_m: 5.8e7,
             plating: None,
+            hole_plating_m: 25e-6,
             lid_m: section.housing.lid_m,
             widening_m: 0.0,
             lossless: true,

@@ -13,6 +13,7 @@ use super::Knob;
 use super::Moves;
 use super::Structure;
 use super::feeds;
+use super::own;
 use crate::base::Dimensionality;
 use crate::base::Nm;
 use crate::base::Outcome;
@@ -34,7 +35,6 @@ use crate::order::Band;
 use crate::order::Key;
 use crate::order::Order;
 use crate::order::OwnKind;
-use crate::order::OwnValue;
 use crate::order::Passes;
 use crate::prototype::ladder;
 
@@ -164,7 +164,7 @@ impl Family for EdgeCoupled {
         let built = AsBuilt::nominal(order).without_loss();
         let (center_hz, fraction) = (0.5 * (from_hz + to_hz), 2.0 * (to_hz - from_hz) / (from_hz + to_hz));
         let g = ladder(order.filter.response, degree);
-        let resonator_ohm = own_number(order, "resonator-impedance");
+        let resonator_ohm = own::number(order, KEYS, "resonator-impedance");
         let mut list = Vec::new();
         let mut problems = Vec::new();
         for k in 1..=degree + 1 {
@@ -182,7 +182,7 @@ impl Family for EdgeCoupled {
                 )),
             }
         }
-        match feeds::guess(order, &built, own_number(order, "feed-length"), center_hz) {
+        match feeds::guess(order, &built, own::number(order, KEYS, "feed-length"), center_hz) {
             Ok(ports) => list.extend(ports),
             Err(found) => problems.extend(found),
         }
@@ -263,7 +263,7 @@ fn coupling_rates(set: &Dimensions, built: &AsBuilt, k: usize) -> (f64, f64) {
     let Band::BandPass { from_hz, to_hz } = set.order.filter.band else { return GAP_ONLY };
     let target = set.list.iter().find(|d| d.name == section(k, "gap")).and_then(|d| d.serves.iter().find(|(what, _)| what == "J/Y"));
     let Some((_, inverter)) = target else { return GAP_ONLY };
-    let resonator_ohm = own_number(&set.order, "resonator-impedance");
+    let resonator_ohm = own::number(&set.order, KEYS, "resonator-impedance");
     let at = |scale: f64| {
         let (even_ohm, odd_ohm) = impedances(inverter * scale, resonator_ohm);
         pair_for_impedances(built, even_ohm, odd_ohm, 0.5 * (from_hz + to_hz)).ok()
@@ -282,21 +282,6 @@ fn mending(inverter: f64) -> String {
         "make the band narrower, the laminate thicker or of lower permittivity, raise filter.resonator-impedance, or tap the input (another family)".into()
     } else {
         "make the band wider, the laminate thinner or of higher permittivity, or choose a family for narrow bands".into()
-    }
-}
-
-/// A quantity of the family's own; the order room has already put in the default.
-fn own_number(order: &Order, key: &str) -> f64 {
-    match order.filter.own.get(key) {
-        Some(OwnValue::Number(value, _)) => *value,
-        _ => KEYS
-            .iter()
-            .find(|k| k.name == key)
-            .and_then(|k| match (k.kind, k.default) {
-                (OwnKind::Quantity(kind), Some(text)) => crate::base::parse_quantity(text, kind).ok(),
-                _ => None,
-            })
-            .unwrap_or(f64::NAN),
     }
 }
 

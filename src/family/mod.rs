@@ -2,6 +2,8 @@
 
 mod edge_coupled;
 mod feeds;
+mod grounds;
+mod own;
 mod target;
 
 pub use target::Target;

@@ -38,6 +38,8 @@ pub struct AsBuilt {
     pub conductivity_s_per_m: f64,
     /// Metal over the copper that the current feels: the nickel of a finish.
     pub plating: Option<Plating>,
+    /// Copper on the wall of plated holes.
+    pub hole_plating_m: f64,
     /// Lid above the laminate surface.
     pub lid_m: Option<f64>,
     /// Added to every strip's drawn width (and taken from every gap): etch error of the batch.
@@ -62,6 +64,7 @@ impl AsBuilt {
             roughness_m: laminate.copper.roughness_m,
             conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
             plating: plating_of(&laminate.finish),
+            hole_plating_m: order.laminate.copper.plating_m,
             lid_m: order.housing.and_then(|housing| housing.lid_m),
             widening_m: 0.0,
             lossless: false,
@@ -105,6 +108,7 @@ impl AsBuilt {
             roughness_m: 0.0,
             conductivity_s_per_m: 5.8e7,
             plating: None,
+            hole_plating_m: 25e-6,
             lid_m: None,
             widening_m: 0.0,
             lossless: false,

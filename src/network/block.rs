@@ -2,6 +2,8 @@
 
 use num_complex::Complex64;
 
+use crate::line::Via;
+
 /// Reference impedance of every inner joint; any real value gives the same result.
 pub(super) const INNER_OHM: f64 = 50.0;
 
@@ -20,12 +22,14 @@ pub(super) enum Block {
     Ladder { first_h: f64, shunt_f: f64, second_h: f64 },
     /// Capacitance to ground either side of one in series: a gap.
     Gap { first_f: f64, series_f: f64, second_f: f64 },
-    /// Strips that meet in a point with a capacitance to ground there.
-    Junction { arms: usize, shunt_f: f64 },
-    /// Ideal transformer: voltage at the first node is `ratio` times that at the second.
-    Transformer { ratio: f64 },
-    /// An end on ground through an inductance and a resistance that grows with the root of frequency.
-    Ground { inductance_h: f64, ohm_at_1_ghz: f64 },
+    /// N coupled strips, nodes near 1..N, far 1..N: index into the arrays.
+    Array { array: usize, length_m: f64 },
+    /// The point where the arms of a tee or a cross meet: index into the junctions.
+    Junction { junction: usize },
+    /// What an arm of a junction takes out of its strip's length, between the strip (first node) and the point.
+    Arm { junction: usize, arm: usize, strip: usize },
+    /// An end on ground through plated holes.
+    Ground { via: Via },
     /// From the reference impedance of a port to the inner one.
     Reference { gamma: f64 },
 }
@@ -60,20 +64,17 @@ pub(super) fn gap_s([first_f, series_f, second_f]: [f64; 3], f_hz: f64) -> [Comp
     [((1.0 - y11) * (1.0 + y22) + y * y) * inverse, through, through, ((1.0 + y11) * (1.0 - y22) + y * y) * inverse]
 }
 
-/// Writes the matrix of arms that meet in a point with a capacitance to ground.
-pub(super) fn junction_s(arms: usize, shunt_f: f64, f_hz: f64, out: &mut [Complex64]) {
-    let y = Complex64::new(0.0, std::f64::consts::TAU * f_hz * shunt_f * INNER_OHM);
-    let through = 2.0 / (arms as f64 + y);
-    for (i, entry) in out.iter_mut().enumerate() {
-        *entry = if i / arms == i % arms { through - 1.0 } else { through };
+/// Writes the matrix of arms that meet in a point with a susceptance to ground, each through an ideal transformer.
+///
+/// With node voltage v, arm voltages n v and the sum of n i flowing into the susceptance: v = 2 sum(n a) / (sum(n^2) + j B R).
+pub(super) fn junction_s(turns: &[f64], shunt_s: f64, out: &mut [Complex64]) {
+    let arms = turns.len();
+    let through = 2.0 / Complex64::new(turns.iter().map(|n| n * n).sum(), shunt_s * INNER_OHM);
+    for (i, a) in turns.iter().enumerate() {
+        for (j, b) in turns.iter().enumerate() {
+            out[i * arms + j] = through * (a * b) - if i == j { 1.0 } else { 0.0 };
+        }
     }
-}
-
-/// An ideal transformer whose first voltage is `ratio` times the second.
-pub(super) fn transformer_s(ratio: f64) -> [Complex64; 4] {
-    let square = ratio * ratio;
-    let (own, through) = (Complex64::from((square - 1.0) / (square + 1.0)), Complex64::from(2.0 * ratio / (square + 1.0)));
-    [own, through, through, -own]
 }
 
 /// Reflection of an end on ground.
@@ -101,10 +102,9 @@ mod tests {
     fn lossless_blocks_are_unitary() {
         assert_unitary(&ladder_s([0.3e-9, 0.2e-12, 0.1e-9], 5e9), 2);
         assert_unitary(&gap_s([0.05e-12, 0.02e-12, 0.01e-12], 5e9), 2);
-        assert_unitary(&transformer_s(0.7), 2);
         assert!((ground_s(0.1e-9, 0.0, 5e9).norm() - 1.0).abs() < 1e-15);
         let mut s = vec![Complex64::ZERO; 9];
-        junction_s(3, 0.1e-12, 5e9, &mut s);
+        junction_s(&[0.9, 0.95, 1.0], 0.003, &mut s);
         assert_unitary(&s, 3);
     }
 

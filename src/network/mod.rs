@@ -2,6 +2,7 @@
 
 mod block;
 mod circuit;
+mod coupled;
 mod curve;
 mod figures;
 mod join;
