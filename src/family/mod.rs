@@ -1,11 +1,18 @@
 //! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
 
+mod comb;
+mod combline;
 mod edge_coupled;
 mod feeds;
 mod grounds;
+mod hairpin;
+mod interdigital;
 mod own;
+mod probe;
+mod row;
 mod target;
 
+pub use probe::{Aim, Drawing, Probe};
 pub use target::Target;
 
 use crate::base::Outcome;
@@ -68,6 +75,11 @@ pub trait Family: Structure {
         }
     }
 
+    /// What is measured on parts of the circuit, in this order, before the whole is refined.
+    fn probes(&self, _set: &Dimensions) -> Vec<Probe> {
+        Vec::new()
+    }
+
     /// The directions in which refinement moves the set, symmetric partners together.
     fn knobs(&self, set: &Dimensions) -> Vec<Knob>;
 }
@@ -95,7 +107,7 @@ pub enum Moves {
 }
 
 /// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
-pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled];
+pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled, &interdigital::Interdigital, &hairpin::Hairpin, &combline::Combline];
 
 /// The family an order names.
 ///

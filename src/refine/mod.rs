@@ -3,6 +3,7 @@
 mod degree;
 mod least_squares;
 mod passband;
+mod probe;
 
 use crate::base::Nm;
 use crate::base::Place;
@@ -21,6 +22,7 @@ pub use degree::{Chosen, synthesize};
 use least_squares::minimize;
 use num_complex::Complex64;
 pub use passband::{Miss, Passband};
+pub use probe::ProbeCurve;
 
 /// Iterations of the first stage, which fits the characteristic function over the band to the prototype's.
 const FIT_ITERATIONS: usize = 25;
@@ -53,6 +55,8 @@ pub struct Refined {
     pub before_snapping: Miss,
     /// And after.
     pub after_snapping: Miss,
+    /// What the family's probes measured.
+    pub curves: Vec<ProbeCurve>,
 }
 
 /// Distance of a set's lossless passband from the prototype's.
@@ -90,6 +94,8 @@ fn circuit(family: &dyn Family, set: &Dimensions, book: &Book) -> Result<Circuit
 pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Problem>> {
     let goal = family.target(&guess.order, guess.degree);
     let book = Book::new(AsBuilt::nominal(&guess.order).without_loss());
+    let (guess, curves) = probe::spaced(family, guess, &book);
+    let guess = &guess;
     let knobs = family.knobs(guess);
     let mut search = Search { family, guess, goal: goal.clone(), book: &book, knobs: &knobs };
     let x = search.run();
@@ -107,7 +113,7 @@ pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Pr
     }
     let dimensions = snap(family, &refined, &goal, &book);
     let after_snapping = miss_with(family, &dimensions, &goal, &book)?;
-    Ok(Refined { dimensions, before_snapping, after_snapping })
+    Ok(Refined { dimensions, before_snapping, after_snapping, curves })
 }
 
 fn not_reached(miss: &Miss, goal: &Target) -> Problem {
