@@ -55,13 +55,13 @@ static KEYS: &[Key] = &[
         name: "resonator-impedance",
         about: "impedance of a resonator's strip alone; lower makes wider strips with less loss",
         kind: OwnKind::Quantity(Dimensionality::Impedance),
-        default: Some("65 ohm"),
+        default: Some("80 ohm"),
     },
     Key {
         name: "patch-impedance",
         about: "impedance of the loading patch's strip alone; lower makes wider, shorter patches",
         kind: OwnKind::Quantity(Dimensionality::Impedance),
-        default: Some("40 ohm"),
+        default: Some("52 ohm"),
     },
     Key {
         name: "feed-length",
@@ -169,6 +169,11 @@ fn drawn(set: &Dimensions, which: &[usize], with_feeds: bool) -> Result<Layout, 
     Ok(layout)
 }
 
+/// The least gap between strips at which the shop can still etch the one between their patches.
+fn least_gap_m(order: &Order, patch_m: f64, width_m: f64) -> f64 {
+    order.shop.gap_m + (patch_m - width_m).max(0.0)
+}
+
 impl Family for Combline {
     fn passes(&self) -> Passes {
         Passes::Band
@@ -237,7 +242,8 @@ impl Family for Combline {
             list.push(length);
         }
         let mut problems = Vec::new();
-        list.extend(row::gap_guesses(order, degree, fraction));
+        let least_gap_m = least_gap_m(order, patch_m, width_m);
+        list.extend(row::gap_guesses(order, degree, fraction, least_gap_m));
         let slope_s = (STRIP_RAD + STRIP_RAD.sin() * STRIP_RAD.cos()) / (2.0 * strip_ohm);
         let theta = row::tap_angle(order, degree, fraction, slope_s);
         for (port, theta) in [1, 2].into_iter().zip(theta) {
@@ -258,7 +264,8 @@ impl Family for Combline {
     }
 
     fn probes(&self, set: &Dimensions) -> Vec<Probe> {
-        row::probes(set, drawn)
+        let size = |name: &str| set.value(name).unwrap_or(0.0);
+        row::probes(set, least_gap_m(&set.order, size("patch width"), size(&row::resonator(1, "width"))), drawn)
     }
 
     fn knobs(&self, set: &Dimensions) -> Vec<Knob> {

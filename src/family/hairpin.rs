@@ -237,7 +237,7 @@ impl Family for Hairpin {
             length.correct("half the bar", -half_bar_m);
             list.push(length);
         }
-        list.extend(row::gap_guesses(order, degree, fraction));
+        list.extend(row::gap_guesses(order, degree, fraction, order.shop.gap_m));
         // pi/2 Y is the susceptance slope of a half wave at its open end.
         for (port, theta) in [1, 2].into_iter().zip(row::tap_angle(order, degree, fraction, std::f64::consts::FRAC_PI_2 / strip_ohm)) {
             match theta {
@@ -271,7 +271,7 @@ impl Family for Hairpin {
     }
 
     fn probes(&self, set: &Dimensions) -> Vec<Probe> {
-        row::probes(set, drawn)
+        row::probes(set, set.order.shop.gap_m, drawn)
     }
 
     fn knobs(&self, set: &Dimensions) -> Vec<Knob> {

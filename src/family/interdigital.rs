@@ -183,7 +183,7 @@ impl Family for Interdigital {
             list.push(length);
         }
         let mut problems = Vec::new();
-        list.extend(row::gap_guesses(order, degree, fraction));
+        list.extend(row::gap_guesses(order, degree, fraction, order.shop.gap_m));
         // At a grounded quarter wave; pi/4 Y is its susceptance slope at the open end.
         let theta = row::tap_angle(order, degree, fraction, std::f64::consts::FRAC_PI_4 / strip_ohm);
         for (port, theta) in [1, 2].into_iter().zip(theta) {
@@ -204,7 +204,7 @@ impl Family for Interdigital {
     }
 
     fn probes(&self, set: &Dimensions) -> Vec<Probe> {
-        row::probes(set, drawn)
+        row::probes(set, set.order.shop.gap_m, drawn)
     }
 
     fn knobs(&self, set: &Dimensions) -> Vec<Knob> {

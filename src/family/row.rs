@@ -51,14 +51,14 @@ pub fn tap_off(set: &Dimensions) -> Problem {
     )
 }
 
-/// Gaps from coupling coefficients: a rough law that the probes replace.
-pub fn gap_guesses(order: &Order, degree: usize, fraction: f64) -> Vec<Dimension> {
+/// Gaps from coupling coefficients, none below the least: a rough law that the probes replace.
+pub fn gap_guesses(order: &Order, degree: usize, fraction: f64, least_m: f64) -> Vec<Dimension> {
     let g = ladder(order.filter.response, degree);
     (1..degree)
         .zip(coupling_coefficients(&g, fraction))
         .map(|(i, k)| {
             // Coupling falls by a decade in about three heights.
-            let gap_m = (order.laminate.thickness_m * (-1.3 * (k / 0.35).ln()).max(0.15)).max(order.shop.gap_m);
+            let gap_m = (order.laminate.thickness_m * (-1.3 * (k / 0.35).ln()).max(0.15)).max(least_m);
             Dimension::guess(gap(i), gap_m, &[("k", k)])
         })
         .collect()
@@ -83,7 +83,7 @@ pub fn tap_angle(order: &Order, degree: usize, fraction: f64, slope_s: f64) -> [
 }
 
 /// Resonance of one resonator, coupling of each pair of neighbours, external Q of the ends; `drawn` draws some neighbours with or without feeds.
-pub fn probes(set: &Dimensions, drawn: fn(&Dimensions, &[usize], bool) -> Result<Layout, Vec<Problem>>) -> Vec<Probe> {
+pub fn probes(set: &Dimensions, least_gap_m: f64, drawn: fn(&Dimensions, &[usize], bool) -> Result<Layout, Vec<Problem>>) -> Vec<Probe> {
     let index = |name: String| set.list.iter().position(|d| d.name == name);
     let serves = |i: usize| set.list[i].serves.first().map_or(f64::NAN, |(_, value)| *value);
     let Band::BandPass { from_hz, to_hz } = set.order.filter.band else { return Vec::new() };
@@ -109,7 +109,7 @@ pub fn probes(set: &Dimensions, drawn: fn(&Dimensions, &[usize], bool) -> Result
             about: format!("coupling {i}"),
             aim: Aim::Coupling(serves(at)),
             moves: if mirror == at { vec![at] } else { vec![at, mirror] },
-            between_m: [set.order.shop.gap_m, WIDEST_GAP_HEIGHTS * height_m],
+            between_m: [least_gap_m, WIDEST_GAP_HEIGHTS * height_m],
             layout: Box::new(move |set| drawn(set, &[i, i + 1], false)),
         });
     }

@@ -15,6 +15,9 @@ use crate::order::Order;
 /// add less than this at the frequencies of a requirement below the second passband.
 const HOPELESS_DB: f64 = 6.0;
 
+/// Degrees that find no geometry before the search ends: a greater one asks for weaker couplings and is as out of reach.
+const MOST_WITHOUT_GEOMETRY: usize = 2;
+
 /// A refined set with the reason for its degree.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Chosen {
@@ -45,6 +48,7 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
     }
     let (least, most) = family.degrees();
     let mut misses: Vec<Miss> = Vec::new();
+    let mut without_geometry = 0;
     for degree in least..=most {
         if let Some(miss) = hopeless(order, &family.target(order, degree)) {
             misses.push(Miss { degree, falls_short: true, why: miss });
@@ -60,6 +64,10 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
                 }
                 let first = problems.first().map_or_else(String::new, |p| p.message.clone());
                 misses.push(Miss { degree, falls_short: false, why: first });
+                without_geometry += 1;
+                if without_geometry == MOST_WITHOUT_GEOMETRY {
+                    break;
+                }
                 continue;
             }
         };
