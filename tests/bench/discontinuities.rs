@@ -1,6 +1,6 @@
 //! How far are the models of discontinuities from the full-wave solution of the same copper? The measured accuracies in their docs.
 //! Run: `cargo bench --bench discontinuities`.
-#![allow(clippy::unwrap_used, clippy::indexing_slicing, missing_docs)]
+#![allow(clippy::unwrap_used, clippy::indexing_slicing, clippy::needless_range_loop, missing_docs)]
 
 use std::f64::consts::TAU;
 use std::time::Instant;
