@@ -46,6 +46,12 @@ pub struct TeeAt {
 /// No range claimed by the source; below half the first transverse resonance of the widest arm, [`Tee::problems`] tells. Through arms of different widths have
 /// their step besides.
 ///
+/// # Accuracy
+/// Against our full-wave solver at 4 GHz (`cargo bench --bench discontinuities`), 50-ohm through strip, side arm of 1 and 0.4 widths, er 3.0, 0.762 mm and er
+/// 10.2, 0.635 mm: no S-parameter off by more than 0.025, where strips joined at their centre lines without a model are off by 0.09 to 0.13. A star of three
+/// inductances and a capacitance through the solved values has the side shift 0.27 to 0.49 h longer and the through shift 0.06 to 0.09 h shorter. Through arms
+/// of different widths were not compared.
+///
 /// # Source
 /// E. Hammerstad, "Computer-aided design of microstrip couplers with accurate discontinuity models", IEEE MTT-S Digest 1981, pp. 54-56 (from memory).
 pub fn tee(through_1: &Strip, through_2: &Strip, side: &Strip) -> Tee {
@@ -90,5 +96,34 @@ impl Tee {
         let lowest_ohm = self.through.iter().chain([&self.side]).map(Strip::static_z0_ohm).fold(f64::INFINITY, f64::min);
         let share = up_to_hz * 2.0 * ETA0_OHM * h / (C_M_PER_S * lowest_ohm);
         outside(SOURCE, "frequency over the first transverse resonance of a tee's widest arm", share, 0.0..=0.5).into_iter().collect()
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::line::AsBuilt;
+
+    #[test]
+    fn a_vanishing_side_arm_leaves_the_line_alone() {
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        let through = Strip::new(&board, 1.9e-3);
+        let at = |width_m: f64| tee(&through, &through, &Strip::new(&board, width_m)).at(1e9);
+        let (narrow, wide) = (at(0.03e-3), at(1.9e-3));
+        assert!(narrow.shift_1_m < 0.2 * wide.shift_1_m && narrow.shift_1_m < 0.03 * 0.762e-3, "{narrow:?}");
+        // The law leaves half a per cent of the line's admittance at an arm this narrow.
+        assert!((narrow.turns_1 - 1.0).abs() < 2e-3 && narrow.shunt_s.abs() * 50.0 < 0.01, "{narrow:?}");
+        // The arm then begins at the strip's edge, within its fringe: half the plate width D from the centre line at the most.
+        assert!(narrow.shift_side_m > 0.5 * 1.9e-3 && narrow.shift_side_m < 1.9e-3, "{narrow:?}");
+    }
+
+    #[test]
+    fn arms_change_places() {
+        let board = AsBuilt::for_tests(9.8, 0.0);
+        let [one, two, side] = [0.8e-3, 0.5e-3, 0.6e-3].map(|w| Strip::new(&board, w));
+        let (a, b) = (tee(&one, &two, &side).at(3e9), tee(&two, &one, &side).at(3e9));
+        assert_eq!((a.shift_1_m, a.turns_1, a.shift_side_m), (b.shift_2_m, b.turns_2, b.shift_side_m));
+        assert_eq!(tee(&one, &two, &side).problems(3e9), vec![]);
+        assert_eq!(tee(&one, &two, &side).problems(60e9).len(), 1);
     }
 }

@@ -127,3 +127,31 @@ impl Via {
         problems
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn holes_side_by_side_share_the_current() {
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        let of = |count, pitch_m| via(&board, &ViaHoles::row(0.4e-3, 25e-6, count, pitch_m)).inductance_h;
+        let one = of(1, 0.0);
+        // Far apart: in parallel; at one place: one hole.
+        assert!((of(2, 1.0) / (0.5 * one) - 1.0).abs() < 2e-3 && (of(2, 0.2e-3) / one - 1.0).abs() < 1e-9);
+        assert!(of(3, 0.8e-3) < of(2, 0.8e-3) && of(2, 0.8e-3) > 0.5 * one && of(2, 0.8e-3) < one);
+    }
+
+    #[test]
+    fn resistance_starts_at_the_barrels_and_grows_as_the_root() {
+        let board = AsBuilt::for_tests(3.0, 0.0);
+        let via = via(&board, &ViaHoles::single(0.4e-3, 25e-6));
+        // h / (sigma pi d t), the barrel thin against its diameter within 7 %.
+        let thin = 0.762e-3 / (5.8e7 * PI * 0.4e-3 * 25e-6);
+        assert!((via.resistance_ohm(0.0) / thin - 1.0).abs() < 0.07);
+        assert!((via.resistance_ohm(4e10) / via.resistance_ohm(1e10) - 2.0).abs() < 0.01);
+        assert_eq!(super::via(&board.without_loss(), &ViaHoles::single(0.4e-3, 25e-6)).resistance_ohm(1e9), 0.0);
+        assert_eq!(via.problems(), vec![]);
+        assert_eq!(super::via(&board, &ViaHoles::row(0.1e-3, 25e-6, 2, 0.1e-3)).problems().len(), 2);
+    }
+}
