@@ -51,6 +51,9 @@ pub fn say_reached(chosen: &Chosen, voice: Voice) {
     if let Some(reason) = &chosen.reason {
         voice.say(reason);
     }
+    for curve in &chosen.refined.curves {
+        voice.say(&curve.describe());
+    }
     voice.say(&format!("refined: lossless {}", chosen.refined.before_snapping.describe()));
     voice.say(&format!("on the shop grid: lossless {}", chosen.refined.after_snapping.describe()));
 }
@@ -69,6 +72,15 @@ fn json(chosen: &Chosen) -> serde_json::Value {
         .collect();
     serde_json::json!({
         "name": set.order.name, "degree": set.degree, "reason": chosen.reason,
+        "measured": chosen.refined.curves.iter().map(curve_json).collect::<Vec<_>>(),
         "before_snapping": miss(&chosen.refined.before_snapping), "after_snapping": miss(&chosen.refined.after_snapping), "dimensions": list,
+    })
+}
+
+/// What was measured on a part of the circuit over one dimension.
+fn curve_json(curve: &crate::refine::ProbeCurve) -> serde_json::Value {
+    let points: Vec<_> = curve.points.iter().map(|(value_m, measured)| [*value_m, *measured]).collect();
+    serde_json::json!({
+        "about": curve.about, "dimension": curve.dimension, "aim": curve.aim, "found_m": curve.found_m, "value_m_and_measured": points,
     })
 }

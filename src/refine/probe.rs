@@ -42,6 +42,21 @@ pub struct ProbeCurve {
     pub found_m: Option<f64>,
 }
 
+impl ProbeCurve {
+    /// One line: what was aimed at, over which range it was measured, where it was found.
+    pub fn describe(&self) -> String {
+        let shown = |v: f64| if v.abs() > 1e6 { format!("{:.4} GHz", v * 1e-9) } else { format!("{v:.4}") };
+        let range = match (self.points.first(), self.points.last()) {
+            (Some(first), Some(last)) => {
+                format!("{} to {} over {:.3} to {:.3} mm", shown(first.1), shown(last.1), first.0 * 1e3, last.0 * 1e3)
+            }
+            _ => "nothing".into(),
+        };
+        let found = self.found_m.map_or_else(|| "not within it: the first guess stays".into(), |m| format!("found at {:.4} mm", m * 1e3));
+        format!("{} by {}: {} wanted, measured {range}, {found}", self.about, self.dimension, shown(self.aim))
+    }
+}
+
 /// Moves the set's dimensions by its family's probes, one after the other.
 pub fn spaced(family: &dyn Family, guess: &Dimensions, book: &Book) -> (Dimensions, Vec<ProbeCurve>) {
     let mut set = guess.clone();
