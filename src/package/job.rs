@@ -48,7 +48,7 @@ impl<'a> Job<'a> {
             hash.update(b"project\0");
             hash.update(order.name.as_bytes());
             hash.update(b"\0");
-            hash.update(order.part_number.as_deref().unwrap_or_default().as_bytes());
+            hash.update(order.part_number.as_bytes());
         });
         let coordinates = guid(|hash| {
             hash.update(b"coordinates\0");

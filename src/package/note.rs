@@ -152,10 +152,10 @@ fn identity(note: &mut Note, job: &Job) {
     note.section("IDENTITY");
     note.field("Title", &order.title);
     note.field("Name", &order.name);
-    note.field("Part number", order.part_number.as_deref().unwrap_or("none; the name and the revision identify the board"));
+    note.field("Part number", &order.part_number);
     note.field("Revision", &order.revision);
     note.field("Date", order.date.as_deref().unwrap_or("not dated; the revision governs"));
-    note.field("Questions to", order.contact.as_deref().unwrap_or("the contact on the purchase order"));
+    note.field("Questions to", &order.contact);
     note.field("Project GUID", &job.project.to_string());
     note.field("Coordinates GUID", &format!("{}; every Gerber and drill file of this issue carries it", job.coordinates));
     note.field("Made by", &format!("{} {}", env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION")));
@@ -181,7 +181,7 @@ fn outline(note: &mut Note, order: &Order, board: &Board, layers: u8) {
     note.section("BOARD");
     let [x, y] = size(board);
     if board.outline_drawn {
-        note.field("Size", &format!("{} mm x {} mm, each +/-{} mm, {}", mm(x), mm(y), mm(order.shop.outline_tolerance_m), cut(order)));
+        note.field("Size", &format!("{} mm x {} mm, each +/-{} mm, {}", mm(x), mm(y), mm(order.board.outline_tolerance_m), cut(order)));
     } else {
         note.field(
             "Size",
@@ -463,7 +463,7 @@ fn edges_and_marking(note: &mut Note, order: &Order, board: &Board) {
             "Edges {}, +/-{} mm. The edges with connectors are flat, square and free of burrs; no break-away tab within 5 mm of a \
              connector; copper there ends as drawn, without smear over the edge.",
             if order.laminate.kind == LaminateKind::Ceramic { cut(order) } else { "routed, no scoring" },
-            mm(order.shop.outline_tolerance_m)
+            mm(order.board.outline_tolerance_m)
         ));
     }
     note.bullet("Marks of the maker, date code and lot on the panel frame or the packing, not on the board.");
