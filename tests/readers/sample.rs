@@ -77,6 +77,7 @@ pub fn hand_board() -> Board {
         size: [Nm(2_000_000), Nm(1_100_000)],
         net: net.into(),
         pin: (refdes.into(), "1".into()),
+        fits: Fits::Connector,
     };
     let port = |number: usize, x: f64, plane: f64| Port {
         number,
@@ -97,6 +98,8 @@ pub fn hand_board() -> Board {
             (Layer::Legend(Face::Top), vec![shape(rectangle(14.0, 18.0, 16.0, 18.2), vec![], Role::Text, "")]),
         ]),
         holes: vec![via(3.5, 3.5, 300_000), via(3.5, 12.5, 300_000), via(26.5, 8.0, 400_000), hole(2.5, 18.0), hole(27.5, 18.0)],
+        slots: vec![],
+        plated_edges: vec![],
         lands: vec![land(1.5, "PORT1", "J1"), land(28.5, "PORT2", "J2")],
         ports: vec![port(1, 0.0, 3.0), port(2, 30.0, 27.0)],
         circuit: [mm(0.0, 4.5), mm(30.0, 15.2)],
