@@ -91,7 +91,7 @@ pub(super) fn stitching(order: &Order, size: Point, top: &Region, plane: &Region
     let shop = &order.shop;
     let ring = shop.annular_ring_m + shop.registration_m;
     // A hole that the board's thickness allows, in the shop's steps of a twentieth of a millimetre.
-    let least_m = shop.hole_m.max(order.board.thickness_m / shop.aspect_ratio);
+    let least_m = shop.hole_m.max(order.stack_thickness_m() / shop.aspect_ratio);
     let diameter = Nm((Nm::from_m(least_m).0 + 49_999) / 50_000 * 50_000);
     let pad = diameter + Nm::from_m(2.0 * ring);
     let wavelength_m = SPEED_OF_LIGHT / (highest_hz(order) * order.laminate.permittivity.sqrt());

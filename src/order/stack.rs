@@ -56,6 +56,11 @@ impl Order {
     pub fn stack(&self) -> Vec<StackLayer> {
         stack(&self.laminate, self.board.ground, &self.board.below)
     }
+
+    /// Thickness over copper and plating as the layers give it, metres.
+    pub fn stack_thickness_m(&self) -> f64 {
+        overall_m(&self.stack())[0]
+    }
 }
 
 /// The stack of a laminate and what lies below it, top to bottom.

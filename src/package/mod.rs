@@ -3,8 +3,10 @@
 mod contents;
 mod drill;
 mod dxf;
+mod facts;
 mod gerber;
 mod job;
+mod job_file;
 mod note;
 mod preview;
 mod put;
@@ -153,6 +155,13 @@ pub static WRITERS: &[Writer] = &[
         for_board_house: true,
         applies: |job| job.artwork.holes.iter().any(|hole| !hole.is_plated()),
         write: |job, out| drill::write(job, false, out),
+    },
+    Writer {
+        file: FileName::Ending(".gbrjob"),
+        about: "Gerber job file: size, stack, material, finish, and which file is which layer",
+        for_board_house: true,
+        applies: |_| true,
+        write: job_file::write,
     },
     Writer {
         file: FileName::Ending(".dxf"),
