@@ -7,8 +7,10 @@ mod facts;
 mod gerber;
 mod job;
 mod job_file;
+mod netlist;
 mod note;
 mod preview;
+mod probe;
 mod put;
 mod read_drill;
 mod read_gerber;
@@ -162,6 +164,13 @@ pub static WRITERS: &[Writer] = &[
         for_board_house: true,
         applies: |_| true,
         write: job_file::write,
+    },
+    Writer {
+        file: FileName::Ending(".ipc"),
+        about: "bare-board netlist, IPC-D-356A: every net with its test points, resonators one by one",
+        for_board_house: true,
+        applies: |_| true,
+        write: netlist::write,
     },
     Writer {
         file: FileName::Ending(".dxf"),
