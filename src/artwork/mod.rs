@@ -21,3 +21,4 @@ pub use compensate::compensated;
 pub use ground::highest_hz;
 pub use ground::slot_area;
 pub use launch::launch_half_width;
+pub use text::lettering;
