@@ -103,8 +103,8 @@ pub(super) struct Drawn {
     pub in_millimetres: bool,
     /// Closed polylines by layer.
     pub rings: BTreeMap<String, Vec<Vec<Point>>>,
-    /// Centre and diameter of the holes.
-    pub circles: Vec<(Point, Nm)>,
+    /// The holes: plated or not, centre, diameter.
+    pub circles: Vec<(bool, Point, Nm)>,
 }
 
 /// Reads a drawing back; the error says why it cannot be read.
@@ -128,7 +128,7 @@ pub(super) fn read(path: &Path) -> Result<Drawn, String> {
                 drawn.rings.entry(layer.clone()).or_default().push(ring);
             }
             EntityType::Circle(circle) if layer == PLATED || layer == UNPLATED => {
-                drawn.circles.push((point(circle.center.x, circle.center.y), Nm::from_m(2e-3 * circle.radius)));
+                drawn.circles.push((layer == PLATED, point(circle.center.x, circle.center.y), Nm::from_m(2e-3 * circle.radius)));
             }
             _ => {}
         }

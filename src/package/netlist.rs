@@ -8,6 +8,7 @@ use std::io;
 use std::io::BufWriter;
 use std::io::Write;
 
+use crate::artwork::Face;
 use crate::artwork::Layer;
 use crate::artwork::Role;
 use crate::artwork::shape::Region;
@@ -45,7 +46,7 @@ pub fn write(job: &Job, out: &mut dyn Write) -> io::Result<()> {
     if job.breaks_a_rule() {
         writeln!(out, "C  *** A DESIGN RULE IS BROKEN: build only on written consent ***")?;
     }
-    writeln!(out, "C  Millimetres, 0.001 mm a unit, origin at the lower left board corner, seen from the top")?;
+    writeln!(out, "C  0.001 mm a unit, origin at the lower left board corner, seen from the top")?;
     writeln!(out, "C  Identity of the coordinates {}", job.coordinates)?;
     let points = points(job);
     let mut aliases: BTreeMap<&str, String> = BTreeMap::new();
@@ -131,9 +132,7 @@ fn points(job: &Job) -> Vec<TestPoint> {
         job.artwork.layers.get(&layer).is_none_or(|shapes| shapes.iter().any(|shape| Region::from_shape(shape).contains(at)))
     };
     // Which faces carry mask over a point: 0 none, 1 top, 2 bottom, 3 both.
-    let mask = |at: Point| {
-        u8::from(!open(Layer::Mask(crate::artwork::Face::Top), at)) + 2 * u8::from(!open(Layer::Mask(crate::artwork::Face::Bottom), at))
-    };
+    let mask = |at: Point| u8::from(!open(Layer::Mask(Face::Top), at)) + 2 * u8::from(!open(Layer::Mask(Face::Bottom), at));
     let mut points = Vec::new();
     for land in &board.lands {
         points.push(TestPoint {

@@ -101,7 +101,7 @@ impl Flow {
                 Some(here)
             })
             .collect();
-        let mut row = |flow: &mut Flow, cells: &[String], font: Font| {
+        let row = |flow: &mut Flow, cells: &[String], font: Font| {
             let Some((at, sheet)) = flow.take(LINE + 0.5) else { return };
             for (c, cell) in cells.iter().enumerate() {
                 let (x, w) = (places.get(c).copied().unwrap_or(0.0), natural.get(c).copied().unwrap_or(0.0) * stretch);

@@ -4,6 +4,7 @@ use super::ACCENT;
 use super::COPPER;
 use super::FAINT;
 use super::GROUND;
+use super::HAIR;
 use super::INK;
 use super::LAMINATE;
 use super::MARGIN;
@@ -102,7 +103,7 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
     for layer in [Layer::Copper(1), Layer::Legend(Face::Top)] {
         for shape in board.layers.get(&layer).into_iter().flatten() {
             let color = match (layer, shape.role) {
-                (Layer::Legend(_), _) => FAINT,
+                (Layer::Legend(_), _) => HAIR,
                 (_, Role::Ground) => GROUND,
                 _ => COPPER,
             };
@@ -160,6 +161,8 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
             let knee = [foot[0] + 3.0, foot[1] - 3.0];
             sheet.line(&[foot, knee, [knee[0] + 1.5, knee[1]]], 0.18, INK);
             let text = format!("{} ({} x)", kind.symbol, kind.at.len());
+            let backing = [text_width(&text, 2.4, Font::Bold) + 1.0, 3.0];
+            sheet.rectangle([knee[0] + 1.5, knee[1] - 1.4], backing, Some(PAPER), None);
             sheet.text([knee[0] + 2.0, knee[1] - 0.8], 2.4, Font::Bold, Align::Left, false, INK, &text);
         }
     }
@@ -209,7 +212,7 @@ fn dimensions(sheet: &mut Sheet, view: &View, job: &Job) {
         let label = if sideways {
             let line = if dx < 0.0 { left - 12.0 } else { right + 14.0 };
             let from = if dx < 0.0 { left } else { right };
-            dimension(sheet, [bottom, py], from, line, true, &mm(at.y.m()));
+            dimension(sheet, [bottom, py], from, line, true, &format!("{:.3}", at.y.mm()));
             [if dx < 0.0 { left - 5.0 } else { right + 5.0 }, py]
         } else {
             [px, if dy < 0.0 { bottom - 5.0 } else { top + 5.0 }]
