@@ -11,6 +11,7 @@ use crate::artwork::Layer;
 use crate::artwork::Port;
 use crate::artwork::Role;
 use crate::artwork::Shape;
+use crate::artwork::Slot;
 use crate::artwork::callout::callouts;
 use crate::artwork::copper;
 use crate::artwork::frame::Seat;
@@ -28,6 +29,7 @@ use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::bounds;
+use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
 use crate::base::Nm;
 use crate::base::Outcome;
@@ -40,6 +42,7 @@ use crate::layout::Part;
 use crate::order::LaunchShape;
 use crate::order::Mask;
 use crate::order::Order;
+use crate::order::Side;
 use crate::order::TextOn;
 
 /// The circuit in the drawing's frame, level and with square feed ends, before it is seated on the board.
@@ -57,7 +60,8 @@ pub(super) struct Placed {
 /// Draws the board: everything that can be made, finished size, origin at the lower left corner.
 ///
 /// # Errors
-/// `layout-incomplete`, `ports-not-opposite`, `launch-without-edge`, `board-too-small`, `no-room-for-wall`, `housing-too-small`, `hole-off-the-board`:
+/// `layout-incomplete`, `ports-not-opposite`, `launch-without-edge`, `board-too-small`, `no-room-for-wall`, `housing-too-small`, `hole-off-the-board`,
+/// `slot-off-the-board`, `plated-edge-off-the-board`:
 /// the order asks for what cannot be drawn. Warnings: text that found no room or no letter.
 pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut problems = Vec::new();
@@ -104,7 +108,13 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
         net: nets::GROUND.to_string(),
     }));
     holes.extend(mounting_holes(order, size, &mut problems));
-    let clearances = ground::clearances(order, &holes);
+    let slots = ground::slots(order);
+    problems.extend(slots_off_the_board(order, &slots, size));
+    let (plated_edges, edge_copper) = ground::plated_edges(order, size);
+    problems.extend(edges_off_the_board(order, size));
+    // Joined on every layer: what is plated through.
+    let through = ground::slot_rings(order, &slots).union(&edge_copper);
+    let clearances = ground::clearances(order, &holes).union(&ground::slot_clearances(order, &slots));
     let keep_outs = Region::union_of(&keep_out_rings(order));
     let pads = Region::union_of(&launches.iter().flat_map(|launch| launch.ground.clone()).collect::<Vec<_>>());
     let mut wall = Region::default();
@@ -121,7 +131,18 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
         let fence = ground::wall_fence(order, size, inside, &wall.union(&pads), &holes);
         holes.extend(fence);
     }
-    let top_ground = pads.union(&wall).difference(&clearances).difference(&keep_outs);
+    let mut top_ground = pads.union(&wall).union(&through).difference(&clearances).difference(&keep_outs);
+    let plane = ground::bottom(order, size, &launches, &holes)
+        .union(&through)
+        .difference(&ground::slot_clearances(order, &slots))
+        .intersection(&Region::rectangle(Point::default(), size));
+    if order.copper_layers() > 2 {
+        let top = signal.union(&top_ground).union(&keep_outs);
+        let stitches = ground::stitching(order, size, &top, &plane, &holes);
+        let lands: Vec<Ring> = stitches.iter().map(|hole| disc(hole.at, Nm(hole.pad.0 / 2))).collect();
+        top_ground = top_ground.union(&Region::union_of(&lands));
+        holes.extend(stitches);
+    }
     holes.sort_by_key(|hole| (hole.purpose, hole.at, hole.diameter, hole.pad));
     if problems.iter().any(Problem::is_error) {
         return Err(problems);
@@ -149,13 +170,18 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let mut layers: BTreeMap<Layer, Vec<Shape>> = BTreeMap::new();
     strips.extend(shapes(&top_ground, Role::Ground, nets::GROUND));
     layers.insert(Layer::Copper(1), strips);
-    layers.insert(Layer::Copper(2), shapes(&ground::bottom(order, size, &launches, &holes), Role::Ground, nets::GROUND));
+    for number in 2..=order.copper_layers() {
+        layers.insert(Layer::Copper(number), shapes(&plane, Role::Ground, nets::GROUND));
+    }
     let mut openings = [Region::default(), Region::default()];
     if order.board.mask == Mask::ClearOfFilter {
         let corners: Vec<Point> = circuit.rings().flatten().copied().collect();
         openings = [mask::top(order, &board_area, &corners, &lands, &wall, &holes), mask::bottom(order, &board_area, &lands, &holes)];
         layers.insert(Layer::Mask(Face::Top), shapes(&openings[0], Role::Opening, ""));
-        layers.insert(Layer::Mask(Face::Bottom), shapes(&openings[1], Role::Opening, ""));
+        // On a carrier the lower face is bare laminate.
+        if order.copper_layers() > 1 {
+            layers.insert(Layer::Mask(Face::Bottom), shapes(&openings[1], Role::Opening, ""));
+        }
     }
     if order.board.text != TextOn::None {
         let mut room = legend::room(order, size, &circuit, &[&signal, &top_ground, &openings[0], &keep_outs], &launches, &holes);
@@ -177,6 +203,8 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
             outline_drawn: order.board.outline,
             layers,
             holes,
+            slots,
+            plated_edges,
             lands,
             ports,
             circuit: circuit.bounds().unwrap_or_default(),
@@ -276,6 +304,51 @@ fn mounting_holes(order: &Order, size: Point, problems: &mut Vec<Problem>) -> Ve
         holes.push(Hole { at, diameter, pad: Nm::ZERO, purpose: HoleUse::Mounting, net: String::new() });
     }
     holes
+}
+
+/// Slots that do not lie wholly on the board.
+fn slots_off_the_board(order: &Order, slots: &[Slot], size: Point) -> Vec<Problem> {
+    let off = |slot: &Slot| {
+        let reach = Nm(slot.width.0 / 2) + Nm::from_m(order.shop.edge_clearance_m);
+        [slot.from, slot.to].iter().any(|at| at.x < reach || at.y < reach || at.x > size.x - reach || at.y > size.y - reach)
+    };
+    let outside = slots.iter().enumerate().filter(|(_, slot)| off(slot));
+    outside
+        .map(|(i, slot)| {
+            Problem::error(
+                "slot-off-the-board",
+                Place::Key(format!("board.slot[{i}]")),
+                format!(
+                    "the slot of {:.3} mm from ({:.3}, {:.3}) to ({:.3}, {:.3}) mm does not lie on the board of {:.3} mm x {:.3} mm with {:.3} mm to the edge",
+                    slot.width.mm(),
+                    slot.from.x.mm(),
+                    slot.from.y.mm(),
+                    slot.to.x.mm(),
+                    slot.to.y.mm(),
+                    size.x.mm(),
+                    size.y.mm(),
+                    order.shop.edge_clearance_m * 1e3
+                ),
+                "move the slot inwards, or enlarge the board",
+            )
+        })
+        .collect()
+}
+
+/// Plated stretches that reach beyond the end of their edge.
+fn edges_off_the_board(order: &Order, size: Point) -> Vec<Problem> {
+    let length = |side| if matches!(side, Side::Bottom | Side::Top) { size.x } else { size.y };
+    let beyond = order.board.plated_edges.iter().enumerate().filter(|(_, edge)| Nm::from_m(edge.to_m) > length(edge.side));
+    beyond
+        .map(|(i, edge)| {
+            Problem::error(
+                "plated-edge-off-the-board",
+                Place::Key(format!("board.plated-edge[{i}]")),
+                format!("the stretch ends at {:.3} mm, the edge at {:.3} mm", edge.to_m * 1e3, length(edge.side).mm()),
+                format!("to = \"{:.3} mm\" or less", length(edge.side).mm()),
+            )
+        })
+        .collect()
 }
 
 /// An error when the circuit does not lie within the housing: across, all of it; along, what is not a feed, since feeds pass the wall.

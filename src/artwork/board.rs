@@ -98,6 +98,19 @@ impl Hole {
     }
 }
 
+/// A slot with round ends, finished size.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Slot {
+    /// Centre of one end.
+    pub from: Point,
+    /// Centre of the other end.
+    pub to: Point,
+    /// Finished width.
+    pub width: Nm,
+    /// Whether the wall is plated; it is then ground, on every copper layer.
+    pub plated: bool,
+}
+
 /// A land where a connector or wire is soldered: a flash on top of the copper it lies in.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Land {
@@ -109,6 +122,17 @@ pub struct Land {
     pub net: String,
     /// Reference and pin: `J1`, `1`.
     pub pin: (String, String),
+    /// What is soldered there.
+    pub fits: Fits,
+}
+
+/// What a land is for.
+#[derive(Clone, Copy, Debug, PartialEq, Eq, PartialOrd, Ord)]
+pub enum Fits {
+    /// A connector, wire or probe, soldered by hand: no paste.
+    Connector,
+    /// A chip part, placed by machine: solder paste is printed on its land.
+    Chip,
 }
 
 /// A port: the plane at the connector and the reference plane of the response.
@@ -148,6 +172,10 @@ pub struct Board {
     pub layers: BTreeMap<Layer, Vec<Shape>>,
     /// Holes, sorted.
     pub holes: Vec<Hole>,
+    /// Slots.
+    pub slots: Vec<Slot>,
+    /// Plated stretches of the outline, from end to end; ground.
+    pub plated_edges: Vec<[Point; 2]>,
     /// Solder lands on the top.
     pub lands: Vec<Land>,
     /// Ports.

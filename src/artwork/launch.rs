@@ -1,5 +1,6 @@
 //! What copper brings a port from the board's edge to the feed: pad, taper, ground pads, via fence, and the bend of a turned circuit.
 
+use crate::artwork::Fits;
 use crate::artwork::Hole;
 use crate::artwork::HoleUse;
 use crate::artwork::Land;
@@ -161,6 +162,7 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
                 size: [Nm(length.0 / 2 * 2), half + half],
                 net,
                 pin: pin(1),
+                fits: Fits::Connector,
             });
         }
         LaunchShape::EdgeCoax {
@@ -194,6 +196,7 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
                 size: [Nm((pad_end - pull_back).0 / 2 * 2), half + half],
                 net,
                 pin: pin(1),
+                fits: Fits::Connector,
             });
             // Where the taper widens towards the feed, the ground pads end a gap before it begins, so that the gap holds to its corner.
             let widens = mouth.width().0 > 2 * half.0;
@@ -216,6 +219,7 @@ pub(super) fn draw(shape: &LaunchShape, shop: &Shop, height_m: f64, outline: boo
                     size: [Nm((ground_end - pull_back).0 / 2 * 2), Nm(ground_width.0 / 2 * 2)],
                     net: "GND".to_string(),
                     pin: pin(number),
+                    fits: Fits::Connector,
                 });
                 for &row in &rows {
                     for u in fence(first, last, Nm::from_m(via_pitch_m)) {

@@ -56,7 +56,7 @@ pub(super) fn room(order: &Order, size: Point, circuit: &Region, others: &[&Regi
 
 /// The lines, most wanted first, spelt in letters the font has.
 fn lines(order: &Order, problems: &mut Vec<Problem>) -> Vec<String> {
-    let part = order.part_number.as_ref().map_or(String::new(), |number| format!("  {number}"));
+    let part = if order.part_number == order.name { String::new() } else { format!("  {}", order.part_number) };
     let wanted = [
         format!("{}  rev {}{part}", order.name, order.revision),
         format!("er {}  h {} mm", short(order.laminate.permittivity), short(order.laminate.thickness_m * 1e3)),

@@ -20,4 +20,6 @@ pub use assemble::board;
 pub use board::*;
 pub use compensate::compensated;
 pub use ground::highest_hz;
+pub use ground::slot_area;
 pub use launch::launch_half_width;
+pub use text::lettering;

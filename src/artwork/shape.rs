@@ -219,7 +219,12 @@ pub fn grown_hull(points: &[Point], by: Nm) -> Ring {
     hull(cloud)
 }
 
-/// The convex hull, counter-clockwise, without collinear corners (monotone chain).
+/// The convex hull, counter-clockwise, without collinear corners.
+pub fn convex_hull(points: &[Point]) -> Ring {
+    hull(points.to_vec())
+}
+
+/// Monotone chain.
 fn hull(mut points: Vec<Point>) -> Ring {
     points.sort();
     points.dedup();

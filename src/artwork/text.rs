@@ -156,6 +156,11 @@ impl Block {
     }
 }
 
+/// Lines of text as area for a drawing, the first on top, the lower left corner at the origin.
+pub fn lettering(lines: &[String], height: Nm, stroke: Nm) -> Region {
+    Block::new(lines, height, stroke).drawn()
+}
+
 /// The lines with spaces turned into line ends so that none is longer than `most` letters, where its words allow.
 pub(super) fn wrapped(lines: &[String], most: usize) -> Vec<String> {
     let mut out: Vec<String> = Vec::new();

@@ -14,7 +14,7 @@ pub(super) const RULE: Rule = Rule {
 
 fn run(subject: &Subject) -> Vec<Problem> {
     let order = &subject.dimensions.order;
-    let board_m = order.laminate.thickness_m + 2.0 * order.laminate.copper.finished_m();
+    let board_m = order.stack_thickness_m();
     let limit = order.shop.aspect_ratio;
     let deep = subject.board.holes.iter().filter(|hole| hole.is_plated() && board_m > limit * hole.diameter.m() * (1.0 + 1e-9));
     deep.map(|hole| {

@@ -33,13 +33,23 @@ fn run(subject: &Subject) -> Vec<Problem> {
             (p.x - middle.x).abs() <= half && (p.y - middle.y).abs() <= half
         })
     };
+    // Along a plated stretch copper runs to the edge on purpose.
+    let at_plating = |p: Point| {
+        let reach = Nm::from_m(limit_m);
+        board.plated_edges.iter().any(|[a, b]| {
+            let within = |v: Nm, one: Nm, other: Nm| v >= one.min(other) - reach && v <= one.max(other) + reach;
+            within(p.x, a.x, b.x) && within(p.y, a.y, b.y)
+        })
+    };
     let mut found = Vec::new();
     for (layer, shapes) in board.layers.iter().filter(|(layer, _)| matches!(layer, crate::artwork::Layer::Copper(_))) {
         for shape in shapes {
             let nearest = edges(std::iter::once(&shape.outer))
                 .iter()
                 .flat_map(|&edge| outline.iter().map(move |&side| between_edges(edge, side)))
-                .filter(|closest| closest.distance_m < limit_m - super::measure::ROUNDING_M && !at_launch(closest.from))
+                .filter(|closest| {
+                    closest.distance_m < limit_m - super::measure::ROUNDING_M && !at_launch(closest.from) && !at_plating(closest.from)
+                })
                 .min_by(|a, b| a.distance_m.total_cmp(&b.distance_m));
             if let Some(closest) = nearest {
                 let what = if shape.role == Role::Text { "text" } else { shape.net.as_str() };

@@ -16,7 +16,7 @@ pub(super) const RULE: Rule = Rule {
 fn run(subject: &Subject) -> Vec<Problem> {
     let order = &subject.dimensions.order;
     let LaunchShape::EdgeCoax { board_thickness_m: [least_m, greatest_m], .. } = order.board.launch.shape else { return Vec::new() };
-    let board_m = order.laminate.thickness_m + 2.0 * order.laminate.copper.finished_m();
+    let board_m = order.stack_thickness_m();
     let at = |i: usize| subject.board.ports.get(i).map_or(Place::Whole, |port| Place::Board(port.edge.middle()));
     if board_m >= least_m && board_m <= greatest_m {
         return Vec::new();

@@ -16,7 +16,7 @@ use crate::checks::Subject;
 use crate::order::Compensation;
 
 /// Corners are rounded once to 1 nm, so that a turned strip may measure this much less than it was drawn, metres.
-pub(super) const ROUNDING_M: f64 = 2e-9;
+pub(crate) const ROUNDING_M: f64 = 2e-9;
 
 /// Edges whose normals lie within 10 degrees of the way between them face each other: a strip, a taper. On a round piece this measures at
 /// least 0.985 of its diameter.
@@ -48,7 +48,7 @@ pub(super) fn copper(board: &Board) -> impl Iterator<Item = (Layer, &Shape)> {
 
 /// The narrowest place of copper and of the space between two stretches of one shape's own edge.
 #[derive(Clone, Copy, Debug, Default)]
-pub(super) struct Narrow {
+pub(crate) struct Narrow {
     /// Copper between two facing edges.
     pub copper: Option<Closest>,
     /// Space between two facing edges: a notch or slot.
@@ -66,7 +66,7 @@ struct Known {
 /// Looks only at places narrower than `below_m`.
 ///
 /// Edges that meet at a corner are the business of the acute-angle rule.
-pub(super) fn narrow(shape: &Shape, below_m: f64) -> Narrow {
+pub(crate) fn narrow(shape: &Shape, below_m: f64) -> Narrow {
     let mut sorted: Vec<Known> = std::iter::once(&shape.outer)
         .chain(&shape.voids)
         .flat_map(|ring| {

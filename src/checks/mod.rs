@@ -15,7 +15,7 @@ mod launch_thickness;
 mod launch_width;
 mod lid;
 mod line_width;
-mod measure;
+pub(crate) mod measure;
 mod microwave;
 mod nets;
 mod panel;

@@ -7,7 +7,9 @@ use super::context::{Context, parse};
 use super::requirement::{self, FREQUENCY};
 use super::source::Source;
 use super::table::{Size, Table, nearest};
-use super::types::{Band, FamilyKeys, Filter, Key, Laminate, Launch, Order, OwnKind, OwnValue, Passes, ResponseShape, Shop};
+use super::types::{
+    Band, FamilyKeys, Filter, GroundOn, Housing, Key, Laminate, Launch, Order, OwnKind, OwnValue, Paper, Passes, ResponseShape, Shop,
+};
 use super::{board, laminate, launch, shop};
 use crate::base::Dimensionality;
 use crate::base::Outcome;
@@ -16,6 +18,10 @@ use crate::base::parse_quantity;
 /// A class that stands for "every value is given here".
 pub const OWN_CLASS: &str = "own";
 
+/// Who answers the board house's questions, when the order names nobody.
+const BUYER: &str = "the buyer named on the purchase order";
+/// The words of `paper`.
+pub(super) const PAPERS: &[(&str, Paper)] = &[("a4", Paper::A4), ("letter", Paper::Letter)];
 /// Longest name: it becomes the stem of file names with up to 30 more characters.
 const LONGEST_NAME: usize = 60;
 const PORT: Size = Size { kind: Dimensionality::Impedance, unit: "ohm", least: 1.0, greatest: 1000.0, usual: "50 ohm" };
@@ -105,8 +111,16 @@ pub(crate) fn read_into(root: &Table<'_>, resolved: &Table<'_>, source: &Source,
     let shop = read_shop(root, &lookup);
     let board_table = root.table("board");
     let launch = read_launch(root, &board_table, &lookup);
-    let board = board::read(&board_table, launch);
+    let board = board::read(&board_table, laminate.as_ref(), shop.as_ref(), launch);
     let housing = if root.has("housing") { board::read_housing(&root.table("housing")).map(Some) } else { Some(None) };
+    if let (Some(GroundOn::Carrier), Some(Some(Housing { inside_m: Some(_), .. }))) = (board.as_ref().map(|board| board.ground), &housing) {
+        root.table("housing").error(
+            "keys-exclude-each-other",
+            "inside",
+            "housing.inside draws the wall's footprint on the board and fences it to copper 2, but with board.ground = \"carrier\" there is none",
+            "leave housing.inside out (the walls stand on the carrier), or write board.ground = \"layer-2\"",
+        );
+    }
     for path in root.context().listed_but_never_met() {
         resolved.warning(
             "default-unknown",
@@ -122,6 +136,7 @@ pub(crate) fn read_into(root: &Table<'_>, resolved: &Table<'_>, source: &Source,
         part_number: head.part_number,
         contact: head.contact,
         acceptance_class: head.acceptance_class,
+        paper: head.paper,
         revision: head.revision,
         date: head.date,
         classes: head.classes,
@@ -139,9 +154,10 @@ pub(crate) fn read_into(root: &Table<'_>, resolved: &Table<'_>, source: &Source,
 struct Head {
     name: String,
     title: String,
-    part_number: Option<String>,
-    contact: Option<String>,
+    part_number: String,
+    contact: String,
     acceptance_class: u8,
+    paper: Paper,
     revision: String,
     date: Option<String>,
     classes: Option<String>,
@@ -152,8 +168,12 @@ fn head(t: &Table<'_>) -> Option<Head> {
     const LONGEST: usize = 100;
     let name = t.resolve("name", "\"my-filter\"", None, name);
     let title = t.resolve("title", "\"...\"", Some(name.clone().unwrap_or_default()), |t, k| t.line(k, LONGEST));
-    let part_number = t.line("part-number", LONGEST);
-    let contact = t.line("contact", LONGEST);
+    let part_number = t.resolve("part-number", "\"AB-1042\"", Some(name.clone().unwrap_or_default()), |t, k| t.line(k, LONGEST));
+    let contact = t.resolve("contact", "\"RF desk, extension 12\"", Some(BUYER.to_string()), |t, k| t.line(k, LONGEST));
+    let paper = t.resolve("paper", "\"a4\"", Some(Paper::A4), |t, k| {
+        let words: Vec<&str> = PAPERS.iter().map(|p| p.0).collect();
+        t.word(k, &words).and_then(|i| PAPERS.get(i)).map(|p| p.1)
+    });
     let acceptance_class = t.resolve("acceptance-class", "2", Some(2), |t, k| t.integer(k, 1, 3));
     let revision = t.resolve("revision", "\"A\"", Some("A".to_string()), |t, k| t.line(k, 20));
     let date = t.date("date");
@@ -162,8 +182,9 @@ fn head(t: &Table<'_>) -> Option<Head> {
     Some(Head {
         name: name?,
         title: title?,
-        part_number,
-        contact,
+        part_number: part_number?,
+        contact: contact?,
+        paper: paper?,
         acceptance_class: u8::try_from(acceptance_class?).ok()?,
         revision: revision?,
         date,

@@ -9,12 +9,14 @@ pub struct Order {
     pub name: String,
     /// One line for people.
     pub title: String,
-    /// Printed in note, drawing and job file.
-    pub part_number: Option<String>,
+    /// Printed in note, drawing and job file; the name when the order gives none.
+    pub part_number: String,
     /// Who answers questions of the board house.
-    pub contact: Option<String>,
+    pub contact: String,
     /// Acceptance class of the bare board, 1 to 3 (IPC-6012 / IPC-6018).
     pub acceptance_class: u8,
+    /// Sheets of the fabrication drawing.
+    pub paper: Paper,
     /// Revision letter or number.
     pub revision: String,
     /// `YYYY-MM-DD`, when the order has one.
@@ -35,6 +37,15 @@ pub struct Order {
     pub housing: Option<Housing>,
     /// Key paths whose values were not written by the user but resolved from a class or a default.
     pub defaults: Vec<String>,
+}
+
+/// Sheet size of the fabrication drawing, landscape.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Paper {
+    /// 297 mm x 210 mm.
+    A4,
+    /// 279.4 mm x 215.9 mm.
+    Letter,
 }
 
 /// The filter wanted.
@@ -333,6 +344,18 @@ pub struct BoardRequest {
     pub mask: Mask,
     /// Size of the board.
     pub size: BoardSize,
+    /// Finished board over copper and plating, without finish, mask and legend.
+    pub thickness_m: f64,
+    /// Plus or minus.
+    pub thickness_tolerance_m: f64,
+    /// Plus or minus on length and width of the board.
+    pub outline_tolerance_m: f64,
+    /// How the board lies on the laminate's sheet.
+    pub grain: Grain,
+    /// What the filter's ground is.
+    pub ground: GroundOn,
+    /// What lies under copper 2, top to bottom: dielectrics, each with the ground copper under it.
+    pub below: Vec<Below>,
     /// Whether the board outline is drawn ("none": a filter inside a larger board, feed ends pinned).
     pub outline: bool,
     /// Edges port 1 and port 2 leave by; opposite edges.
@@ -347,6 +370,69 @@ pub struct BoardRequest {
     pub mounting_holes: Vec<MountingHole>,
     /// Rectangles where nothing may be drawn on the top.
     pub keep_outs: Vec<KeepOut>,
+    /// Slots routed through the board.
+    pub slots: Vec<SlotRequest>,
+    /// Stretches of the board's edge that are plated and join the grounds of top and bottom.
+    pub plated_edges: Vec<PlatedEdgeRequest>,
+}
+
+/// Direction of the laminate's grain (machine direction, warp) on the board.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Grain {
+    /// From port edge to port edge.
+    AlongPorts,
+    /// Across that.
+    AcrossPorts,
+    /// One direction for all boards of a panel, which one is free.
+    Any,
+}
+
+/// What the filter's ground is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum GroundOn {
+    /// Copper 2, under the laminate.
+    Layer2,
+    /// A metal carrier the board lies on; the board has copper on the top alone.
+    Carrier,
+}
+
+/// A dielectric below the filter's ground, and the copper under it.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Below {
+    /// What it is made of, for people.
+    pub material: String,
+    /// Relative permittivity.
+    pub permittivity: f64,
+    /// Of the dielectric.
+    pub thickness_m: f64,
+    /// Plus or minus.
+    pub thickness_tolerance_m: f64,
+    /// Foil of the copper under it; the last one is plated like copper 1.
+    pub copper_m: f64,
+}
+
+/// A slot through the board, round ends; coordinates from the board's lower left corner.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct SlotRequest {
+    /// Centre of one end.
+    pub from_m: [f64; 2],
+    /// Centre of the other end.
+    pub to_m: [f64; 2],
+    /// Finished width.
+    pub width_m: f64,
+    /// Whether its wall is plated and grounded.
+    pub plated: bool,
+}
+
+/// A plated stretch of a board edge.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct PlatedEdgeRequest {
+    /// Which edge.
+    pub side: Side,
+    /// Begins here, along the edge from the board's left or lower corner.
+    pub from_m: f64,
+    /// Ends here.
+    pub to_m: f64,
 }
 
 /// An edge of the board seen from the top.

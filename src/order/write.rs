@@ -2,9 +2,10 @@
 
 use std::fmt::Write;
 
-use super::board::{MASKS, OUTLINES, SIDES, TEXTS};
+use super::board::{GRAINS, GROUNDS, MASKS, OUTLINES, SIDES, TEXTS};
 use super::laminate::KINDS;
 use super::launch::SHAPES;
+use super::read::PAPERS;
 use super::shop::COMPENSATIONS;
 use super::types::{
     Band, BoardRequest, BoardSize, Compensation, Filter, Housing, Laminate, Launch, LaunchShape, Limit, Mask, Order, OwnValue, Requirement,
@@ -126,13 +127,10 @@ fn head(out: &mut Text, order: &Order) {
     out.heading("[order]");
     out.text("name", &order.name);
     out.text("title", &order.title);
-    if let Some(number) = &order.part_number {
-        out.text("part-number", number);
-    }
-    if let Some(contact) = &order.contact {
-        out.text("contact", contact);
-    }
+    out.text("part-number", &order.part_number);
+    out.text("contact", &order.contact);
     out.key("acceptance-class", order.acceptance_class);
+    out.text("paper", PAPERS.iter().find(|p| p.1 == order.paper).map_or("", |p| p.0));
     out.text("revision", &order.revision);
     if let Some(date) = &order.date {
         out.key("date", date);
@@ -264,6 +262,11 @@ fn board(out: &mut Text, board: &BoardRequest) {
         BoardSize::Margin(margin) => out.mm("margin", margin),
         BoardSize::Fixed(size) => out.mm_pair("size", size),
     }
+    out.mm("thickness", board.thickness_m);
+    out.mm("thickness-tolerance", board.thickness_tolerance_m);
+    out.mm("outline-tolerance", board.outline_tolerance_m);
+    out.text("grain", GRAINS.iter().find(|g| g.1 == board.grain).map_or("", |g| g.0));
+    out.text("ground", GROUNDS.iter().find(|g| g.1 == board.ground).map_or("", |g| g.0));
     out.text("outline", OUTLINES[usize::from(!board.outline)]);
     let side = |side: Side| quoted(SIDES.iter().find(|s| s.1 == side).map_or("", |s| s.0));
     out.key("port-side", format!("[{}, {}]", side(board.port_side[0]), side(board.port_side[1])));
@@ -281,6 +284,27 @@ fn board(out: &mut Text, board: &BoardRequest) {
         out.heading("[[board.mounting-hole]]");
         out.mm_pair("at", hole.at_m);
         out.mm("diameter", hole.diameter_m);
+    }
+    for slot in &board.slots {
+        out.heading("[[board.slot]]");
+        out.mm_pair("from", slot.from_m);
+        out.mm_pair("to", slot.to_m);
+        out.mm("width", slot.width_m);
+        out.key("plated", slot.plated);
+    }
+    for edge in &board.plated_edges {
+        out.heading("[[board.plated-edge]]");
+        out.key("side", side(edge.side));
+        out.mm("from", edge.from_m);
+        out.mm("to", edge.to_m);
+    }
+    for below in &board.below {
+        out.heading("[[board.below]]");
+        out.text("material", &below.material);
+        out.key("permittivity", plain_number(below.permittivity));
+        out.mm("thickness", below.thickness_m);
+        out.mm("thickness-tolerance", below.thickness_tolerance_m);
+        out.key("copper", quantity(below.copper_m, Dimensionality::CopperThickness, "um"));
     }
     for area in &board.keep_outs {
         out.heading("[[board.keep-out]]");

@@ -5,8 +5,10 @@ use std::io;
 use std::io::BufWriter;
 use std::io::Write;
 
+use crate::artwork::Board;
 use crate::artwork::Hole;
 use crate::artwork::HoleUse;
+use crate::artwork::Slot;
 use crate::base::Nm;
 use crate::package::gerber::field;
 use crate::package::job::Job;
@@ -14,46 +16,92 @@ use crate::package::job::Job;
 /// Two digits hold tool numbers; a third would read as a compensation index.
 const MAX_TOOLS: usize = 99;
 
-/// Writes the plated or the unplated holes.
-pub fn write(job: &Job, plated: bool, out: &mut dyn Write) -> io::Result<()> {
-    let mut tools: BTreeMap<(HoleUse, Nm), Vec<&Hole>> = BTreeMap::new();
-    for hole in job.artwork.holes.iter().filter(|hole| hole.is_plated() == plated) {
-        tools.entry((hole.purpose, hole.diameter)).or_default().push(hole);
+/// One tool: its function, its size, where it drills and where it routs.
+struct Tool<'a> {
+    function: &'static str,
+    diameter: Nm,
+    holes: Vec<&'a Hole>,
+    slots: Vec<&'a Slot>,
+}
+
+/// The tools of the plated or the unplated file: holes by purpose and size, then slots by width.
+fn tools(board: &Board, plated: bool) -> Vec<Tool<'_>> {
+    let mut drills: BTreeMap<(HoleUse, Nm), Vec<&Hole>> = BTreeMap::new();
+    for hole in board.holes.iter().filter(|hole| hole.is_plated() == plated) {
+        drills.entry((hole.purpose, hole.diameter)).or_default().push(hole);
     }
+    let mut mills: BTreeMap<Nm, Vec<&Slot>> = BTreeMap::new();
+    for slot in board.slots.iter().filter(|slot| slot.plated == plated) {
+        mills.entry(slot.width).or_default().push(slot);
+    }
+    let drills = drills.into_iter().map(|((purpose, diameter), holes)| Tool {
+        function: match purpose {
+            HoleUse::Via => "ViaDrill,None",
+            HoleUse::Mounting => "MechanicalDrill",
+        },
+        diameter,
+        holes,
+        slots: Vec::new(),
+    });
+    let mills = mills.into_iter().map(|(diameter, slots)| Tool {
+        function: if plated { "OtherDrill,Ground slot" } else { "MechanicalDrill,Other" },
+        diameter,
+        holes: Vec::new(),
+        slots,
+    });
+    drills.chain(mills).collect()
+}
+
+/// Writes the plated or the unplated holes and slots.
+pub fn write(job: &Job, plated: bool, out: &mut dyn Write) -> io::Result<()> {
+    let tools = tools(&job.artwork, plated);
     if tools.len() > MAX_TOOLS {
         let message = format!("{} different holes; a drill file holds at most {MAX_TOOLS} tools", tools.len());
         return Err(io::Error::new(io::ErrorKind::InvalidData, message));
     }
     let order = job.order();
     let mut out = BufWriter::new(out);
-    let (tool, version) = (env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION"));
-    let function = if plated { "Plated,1,{n},PTH" } else { "NonPlated,1,{n},NPTH" };
+    let (name, version) = (env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION"));
+    let label = match (tools.iter().any(|tool| !tool.holes.is_empty()), tools.iter().any(|tool| !tool.slots.is_empty())) {
+        (true, true) => ",Mixed",
+        (false, true) => ",Rout",
+        _ => ",Drill",
+    };
+    let (kind, through) = if plated { ("Plated", "PTH") } else { ("NonPlated", "NPTH") };
     writeln!(out, "M48")?;
-    writeln!(out, "; #@! TF.GenerationSoftware,{tool},{tool},{version}")?;
+    writeln!(out, "; #@! TF.GenerationSoftware,{name},{name},{version}")?;
     if let Some(date) = &order.date {
         writeln!(out, "; #@! TF.CreationDate,{date}T00:00:00+00:00")?;
     }
     writeln!(out, "; #@! TF.ProjectId,{},{},{}", field(&order.name), job.project, field(&order.revision))?;
     writeln!(out, "; #@! TF.SameCoordinates,{}", job.coordinates)?;
     writeln!(out, "; #@! TF.Part,Single")?;
-    writeln!(out, "; #@! TF.FileFunction,{}", function.replace("{n}", &job.copper_layers().to_string()))?;
+    writeln!(out, "; #@! TF.FileFunction,{kind},1,{},{through}{label}", job.copper_layers())?;
     writeln!(out, "; #@! TF.FilePolarity,Positive")?;
+    if job.breaks_a_rule() {
+        writeln!(out, "; A DESIGN RULE IS BROKEN: quote and build only on written consent")?;
+    }
     writeln!(out, "METRIC")?;
-    for (number, (purpose, diameter)) in (1..).zip(tools.keys()) {
-        let function = match purpose {
-            HoleUse::Via => "ViaDrill",
-            HoleUse::Mounting => "MechanicalDrill",
-        };
-        writeln!(out, "; #@! TA.AperFunction,{function}")?;
-        writeln!(out, "T{number:02}C{}", size(*diameter))?;
+    let tolerance = size(Nm::from_m(order.shop.hole_tolerance_m));
+    for (number, tool) in (1..).zip(&tools) {
+        writeln!(out, "; #@! TA.AperFunction,{}", tool.function)?;
+        writeln!(out, "; #@! TA.DrillTolerance,{tolerance},{tolerance}")?;
+        writeln!(out, "T{number:02}C{}", size(tool.diameter))?;
         writeln!(out, "; #@! TD")?;
     }
     writeln!(out, "%")?;
     writeln!(out, "G05")?;
-    for (number, holes) in (1..).zip(tools.values()) {
+    for (number, tool) in (1..).zip(&tools) {
         writeln!(out, "T{number:02}")?;
-        for hole in holes {
+        for hole in &tool.holes {
             writeln!(out, "X{}Y{}", decimal(hole.at.x), decimal(hole.at.y))?;
+        }
+        for slot in &tool.slots {
+            writeln!(out, "G00X{}Y{}", decimal(slot.from.x), decimal(slot.from.y))?;
+            writeln!(out, "M15")?;
+            writeln!(out, "G01X{}Y{}", decimal(slot.to.x), decimal(slot.to.y))?;
+            writeln!(out, "M16")?;
+            writeln!(out, "G05")?;
         }
     }
     writeln!(out, "M30")?;

@@ -32,6 +32,7 @@ use dxf::objects::ObjectType;
 use dxf::tables::Layer as DxfLayer;
 
 use crate::artwork::Layer;
+use crate::artwork::slot_area;
 use crate::base::Nm;
 use crate::base::Point;
 use crate::base::spelt_out;
@@ -40,6 +41,8 @@ use crate::package::job::Job;
 pub(super) const OUTLINE: &str = "BOARD_OUTLINE";
 const PLATED: &str = "DRILL_PTH";
 const UNPLATED: &str = "DRILL_NPTH";
+const PLATED_SLOT: &str = "SLOT_PTH";
+const UNPLATED_SLOT: &str = "SLOT_NPTH";
 const NOTES: &str = "NOTES";
 /// Notes stand this far above the board, so that no text lies on copper.
 const NOTES_ABOVE: Nm = Nm(3_000_000);
@@ -77,6 +80,11 @@ pub fn write(job: &Job, out: &mut dyn Write) -> io::Result<()> {
     for hole in &job.artwork.holes {
         sheet.circle(if hole.is_plated() { PLATED } else { UNPLATED }, hole.at, hole.diameter);
     }
+    for slot in &job.artwork.slots {
+        for piece in slot_area(slot, Nm::ZERO).pieces {
+            sheet.ring(if slot.plated { PLATED_SLOT } else { UNPLATED_SLOT }, &piece.outer);
+        }
+    }
     sheet.notes(job);
     sheet.save(job, out)
 }
@@ -95,8 +103,8 @@ pub(super) struct Drawn {
     pub in_millimetres: bool,
     /// Closed polylines by layer.
     pub rings: BTreeMap<String, Vec<Vec<Point>>>,
-    /// Centre and diameter of the holes.
-    pub circles: Vec<(Point, Nm)>,
+    /// The holes: plated or not, centre, diameter.
+    pub circles: Vec<(bool, Point, Nm)>,
 }
 
 /// Reads a drawing back; the error says why it cannot be read.
@@ -120,7 +128,7 @@ pub(super) fn read(path: &Path) -> Result<Drawn, String> {
                 drawn.rings.entry(layer.clone()).or_default().push(ring);
             }
             EntityType::Circle(circle) if layer == PLATED || layer == UNPLATED => {
-                drawn.circles.push((point(circle.center.x, circle.center.y), Nm::from_m(2e-3 * circle.radius)));
+                drawn.circles.push((layer == PLATED, point(circle.center.x, circle.center.y), Nm::from_m(2e-3 * circle.radius)));
             }
             _ => {}
         }
@@ -154,7 +162,10 @@ impl Sheet {
             layers.push((name.clone(), if number == 1 { 1 } else { 5 }));
             layers.push((format!("{name}_VOID"), 8));
         }
-        layers.extend([(OUTLINE, 7), (PLATED, 3), (UNPLATED, 6), (NOTES, 9)].map(|(name, color)| (name.to_string(), color)));
+        layers.extend(
+            [(OUTLINE, 7), (PLATED, 3), (UNPLATED, 6), (PLATED_SLOT, 3), (UNPLATED_SLOT, 6), (NOTES, 9)]
+                .map(|(name, color)| (name.to_string(), color)),
+        );
         for (name, color) in layers {
             let line_weight = dxf::LineWeight::by_block();
             drawing.add_layer(DxfLayer { name, color: Color::from_index(color), line_weight, ..Default::default() });
@@ -226,6 +237,9 @@ impl Sheet {
             "LAYERS NAMED _VOID ARE CUT OUT OF THE COPPER LAYER OF THE SAME NAME; CIRCLES ARE FINISHED HOLES".to_string(),
             "FOR REFERENCE: THE GERBER AND DRILL FILES GOVERN".to_string(),
         ];
+        if job.breaks_a_rule() {
+            lines.push("A DESIGN RULE IS BROKEN: BUILD ONLY ON WRITTEN CONSENT".to_string());
+        }
         let compensation = job.compensation_m();
         if compensation > 0.0 {
             lines.insert(3, format!("TOP COPPER IS THE ARTWORK: FINISHED SIZE PLUS {:.4} MM ON EACH EDGE", compensation * 1e3));

@@ -20,6 +20,7 @@ use gerber_types::CoordinateFormat;
 use gerber_types::CoordinateMode;
 use gerber_types::CoordinateNumber;
 use gerber_types::Coordinates;
+use gerber_types::CopperType;
 use gerber_types::DCode;
 use gerber_types::ExtendedCode;
 use gerber_types::ExtendedPosition;
@@ -48,6 +49,7 @@ use gerber_types::Unit;
 use gerber_types::ZeroOmission;
 
 use crate::artwork::Face;
+use crate::artwork::Fits;
 use crate::artwork::HoleUse;
 use crate::artwork::Layer;
 use crate::artwork::Role;
@@ -79,7 +81,8 @@ pub fn copper(job: &Job, number: u8, out: &mut dyn Write) -> io::Result<()> {
         n if n == last => ExtendedPosition::Bottom,
         _ => ExtendedPosition::Inner,
     };
-    let function = FileFunction::Copper { layer: i32::from(number), pos, copper_type: None };
+    let copper_type = if number == 1 { CopperType::Signal } else { CopperType::Plane };
+    let function = FileFunction::Copper { layer: i32::from(number), pos, copper_type: Some(copper_type) };
     let mut pen = Pen::begin(job, function, FilePolarity::Positive, out)?;
 
     // One function, one aperture, even where the shape is the same.
@@ -150,9 +153,36 @@ pub fn legend(job: &Job, face: Face, out: &mut dyn Write) -> io::Result<()> {
     pen.end()
 }
 
+/// Writes the openings of the stencil: the lands of chip parts, one flash each.
+pub fn paste(job: &Job, out: &mut dyn Write) -> io::Result<()> {
+    let mut pen = Pen::begin(job, FileFunction::Paste(Position::Top), FilePolarity::Positive, out)?;
+    let lands = || job.artwork.lands.iter().filter(|land| land.fits == Fits::Chip);
+    let mut apertures: BTreeMap<[Nm; 2], i32> = lands().map(|land| (land.size, 0)).collect();
+    for (code, (size, slot)) in (FIRST_APERTURE..).zip(&mut apertures) {
+        *slot = code;
+        pen.define(code, ApertureFunction::Material, Aperture::Rectangle(Rectangular::new(size[0].mm(), size[1].mm())))?;
+    }
+    for land in lands() {
+        pen.select(apertures.get(&land.size))?;
+        pen.flash(land.at)?;
+    }
+    pen.end()
+}
+
+/// Writes the drill map: the board's edge and these shapes.
+pub fn drawing(job: &Job, shapes: &[Shape], out: &mut dyn Write) -> io::Result<()> {
+    let mut pen = Pen::begin(job, FileFunction::DrillMap, FilePolarity::Positive, out)?;
+    pen.define(FIRST_APERTURE, ApertureFunction::Other("Edge".to_string()), Aperture::Circle(Circle::new(PROFILE_STROKE.mm())))?;
+    pen.select(Some(&FIRST_APERTURE))?;
+    pen.contour(&job.artwork.outline.outer)?;
+    pen.shapes(shapes, |_| ApertureFunction::Other("Drawing".to_string()))?;
+    pen.end()
+}
+
 /// Writes the board's edge as a closed chain of strokes; their centre line is the edge.
 pub fn profile(job: &Job, out: &mut dyn Write) -> io::Result<()> {
-    let mut pen = Pen::begin(job, FileFunction::Profile(Some(Profile::NonPlated)), FilePolarity::Positive, out)?;
+    let edge = if job.artwork.plated_edges.is_empty() { Profile::NonPlated } else { Profile::Plated };
+    let mut pen = Pen::begin(job, FileFunction::Profile(Some(edge)), FilePolarity::Positive, out)?;
     pen.define(FIRST_APERTURE, ApertureFunction::Profile, Aperture::Circle(Circle::new(PROFILE_STROKE.mm())))?;
     pen.select(Some(&FIRST_APERTURE))?;
     let outline = &job.artwork.outline;
@@ -222,6 +252,9 @@ impl<'w> Pen<'w> {
         pen.emit(GCode::QuadrantMode(QuadrantMode::Multi))?;
         pen.emit(GCode::InterpolationMode(InterpolationMode::Linear))?;
         pen.emit(Polarity::Dark)?;
+        if job.breaks_a_rule() {
+            pen.out.write_all(b"G04 A DESIGN RULE IS BROKEN: quote and build only on written consent*\n")?;
+        }
         Ok(pen)
     }
 

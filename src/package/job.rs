@@ -48,7 +48,7 @@ impl<'a> Job<'a> {
             hash.update(b"project\0");
             hash.update(order.name.as_bytes());
             hash.update(b"\0");
-            hash.update(order.part_number.as_deref().unwrap_or_default().as_bytes());
+            hash.update(order.part_number.as_bytes());
         });
         let coordinates = guid(|hash| {
             hash.update(b"coordinates\0");
@@ -70,8 +70,7 @@ impl<'a> Job<'a> {
 
     /// How many copper layers there are.
     pub fn copper_layers(&self) -> u8 {
-        let numbers = self.artwork.layers.keys().filter_map(|layer| if let Layer::Copper(n) = layer { Some(*n) } else { None });
-        numbers.max().unwrap_or(1)
+        self.order().copper_layers()
     }
 
     /// Amount per edge by which the drawn strips are larger than the finished ones, metres.
@@ -110,6 +109,12 @@ fn hash_board(board: &Board, hash: &mut Sha256) {
     for hole in &board.holes {
         hash_points(&[hole.at, Point { x: hole.diameter, y: hole.pad }], hash);
         hash.update(format!("{:?}\0{}\0", hole.purpose, hole.net).as_bytes());
+    }
+    for slot in &board.slots {
+        hash_points(&[slot.from, slot.to, Point { x: slot.width, y: Nm(i64::from(slot.plated)) }], hash);
+    }
+    for edge in &board.plated_edges {
+        hash_points(edge, hash);
     }
     for land in &board.lands {
         hash_points(&[land.at, Point { x: land.size[0], y: land.size[1] }], hash);

@@ -1,12 +1,18 @@
 //! Every output file, written into a folder beside the target, then put in place whole.
 
 mod contents;
+mod drawing;
 mod drill;
+mod drill_map;
 mod dxf;
+mod facts;
 mod gerber;
 mod job;
+mod job_file;
+mod netlist;
 mod note;
 mod preview;
+mod probe;
 mod put;
 mod read_drill;
 mod read_gerber;
@@ -29,6 +35,7 @@ pub use verify::verify;
 
 use crate::artwork::Board;
 use crate::artwork::Face;
+use crate::artwork::Fits;
 use crate::artwork::HoleUse;
 use crate::artwork::Layer;
 use crate::base::Problem;
@@ -102,8 +109,36 @@ pub static WRITERS: &[Writer] = &[
         file: FileName::Ending("-copper-l2-bottom.gbr"),
         about: "copper 2, bottom side, seen from the top",
         for_board_house: true,
-        applies: |job| job.has(Layer::Copper(2)),
+        applies: |job| job.has(Layer::Copper(2)) && job.copper_layers() == 2,
         write: |job, out| gerber::copper(job, 2, out),
+    },
+    Writer {
+        file: FileName::Ending("-copper-l2-inner.gbr"),
+        about: "copper 2, inner layer, the filter's ground, seen from the top",
+        for_board_house: true,
+        applies: |job| job.has(Layer::Copper(2)) && job.copper_layers() > 2,
+        write: |job, out| gerber::copper(job, 2, out),
+    },
+    Writer {
+        file: FileName::Ending("-copper-l3-bottom.gbr"),
+        about: "copper 3, bottom side, seen from the top",
+        for_board_house: true,
+        applies: |job| job.has(Layer::Copper(3)) && job.copper_layers() == 3,
+        write: |job, out| gerber::copper(job, 3, out),
+    },
+    Writer {
+        file: FileName::Ending("-copper-l3-inner.gbr"),
+        about: "copper 3, inner layer, seen from the top",
+        for_board_house: true,
+        applies: |job| job.has(Layer::Copper(3)) && job.copper_layers() > 3,
+        write: |job, out| gerber::copper(job, 3, out),
+    },
+    Writer {
+        file: FileName::Ending("-copper-l4-bottom.gbr"),
+        about: "copper 4, bottom side, seen from the top",
+        for_board_house: true,
+        applies: |job| job.has(Layer::Copper(4)) && job.copper_layers() == 4,
+        write: |job, out| gerber::copper(job, 4, out),
     },
     Writer {
         file: FileName::Ending("-mask-top.gbr"),
@@ -118,6 +153,13 @@ pub static WRITERS: &[Writer] = &[
         for_board_house: true,
         applies: |job| job.has(Layer::Mask(Face::Bottom)),
         write: |job, out| gerber::mask(job, Face::Bottom, out),
+    },
+    Writer {
+        file: FileName::Ending("-paste-top.gbr"),
+        about: "solder paste, top side, lands of chip parts",
+        for_board_house: true,
+        applies: |job| job.artwork.lands.iter().any(|land| land.fits == Fits::Chip),
+        write: gerber::paste,
     },
     Writer {
         file: FileName::Ending("-legend-top.gbr"),
@@ -144,15 +186,36 @@ pub static WRITERS: &[Writer] = &[
         file: FileName::Ending("-plated.drl"),
         about: "plated holes, finished size",
         for_board_house: true,
-        applies: |job| job.artwork.holes.iter().any(|hole| hole.is_plated()),
+        applies: |job| job.artwork.holes.iter().any(|hole| hole.is_plated()) || job.artwork.slots.iter().any(|slot| slot.plated),
         write: |job, out| drill::write(job, true, out),
     },
     Writer {
         file: FileName::Ending("-unplated.drl"),
         about: "unplated holes, finished size",
         for_board_house: true,
-        applies: |job| job.artwork.holes.iter().any(|hole| !hole.is_plated()),
+        applies: |job| job.artwork.holes.iter().any(|hole| !hole.is_plated()) || job.artwork.slots.iter().any(|slot| !slot.plated),
         write: |job, out| drill::write(job, false, out),
+    },
+    Writer {
+        file: FileName::Ending("-drillmap.gbr"),
+        about: "drill map for people: edge, a letter at every hole, drill table; no drill data",
+        for_board_house: true,
+        applies: |job| !job.artwork.holes.is_empty() || !job.artwork.slots.is_empty(),
+        write: drill_map::write,
+    },
+    Writer {
+        file: FileName::Ending(".gbrjob"),
+        about: "Gerber job file: size, stack, material, finish, and which file is which layer",
+        for_board_house: true,
+        applies: |_| true,
+        write: job_file::write,
+    },
+    Writer {
+        file: FileName::Ending(".ipc"),
+        about: "bare-board netlist, IPC-D-356A: every net with its test points, resonators one by one",
+        for_board_house: true,
+        applies: |_| true,
+        write: netlist::write,
     },
     Writer {
         file: FileName::Ending(".dxf"),
@@ -160,6 +223,13 @@ pub static WRITERS: &[Writer] = &[
         for_board_house: true,
         applies: |_| true,
         write: dxf::write,
+    },
+    Writer {
+        file: FileName::Ending("-fabrication.pdf"),
+        about: "fabrication drawing: dimensions, controlled features, section of the stack, drill table, notes",
+        for_board_house: true,
+        applies: |_| true,
+        write: drawing::write,
     },
     Writer {
         file: FileName::Ending("-fabrication.txt"),

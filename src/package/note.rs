@@ -1,27 +1,23 @@
 //! What must the board house know that the data cannot say? `<name>-fabrication.txt`: plain ASCII, nothing left open.
 
-use std::collections::BTreeMap;
-use std::collections::BTreeSet;
 use std::io;
 use std::io::Write;
 
 use crate::artwork::Board;
-use crate::artwork::Callout;
+use crate::artwork::Fits;
 use crate::artwork::Hole;
-use crate::artwork::HoleUse;
-use crate::artwork::Layer;
-use crate::artwork::Role;
-use crate::artwork::shape::bounds;
 use crate::base::Nm;
 use crate::base::spelt_out;
 use crate::order::Compensation;
-use crate::order::Laminate;
 use crate::order::LaminateKind;
 use crate::order::Mask;
 use crate::order::Order;
+use crate::order::StackLayer;
 use crate::order::TextOn;
+use crate::package::facts;
+use crate::package::facts::mm;
+use crate::package::facts::um;
 use crate::package::job::Job;
-use crate::package::purpose;
 
 /// Widest line.
 const WIDTH: usize = 100;
@@ -35,24 +31,25 @@ pub fn write(job: &Job, out: &mut dyn Write) -> io::Result<()> {
     note.lines.push(format!("FABRICATION NOTE   {}   revision {}", order.name, ascii(&order.revision)));
     note.lines.push("=".repeat(WIDTH));
     if job.breaks_a_rule() {
-        note.text("*** A DESIGN RULE IS BROKEN, and these files were written in spite of it. Quote and build only on written consent. ***");
+        note.text(facts::DESPITE);
         for finding in job.bundle.findings.iter().filter(|finding| finding.is_error()) {
             note.bullet(&finding.to_string());
         }
     }
     identity(&mut note, job);
     files(&mut note, job);
-    outline(&mut note, order, board, job.copper_layers());
+    outline(&mut note, order, board);
     stack(&mut note, order, board);
-    laminate(&mut note, &order.laminate);
+    laminate(&mut note, order);
     finish(&mut note, order);
     acceptance(&mut note, order);
     controlled(&mut note, order, board);
     compensation(&mut note, order);
     forbidden(&mut note, board);
-    holes(&mut note, order, board, job.copper_layers());
+    holes(&mut note, order, board);
     smallest(&mut note, order, board);
-    mask_and_legend(&mut note, order);
+    areas(&mut note, order);
+    mask_and_legend(&mut note, order, board);
     edges_and_marking(&mut note, order, board);
     test(&mut note, board);
     process(&mut note, order);
@@ -131,31 +128,15 @@ fn ascii(text: &str) -> String {
     spelt_out(text).0
 }
 
-/// Metres as millimetres without needless zeros, three decimals at least.
-fn mm(metres: f64) -> String {
-    let text = format!("{:.6}", metres * 1e3);
-    let kept = text.trim_end_matches('0').len().max(text.len() - 3);
-    text[..kept].to_string()
-}
-
-fn um(metres: f64) -> String {
-    let text = format!("{:.2}", metres * 1e6);
-    text.trim_end_matches('0').trim_end_matches('.').to_string()
-}
-
-fn size(board: &Board) -> [f64; 2] {
-    bounds(board.outline.outer.iter().copied()).map_or([0.0; 2], |[low, high]| [(high.x - low.x).m(), (high.y - low.y).m()])
-}
-
 fn identity(note: &mut Note, job: &Job) {
     let order = job.order();
     note.section("IDENTITY");
     note.field("Title", &order.title);
     note.field("Name", &order.name);
-    note.field("Part number", order.part_number.as_deref().unwrap_or("none; the name and the revision identify the board"));
+    note.field("Part number", &order.part_number);
     note.field("Revision", &order.revision);
     note.field("Date", order.date.as_deref().unwrap_or("not dated; the revision governs"));
-    note.field("Questions to", order.contact.as_deref().unwrap_or("the contact on the purchase order"));
+    note.field("Questions to", &order.contact);
     note.field("Project GUID", &job.project.to_string());
     note.field("Coordinates GUID", &format!("{}; every Gerber and drill file of this issue carries it", job.coordinates));
     note.field("Made by", &format!("{} {}", env!("CARGO_PKG_NAME"), env!("CARGO_PKG_VERSION")));
@@ -177,60 +158,92 @@ fn files(note: &mut Note, job: &Job) {
     }
 }
 
-fn outline(note: &mut Note, order: &Order, board: &Board, layers: u8) {
+fn outline(note: &mut Note, order: &Order, board: &Board) {
     note.section("BOARD");
-    let [x, y] = size(board);
+    let [x, y] = facts::size(board).map(Nm::m);
     if board.outline_drawn {
-        note.field("Size", &format!("{} mm x {} mm, each +/-{} mm, {}", mm(x), mm(y), mm(order.shop.outline_tolerance_m), cut(order)));
+        let tolerance = mm(order.board.outline_tolerance_m);
+        note.field("Size", &format!("{} mm x {} mm, each +/-{tolerance} mm, {}", mm(x), mm(y), facts::cut(order)));
     } else {
         note.field(
             "Size",
             &format!("none of its own: the filter lies in a larger board, in a field of {} mm x {} mm; no profile file", mm(x), mm(y)),
         );
     }
-    note.field("Copper layers", &layers.to_string());
-    if !board.outline_drawn {
-        note.field("Delivered", "as part of that board, whose order says how");
-        return note.field("Layer order", LAYER_ORDER);
+    note.field("Thickness", &format!("{} mm +/-{} mm, see STACK", mm(order.board.thickness_m), mm(order.board.thickness_tolerance_m)));
+    note.field("Copper layers", &order.copper_layers().to_string());
+    note.field(
+        "Delivered",
+        if board.outline_drawn {
+            "as single boards; the board house makes its own panel; all boards of a panel in one direction"
+        } else {
+            "as part of that board, whose order says how"
+        },
+    );
+    note.field("Grain direction", &facts::grain(order));
+    note.field("Layer order", &facts::layer_order(order));
+    for [from, to] in &board.plated_edges {
+        note.field(
+            "Plated edge",
+            &format!(
+                "from ({:.3}, {:.3}) to ({:.3}, {:.3}) mm, {} um of copper or more, joined to the ground of every copper layer",
+                from.x.mm(),
+                from.y.mm(),
+                to.x.mm(),
+                to.y.mm(),
+                um(facts::wall_m(order))
+            ),
+        );
     }
-    note.field("Delivered", "as single boards; the board house makes its own panel; all boards of a panel in one direction");
-    note.field("Layer order", LAYER_ORDER);
 }
-
-/// How this kind of laminate is cut to size.
-fn cut(order: &Order) -> &'static str {
-    if order.laminate.kind == LaminateKind::Ceramic { "scribed and broken, or cut by laser" } else { "routed" }
-}
-
-const LAYER_ORDER: &str = "copper 1 on the top with the filter, dielectric, copper 2 on the bottom as ground plane";
 
 fn stack(note: &mut Note, order: &Order, board: &Board) {
     note.section("STACK, TOP TO BOTTOM");
-    let (laminate, copper) = (&order.laminate, &order.laminate.copper);
-    let layer = |name: &str| {
-        let built = if copper.plating_m > 0.0 {
-            format!("{} um foil + {} um plating", um(copper.base_m), um(copper.plating_m))
-        } else {
-            format!("{} um foil, not plated", um(copper.base_m))
-        };
-        vec![name.to_string(), format!("{} um finished", um(copper.finished_m())), built]
-    };
-    note.table(&[
-        layer("copper 1, top"),
-        vec![
-            "dielectric".to_string(),
-            format!("{} mm +/-{} mm", mm(laminate.thickness_m), mm(laminate.thickness_tolerance_m)),
-            format!("{}, er {} +/-{}", ascii(&laminate.class), laminate.permittivity, laminate.permittivity_tolerance),
-        ],
-        layer("copper 2, bottom"),
-    ]);
-    note.bullet("The dielectric thickness and the finished copper thickness govern.");
+    let copper = &order.laminate.copper;
+    let layers = order.stack();
+    let last = order.copper_layers();
+    let mut rows = Vec::new();
+    for layer in &layers {
+        rows.push(match layer {
+            StackLayer::Copper { number, base_m, plating_m } => {
+                let place = match *number {
+                    1 => "top",
+                    n if n == last => "bottom",
+                    _ => "inner",
+                };
+                let built = if *plating_m > 0.0 {
+                    format!("{} um foil + {} um plating", um(*base_m), um(*plating_m))
+                } else {
+                    format!("{} um foil, not plated", um(*base_m))
+                };
+                vec![format!("copper {number}, {place}"), format!("{} um finished", um(layer.thickness_m())), built]
+            }
+            StackLayer::Dielectric { material, permittivity, thickness_m, thickness_tolerance_m, .. } => {
+                let er = if *material == order.laminate.class {
+                    format!("{permittivity} +/-{}", order.laminate.permittivity_tolerance)
+                } else {
+                    permittivity.to_string()
+                };
+                vec![
+                    "dielectric".to_string(),
+                    format!("{} mm +/-{} mm", mm(*thickness_m), mm(*thickness_tolerance_m)),
+                    format!("{}, er {er}", ascii(material)),
+                ]
+            }
+        });
+    }
+    note.table(&rows);
+    note.bullet(if last > 2 {
+        "The dielectric thickness between copper 1 and copper 2 and the finished copper thickness govern; the layers below carry ground only."
+    } else {
+        "The dielectric thickness and the finished copper thickness govern."
+    });
     note.bullet(&format!(
-        "Overall thickness {} mm +/-{} mm: over foil and plating of both sides, without finish, mask and legend; it follows from the rows above.",
-        mm(laminate.thickness_m + 2.0 * copper.finished_m()),
-        mm(laminate.thickness_tolerance_m)
+        "Overall thickness {} mm +/-{} mm: over foil and plating, without finish, mask and legend.",
+        mm(order.board.thickness_m),
+        mm(order.board.thickness_tolerance_m)
     ));
-    let plated = board.holes.iter().any(Hole::is_plated);
+    let plated = board.holes.iter().any(Hole::is_plated) || board.slots.iter().any(|slot| slot.plated);
     if copper.plating_m > 0.0 {
         note.bullet(&format!(
             "The filter conductors carry the same {} um of plating as the ground; its thickness enters gaps and widths.",
@@ -239,20 +252,24 @@ fn stack(note: &mut Note, order: &Order, board: &Board) {
     } else if plated {
         note.bullet("Plate the holes and their lands only (button plating); the filter conductors stay foil, without any plating on them.");
     }
-    if board.layers.keys().filter(|layer| matches!(layer, Layer::Copper(_))).count() > 2 {
-        note.bullet("Inner copper layers: same foil, not plated.");
+    if last > 2 {
+        note.bullet(
+            "Inner copper layers are foil, not plated. Plated holes go through all layers and join the grounds; no blind or buried holes.",
+        );
+    }
+    if last == 1 {
+        note.bullet("The bottom is bare laminate, free of copper: it lies flat on the carrier.");
     }
 }
 
-fn laminate(note: &mut Note, laminate: &Laminate) {
+fn laminate(note: &mut Note, order: &Order) {
+    let laminate = &order.laminate;
     note.section("LAMINATE");
     note.field("Class", &format!("{}: {}", laminate.class, laminate.about));
-    let sheet = match laminate.kind {
-        LaminateKind::GlassEpoxy => "IPC-4101 sheet of this class",
-        LaminateKind::Ptfe | LaminateKind::Hydrocarbon => "IPC-4103 sheet of this class",
-        LaminateKind::Ceramic | LaminateKind::Other => "customer-specified",
-    };
-    note.field("Called out by", &format!("{sheet}; no substitution of laminate, thickness or foil without written consent"));
+    note.field(
+        "Called out by",
+        &format!("{}; no substitution of laminate, thickness or foil without written consent", facts::sheet(order)),
+    );
     note.field(
         "Permittivity",
         &format!(
@@ -265,48 +282,22 @@ fn laminate(note: &mut Note, laminate: &Laminate) {
     }
     note.field("Loss tangent", &format!("{} or less", laminate.loss_tangent));
     note.field("Foil roughness", &format!("{} um rms or less on the laminate side", um(laminate.copper.roughness_m)));
-    note.field("Direction", "strips along one direction of the sheet on all boards of a panel");
+    note.field("Direction", &facts::grain(order));
 }
 
 fn finish(note: &mut Note, order: &Order) {
     note.section("FINISH");
-    let text = match order.laminate.finish.as_str() {
-        "bare" => "none: bare copper, clean and free of oxide, protected for transport",
-        "osp" => "organic solderability preservative per IPC-4555",
-        "immersion-silver" => "immersion silver per IPC-4553",
-        "immersion-tin" => "immersion tin per IPC-4554",
-        "enig" => "electroless nickel and immersion gold per IPC-4552 (nickel 3 to 6 um, gold 0.05 um or more)",
-        "enepig" => "electroless nickel, electroless palladium, immersion gold per IPC-4556",
-        "hot-air-solder" => "hot-air levelled solder, thin and even, no bridges or icicles in the gaps of the filter",
-        other => other,
-    };
-    note.field("Finish", &format!("{text}; both sides, all copper that no mask covers"));
-    match order.laminate.finish.as_str() {
-        "enig" | "enepig" => note.bullet("The nickel lies on the filter conductors as well; this loss was accepted with the order."),
-        _ => note.bullet("No nickel on the filter conductors."),
-    }
+    note.field("Finish", &format!("{}; all copper that no mask covers", facts::finish(order)));
+    note.bullet(facts::nickel(order));
 }
 
 fn acceptance(note: &mut Note, order: &Order) {
     note.section("ACCEPTANCE");
-    let standard = match order.laminate.kind {
-        LaminateKind::Ceramic => {
-            "the maker's workmanship standard for metallised ceramic, after IPC-6018 (high-frequency boards) as far as it applies,"
-        }
-        LaminateKind::Ptfe | LaminateKind::Hydrocarbon => "IPC-6018 (high-frequency boards)",
-        LaminateKind::GlassEpoxy | LaminateKind::Other => "IPC-6012 (rigid boards)",
-    };
-    note.field("Class", &format!("{standard} class {}; seen by eye per IPC-A-600 of the same class", order.acceptance_class));
+    note.field(
+        "Class",
+        &format!("{} class {}; seen by eye per IPC-A-600 of the same class", facts::acceptance(order), order.acceptance_class),
+    );
     note.field("Precedence", "where this note is stricter than the standard, this note holds");
-}
-
-/// What kind of dimension a call-out is; its name says.
-fn kind(callout: &Callout) -> &'static str {
-    ["width", "gap", "length"].into_iter().find(|kind| callout.dimension.split(' ').any(|word| word == *kind)).unwrap_or("size")
-}
-
-fn length_m(callout: &Callout) -> f64 {
-    (callout.to.x - callout.from.x).m().hypot((callout.to.y - callout.from.y).m())
 }
 
 fn controlled(note: &mut Note, order: &Order, board: &Board) {
@@ -320,16 +311,16 @@ fn controlled(note: &mut Note, order: &Order, board: &Board) {
          place is the middle of the feature.",
     );
     let tolerance = format!("+/-{}", mm(order.shop.line_tolerance_m));
-    let mut rows = vec![row(&["feature", "nominal", "tolerance", "kind", "x", "y"])];
-    for callout in &board.callouts {
-        let middle = |a: Nm, b: Nm| format!("{:.3}", (a.mm() + b.mm()) / 2.0);
+    let mut rows = vec![row(&["no.", "feature", "nominal", "tolerance", "kind", "x", "y"])];
+    for feature in facts::features(board) {
         rows.push(vec![
-            ascii(&callout.dimension),
-            format!("{:.4}", length_m(callout) * 1e3),
+            feature.number.to_string(),
+            ascii(&feature.callout.dimension),
+            format!("{:.4}", feature.nominal_m * 1e3),
             tolerance.clone(),
-            kind(callout).to_string(),
-            middle(callout.from.x, callout.to.x),
-            middle(callout.from.y, callout.to.y),
+            feature.kind.to_string(),
+            format!("{:.3}", feature.at.x.mm()),
+            format!("{:.3}", feature.at.y.mm()),
         ]);
     }
     note.table(&rows);
@@ -380,74 +371,93 @@ fn forbidden(note: &mut Note, board: &Board) {
     note.text("On the whole board: no clipping of copper where it is drawn up to the edge, and no thieving inside the edge.");
 }
 
-/// A symbol for each kind of hole: A, B, .. Z, AA ..
-fn symbol(index: usize) -> String {
-    let letter = char::from(b'A' + (index % 26) as u8);
-    if index < 26 { letter.to_string() } else { format!("{}{letter}", symbol(index / 26 - 1)) }
-}
-
-fn holes(note: &mut Note, order: &Order, board: &Board, layers: u8) {
+fn holes(note: &mut Note, order: &Order, board: &Board) {
     note.section("HOLES, FINISHED SIZE IN MM");
-    let mut kinds: BTreeMap<(HoleUse, Nm, Nm), usize> = BTreeMap::new();
-    for hole in &board.holes {
-        *kinds.entry((hole.purpose, hole.diameter, hole.pad)).or_default() += 1;
-    }
+    let kinds = facts::hole_kinds(board);
     if kinds.is_empty() {
         note.text("No holes; no drill file.");
         return;
     }
-    let mut rows = vec![row(&["symbol", "diameter", "tolerance", "plated", "quantity", "layers", "pad", "for"])];
-    for (index, ((purpose_of, diameter, pad), quantity)) in kinds.iter().enumerate() {
+    let mut rows = vec![row(&["symbol", "size", "tolerance", "plated", "quantity", "layers", "pad", "for"])];
+    for kind in &kinds {
         rows.push(vec![
-            symbol(index),
-            mm(diameter.m()),
+            kind.symbol.clone(),
+            kind.length.map_or(mm(kind.diameter.m()), |length| format!("{} x {}", mm(kind.diameter.m()), mm(length.m()))),
             format!("+/-{}", mm(order.shop.hole_tolerance_m)),
-            if *purpose_of == HoleUse::Via { "yes" } else { "no" }.to_string(),
-            quantity.to_string(),
-            format!("1-{layers}"),
-            if *pad > Nm::ZERO { mm(pad.m()) } else { "none".to_string() },
-            purpose(*purpose_of).to_string(),
+            if kind.plated { "yes" } else { "no" }.to_string(),
+            kind.at.len().to_string(),
+            format!("1-{}", order.copper_layers()),
+            if kind.pad > Nm::ZERO { mm(kind.pad.m()) } else { "none".to_string() },
+            kind.purpose.to_string(),
         ]);
     }
     note.table(&rows);
-    note.field("Total", &format!("{} holes; no slots; no two at one place", board.holes.len()));
+    let slots = match board.slots.len() {
+        0 => "no slots".to_string(),
+        n => format!("{n} slots (width x length over the round ends), written as routed slots in the drill files"),
+    };
+    note.field("Total", &format!("{} holes, {slots}; no two at one place", board.holes.len()));
     note.field("Place", &format!("within {} mm of the copper", mm(order.shop.registration_m)));
-    if board.holes.iter().any(Hole::is_plated) {
-        let wall = if order.laminate.copper.plating_m > 0.0 { order.laminate.copper.plating_m } else { 20e-6 };
-        note.field("Plated walls", &format!("{} um of copper or more; vias neither filled nor capped", um(wall)));
+    if kinds.iter().any(|kind| kind.plated) {
+        note.field("Plated walls", &format!("{} um of copper or more; vias neither filled nor capped", um(facts::wall_m(order))));
     }
 }
 
 fn smallest(note: &mut Note, order: &Order, board: &Board) {
     note.section("SMALLEST FEATURES USED, IN MM");
-    let least = |what: &str| board.callouts.iter().filter(|callout| kind(callout) == what).map(length_m).reduce(f64::min);
-    let ring = board.holes.iter().filter(|hole| hole.is_plated()).map(|hole| (hole.pad - hole.diameter).m() / 2.0).reduce(f64::min);
-    let hole = board.holes.iter().map(|hole| hole.diameter.m()).reduce(f64::min);
-    let shop = &order.shop;
     let mut rows = vec![row(&["feature", "used", "your limit as we know it"])];
-    for (what, used, limit) in [
-        ("line, filter", least("width"), shop.line_m),
-        ("gap, filter", least("gap"), shop.gap_m),
-        ("annular ring", ring, shop.annular_ring_m),
-        ("hole", hole, shop.hole_m),
-    ] {
+    for (what, used, limit) in facts::smallest(order, board) {
         rows.push(vec![what.to_string(), used.map_or("none".to_string(), |used| format!("{:.4}", used * 1e3)), mm(limit)]);
     }
     note.table(&rows);
-    note.field("Limits of class", &format!("{}: {}", shop.class, shop.about));
+    note.field("Limits of class", &format!("{}: {}", order.shop.class, order.shop.about));
 }
 
-fn mask_and_legend(note: &mut Note, order: &Order) {
-    note.section("SOLDER MASK AND LEGEND");
+/// Rectangles in words, for areas the board house must keep free.
+fn areas(note: &mut Note, order: &Order) {
+    let inside = order.housing.as_ref().and_then(|housing| housing.inside_m);
+    let lid = order.housing.as_ref().and_then(|housing| housing.lid_m);
+    if order.board.keep_outs.is_empty() && order.housing.is_none() {
+        return;
+    }
+    note.section("HOUSING AND AREAS TO KEEP FREE");
+    if let Some([x, y]) = inside {
+        note.bullet(&format!(
+            "A housing of {} mm x {} mm inside stands on the ground frame of copper 1, centred on the board: the frame is flat, free of mask and              legend, and its vias are not filled.",
+            mm(x),
+            mm(y)
+        ));
+    }
+    if let Some(lid) = lid {
+        note.bullet(&format!("Its lid is {} mm above the laminate; this is no matter of the bare board.", mm(lid)));
+    }
+    for area in &order.board.keep_outs {
+        note.bullet(&format!(
+            "Nothing on the top from ({}, {}) to ({}, {}) mm: no copper, no legend, no mark.",
+            mm(area.from_m[0]),
+            mm(area.from_m[1]),
+            mm(area.to_m[0]),
+            mm(area.to_m[1])
+        ));
+    }
+}
+
+fn mask_and_legend(note: &mut Note, order: &Order, board: &Board) {
+    note.section("SOLDER MASK, PASTE AND LEGEND");
     match order.board.mask {
         Mask::None => note.field("Solder mask", "none on either side; no mask file belongs to this package"),
         Mask::ClearOfFilter => note.field(
             "Solder mask",
             &format!(
-                "both sides, open over the whole filter and over the lands as drawn; the image shows the openings; thinnest dam {} mm",
+                "{}, open over the whole filter and over the lands as drawn; the image shows the openings; thinnest dam {} mm",
+                if order.copper_layers() > 1 { "both sides" } else { "top side" },
                 mm(order.shop.mask_dam_m)
             ),
         ),
+    }
+    match board.lands.iter().filter(|land| land.fits == Fits::Chip).count() {
+        0 => note.field("Solder paste", "none; no paste file belongs to this package"),
+        n => note.field("Solder paste", &format!("top side, over the {n} lands of chip parts, as drawn")),
     }
     match order.board.text {
         TextOn::Legend => note.field("Legend", "top side as drawn, permanent non-conductive ink, outside the filter area"),
@@ -462,8 +472,8 @@ fn edges_and_marking(note: &mut Note, order: &Order, board: &Board) {
         note.bullet(&format!(
             "Edges {}, +/-{} mm. The edges with connectors are flat, square and free of burrs; no break-away tab within 5 mm of a \
              connector; copper there ends as drawn, without smear over the edge.",
-            if order.laminate.kind == LaminateKind::Ceramic { cut(order) } else { "routed, no scoring" },
-            mm(order.shop.outline_tolerance_m)
+            if order.laminate.kind == LaminateKind::Ceramic { facts::cut(order) } else { "routed, no scoring" },
+            mm(order.board.outline_tolerance_m)
         ));
     }
     note.bullet("Marks of the maker, date code and lot on the panel frame or the packing, not on the board.");
@@ -473,16 +483,11 @@ fn edges_and_marking(note: &mut Note, order: &Order, board: &Board) {
 
 fn test(note: &mut Note, board: &Board) {
     note.section("ELECTRICAL TEST");
-    let mut nets: BTreeMap<&str, BTreeSet<Role>> = BTreeMap::new();
-    for shape in board.layers.iter().filter(|(layer, _)| matches!(layer, Layer::Copper(_))).flat_map(|(_, shapes)| shapes) {
-        if !shape.net.is_empty() {
-            nets.entry(&shape.net).or_default().insert(shape.role);
-        }
-    }
-    note.text("Every board, all nets, against the nets named in the Gerber files (attribute .N):");
+    let nets = facts::nets(board);
+    note.text("Every board, all nets, against the bare-board netlist (IPC-D-356A) and the nets named in the Gerber files (attribute .N), which agree:");
     note.field("Nets", &format!("{}: {}", nets.len(), nets.keys().copied().collect::<Vec<_>>().join(", ")));
     note.bullet("Each net is continuous within itself and isolated from every other.");
-    let alone: Vec<&str> = nets.iter().filter(|(net, roles)| is_resonator(board, net, roles)).map(|(net, _)| *net).collect();
+    let alone: Vec<&str> = nets.iter().filter(|(net, roles)| facts::is_resonator(board, net, roles)).map(|(net, _)| *net).collect();
     if !alone.is_empty() {
         note.bullet(&format!(
             "{} carry no land and no hole by design: they are resonators, and each must be isolated from its neighbours. A bridged gap is a reject.",
@@ -491,14 +496,6 @@ fn test(note: &mut Note, board: &Board) {
     }
     note.bullet("Probe on lands and vias; probe marks on resonators only near their ends.");
     note.bullet("With the lot: dimensions of the controlled features, one microsection with dielectric and copper thickness.");
-}
-
-/// Whether a net is strip copper that neither a land nor a hole touches.
-fn is_resonator(board: &Board, net: &str, roles: &BTreeSet<Role>) -> bool {
-    roles.iter().all(|role| *role == Role::Circuit)
-        && !board.lands.iter().any(|land| land.net == net)
-        && !board.holes.iter().any(|hole| hole.net == net)
-        && !board.ports.iter().any(|port| port.net == net)
 }
 
 fn process(note: &mut Note, order: &Order) {

@@ -67,7 +67,7 @@ pub fn draw(job: &Job) -> String {
     // A bold letter is about 0.62 of its height wide on average; a long title is set smaller.
     let title_size = number((1.6 * (right - MARGIN_MM) / order.title.chars().count().max(1) as f64).min(5.4), 2).parse().unwrap_or(5.4);
     svg.text(MARGIN_MM, 16.0, title_size, INK, "font-weight=\"600\"", &order.title);
-    let part = order.part_number.as_ref().map_or(String::new(), |part| format!("  \u{b7}  {part}"));
+    let part = if order.part_number == order.name { String::new() } else { format!("  \u{b7}  {}", order.part_number) };
     let date = order.date.as_ref().map_or(String::new(), |date| format!("  \u{b7}  {date}"));
     let degree = job.bundle.dimensions.degree;
     let sub = format!("{}  \u{b7}  revision {}{part}{date}  \u{b7}  {}, degree {degree}", order.name, order.revision, order.filter.family);

@@ -13,8 +13,16 @@ pub struct Drilled {
     pub plated: Option<bool>,
     /// The identifier of its coordinates.
     pub coordinates: Option<String>,
+    /// The layers its holes go through.
+    pub span: Option<(u8, u8)>,
+    /// Project, GUID and revision as stated.
+    pub project: Option<String>,
     /// Centre and finished diameter of each hole, in the file's order.
     pub holes: Vec<(Point, Nm)>,
+    /// Ends and width of each slot.
+    pub slots: Vec<(Point, Point, Nm)>,
+    /// Tools that do not say what they are for.
+    pub nameless: Vec<String>,
 }
 
 /// Reads a file; what is wrong with it comes beside what could be read.
@@ -24,6 +32,7 @@ pub fn read(text: &str) -> (Drilled, Vec<Fault>) {
     let mut tools: BTreeMap<String, Nm> = BTreeMap::new();
     let mut tool: Option<Nm> = None;
     let (mut in_header, mut metric, mut ended) = (true, false, false);
+    let (mut function, mut at, mut milling) = (false, None::<Point>, false);
     let mut lines = (1..).zip(text.lines());
     if lines.next().map(|(_, line)| line) != Some("M48") {
         faults.push(("drill-unreadable", "the file does not begin with M48".into()));
@@ -38,10 +47,30 @@ pub fn read(text: &str) -> (Drilled, Vec<Fault>) {
             if let Some(function) = attribute.strip_prefix("FileFunction,") {
                 drilled.plated =
                     if function.starts_with("Plated,") { Some(true) } else { function.starts_with("NonPlated,").then_some(false) };
+                let layer = |n: usize| function.split(',').nth(n).and_then(|text| text.parse::<u8>().ok());
+                drilled.span = layer(1).zip(layer(2));
+            } else if let Some(project) = attribute.strip_prefix("ProjectId,") {
+                drilled.project = Some(project.to_string());
             } else if let Some(ident) = attribute.strip_prefix("SameCoordinates,") {
                 drilled.coordinates = Some(ident.to_string());
             }
+        } else if line.starts_with("; #@! TA.AperFunction,") {
+            function = true;
+        } else if line == "; #@! TD" {
+            function = false;
         } else if line.starts_with(';') || line == "G05" {
+        } else if line == "M15" || line == "M16" {
+            milling = line == "M15";
+        } else if let Some(to) = line.strip_prefix("G00").or_else(|| line.strip_prefix("G01")) {
+            let place = to.strip_prefix('X').and_then(|rest| rest.split_once('Y')).and_then(|(x, y)| decimal(x).zip(decimal(y)));
+            match (place, tool, at) {
+                (Some((x, y)), Some(width), Some(from)) if milling && line.starts_with("G01") => {
+                    drilled.slots.push((from, Point { x, y }, width));
+                    at = Some(Point { x, y });
+                }
+                (Some((x, y)), Some(_), _) if line.starts_with("G00") => at = Some(Point { x, y }),
+                _ => bad("not a move of the router"),
+            }
         } else if line == "METRIC" {
             metric = true;
         } else if line == "%" {
@@ -52,6 +81,9 @@ pub fn read(text: &str) -> (Drilled, Vec<Fault>) {
             match (in_header, rest.split_once('C')) {
                 (true, Some((code, size))) => match decimal(size) {
                     Some(size) if size > Nm::ZERO => {
+                        if !function {
+                            drilled.nameless.push(format!("T{code}"));
+                        }
                         if tools.insert(code.to_string(), size).is_some() {
                             bad("a tool defined twice");
                         }

@@ -7,6 +7,8 @@ use std::collections::BTreeMap;
 use std::io::BufReader;
 
 use gerber_parser::gerber_types::Aperture;
+use gerber_parser::gerber_types::ApertureAttribute;
+use gerber_parser::gerber_types::ApertureFunction;
 use gerber_parser::gerber_types::Command;
 use gerber_parser::gerber_types::CoordinateMode;
 use gerber_parser::gerber_types::Coordinates;
@@ -19,6 +21,8 @@ use gerber_parser::gerber_types::GCode;
 use gerber_parser::gerber_types::Ident;
 use gerber_parser::gerber_types::InterpolationMode;
 use gerber_parser::gerber_types::MCode;
+use gerber_parser::gerber_types::Net;
+use gerber_parser::gerber_types::ObjectAttribute;
 use gerber_parser::gerber_types::Operation;
 use gerber_parser::gerber_types::Polarity;
 use gerber_parser::gerber_types::Unit;
@@ -44,22 +48,46 @@ pub enum Content {
 pub struct Image {
     /// What it is for; `None` when it does not say.
     pub content: Option<Content>,
+    /// Its file attributes as written: name and value.
+    pub attributes: BTreeMap<String, String>,
     /// The identifier of its coordinates.
     pub coordinates: Option<String>,
-    /// Contours of regions: dark or clear, closed.
-    pub contours: Vec<(bool, Vec<Point>)>,
-    /// Pads: where, and half their size.
-    pub flashes: Vec<(Point, [Nm; 2])>,
+    /// All that is drawn, in order.
+    pub objects: Vec<Object>,
     /// Chains of strokes outside regions, as their centre lines.
     pub chains: Vec<Vec<Point>>,
+}
+
+/// One contour of a region, or one pad.
+#[derive(Clone, Debug)]
+pub struct Object {
+    /// Dark, or clear: erases what came before.
+    pub dark: bool,
+    /// Its net; empty when it belongs to none, `None` when the file does not say.
+    pub net: Option<String>,
+    /// What it is for: the aperture function as written.
+    pub function: String,
+    /// Its form.
+    pub form: Form,
+}
+
+/// The form of an object.
+#[derive(Clone, Debug)]
+pub enum Form {
+    /// A closed contour, the first vertex not repeated.
+    Contour(Vec<Point>),
+    /// A pad: where, half its size, whether it is round.
+    Pad(Point, [Nm; 2], bool),
 }
 
 impl Image {
     /// Corners of all that is dark; strokes by their centre line.
     pub fn bounds(&self) -> Option<[Point; 2]> {
-        let regions = self.contours.iter().filter(|(dark, _)| *dark).flat_map(|(_, ring)| ring.iter().copied());
-        let flashes = self.flashes.iter().flat_map(|(at, [x, y])| [at.shifted(-*x, -*y), at.shifted(*x, *y)]);
-        bounds(regions.chain(flashes).chain(self.chains.iter().flatten().copied()))
+        let drawn = self.objects.iter().filter(|object| object.dark).flat_map(|object| match &object.form {
+            Form::Contour(ring) => ring.clone(),
+            Form::Pad(at, [x, y], _) => vec![at.shifted(-*x, -*y), at.shifted(*x, *y)],
+        });
+        bounds(drawn.chain(self.chains.iter().flatten().copied()))
     }
 }
 
@@ -97,9 +125,21 @@ pub fn read(bytes: &[u8]) -> (Image, Vec<Fault>) {
         }
         None => faults.push(("gerber-format", "no coordinate format is set".into())),
     }
-    let apertures: BTreeMap<i32, [Nm; 2]> = document.apertures.iter().map(|(code, aperture)| (*code, half_size(aperture))).collect();
-    let mut reader =
-        Reader { image: Image::default(), faults, at: Point::default(), dark: true, region: None, aperture: None, ended: false, apertures };
+    let apertures =
+        document.apertures.iter().map(|(code, aperture)| (*code, (half_size(aperture), matches!(aperture, Aperture::Circle(_)))));
+    let mut reader = Reader {
+        image: Image { attributes: attributes(bytes), ..Image::default() },
+        faults,
+        at: Point::default(),
+        dark: true,
+        region: None,
+        aperture: None,
+        ended: false,
+        apertures: apertures.collect(),
+        net: None,
+        function: String::new(),
+        functions: BTreeMap::new(),
+    };
     for command in document.commands() {
         reader.take(command);
     }
@@ -108,6 +148,18 @@ pub fn read(bytes: &[u8]) -> (Image, Vec<Fault>) {
     }
     reader.close();
     (reader.image, reader.faults)
+}
+
+/// The file attributes, as the lines of the head say them.
+fn attributes(bytes: &[u8]) -> BTreeMap<String, String> {
+    let lines = bytes.split(|byte| *byte == b'\n').take_while(|line| !line.starts_with(b"%MO"));
+    lines
+        .filter_map(|line| {
+            let text = String::from_utf8_lossy(line);
+            let (name, value) = text.trim().strip_prefix("%TF.")?.strip_suffix("*%")?.split_once(',')?;
+            Some((name.to_string(), value.to_string()))
+        })
+        .collect()
 }
 
 fn half_size(aperture: &Aperture) -> [Nm; 2] {
@@ -120,6 +172,21 @@ fn half_size(aperture: &Aperture) -> [Nm; 2] {
     }
 }
 
+/// The name of an aperture function, as far as the checks tell them apart.
+fn function_name(function: &ApertureFunction) -> String {
+    match function {
+        ApertureFunction::ViaPad => "ViaPad",
+        ApertureFunction::WasherPad => "WasherPad",
+        ApertureFunction::SmdPad(_) => "SMDPad",
+        ApertureFunction::Conductor => "Conductor",
+        ApertureFunction::NonConductor => "NonConductor",
+        ApertureFunction::Profile => "Profile",
+        ApertureFunction::Material => "Material",
+        _ => "other",
+    }
+    .to_string()
+}
+
 struct Reader {
     image: Image,
     faults: Vec<Fault>,
@@ -129,7 +196,11 @@ struct Reader {
     region: Option<Vec<Point>>,
     aperture: Option<i32>,
     ended: bool,
-    apertures: BTreeMap<i32, [Nm; 2]>,
+    /// Half the size, and whether it is round.
+    apertures: BTreeMap<i32, ([Nm; 2], bool)>,
+    net: Option<String>,
+    function: String,
+    functions: BTreeMap<i32, String>,
 }
 
 impl Reader {
@@ -159,6 +230,18 @@ impl Reader {
             }
             Command::FunctionCode(FunctionCode::DCode(DCode::Operation(operation))) => self.operation(operation),
             Command::FunctionCode(FunctionCode::MCode(MCode::EndOfFile)) => self.ended = true,
+            Command::ExtendedCode(ExtendedCode::ObjectAttribute(ObjectAttribute::Net(net))) => {
+                self.net = Some(match net {
+                    Net::Connected(names) => names.join(","),
+                    Net::None | Net::NotConnected => String::new(),
+                });
+            }
+            Command::ExtendedCode(ExtendedCode::ApertureAttribute(ApertureAttribute::ApertureFunction(function))) => {
+                self.function = function_name(function);
+            }
+            Command::ExtendedCode(ExtendedCode::ApertureDefinition(definition)) => {
+                self.functions.insert(definition.code, self.function.clone());
+            }
             Command::ExtendedCode(ExtendedCode::LoadPolarity(polarity)) => {
                 if self.region.is_some() {
                     self.fault("gerber-contour-invalid", "the polarity changes within a region");
@@ -232,8 +315,13 @@ impl Reader {
                 if self.region.is_some() {
                     self.fault("gerber-contour-invalid", "a flash within a region");
                 }
-                match self.aperture.and_then(|code| self.apertures.get(&code)) {
-                    Some(half) => self.image.flashes.push((self.at, *half)),
+                match self.aperture.and_then(|code| self.apertures.get(&code).map(|found| (code, *found))) {
+                    Some((code, (half, round))) => self.image.objects.push(Object {
+                        dark: self.dark,
+                        net: self.net.clone(),
+                        function: self.functions.get(&code).cloned().unwrap_or_default(),
+                        form: Form::Pad(self.at, half, round),
+                    }),
                     None => self.fault("gerber-aperture-undefined", "a flash before any aperture is chosen"),
                 }
             }
@@ -251,7 +339,12 @@ impl Reader {
                 );
             }
             ring.pop();
-            self.image.contours.push((self.dark, ring));
+            self.image.objects.push(Object {
+                dark: self.dark,
+                net: self.net.clone(),
+                function: self.function.clone(),
+                form: Form::Contour(ring),
+            });
         }
         self.region = Some(Vec::new());
     }

@@ -5,8 +5,9 @@ use proptest::sample::select;
 use stripwright::base::{Dimensionality, Nm};
 use stripwright::dimensions::{self, Dimension, Dimensions};
 use stripwright::order::{
-    self, Band, BoardSize, Classes, Compensation, FamilyKeys, Filter, Housing, KeepOut, Key, Limit, Mask, MountingHole, Order, OwnKind,
-    OwnValue, Passes, Requirement, ResponseShape, Side, Source, TextOn,
+    self, Band, Below, BoardSize, Classes, Compensation, FamilyKeys, Filter, Grain, GroundOn, Housing, KeepOut, Key, LaunchShape, Limit,
+    Mask, MountingHole, Order, OwnKind, OwnValue, Paper, Passes, PlatedEdgeRequest, Requirement, ResponseShape, Side, SlotRequest, Source,
+    StackLayer, TextOn,
 };
 
 /// Families of all kinds of band, one with keys of each kind.
@@ -59,7 +60,9 @@ prop_compose! {
     /// Any order that could have been read; its requirements lie where they make sense for every kind of band.
     fn order()(
         filter in filter(),
-        texts in (text(), proptest::option::of(text()), proptest::option::of(text())),
+        texts in (text(), text(), text()),
+        below in prop::collection::vec((text(), 1.0..100.0f64, 1e-5..25e-3f64, 0.0..5e-3f64, 1e-7..5e-4f64), 0..3),
+        extras in (any::<bool>(), 0.0..0.5f64, any::<bool>(), any::<bool>()),
         head in (1u8..=3, proptest::option::of(select(vec!["2026-05-04", "2024-02-29"]))),
         classes in (0usize..12, 0usize..3, 0usize..4),
         laminate in (1.5..50.0f64, 0.0..0.4f64, 0.0..0.5f64, 1e-6..25e-3f64, 0.0..0.9f64, proptest::option::of(1.0..100.0f64)),
@@ -97,8 +100,26 @@ prop_compose! {
         } else {
             Vec::new()
         };
+        let ground = if below.is_empty() && extras.0 { GroundOn::Carrier } else { GroundOn::Layer2 };
+        let below: Vec<Below> = below
+            .into_iter()
+            .map(|(material, permittivity, thickness_m, thickness_tolerance_m, copper_m)| Below {
+                material, permittivity, thickness_m, thickness_tolerance_m, copper_m,
+            })
+            .collect();
+        // A launch that clamps the edge needs a ground on the board.
+        let launches: Vec<_> =
+            known.launches.iter().filter(|l| ground == GroundOn::Layer2 || !matches!(l.shape, LaunchShape::EdgeCoax { .. })).collect();
         let mut request = order::BoardRequest {
-            launch: known.launches[classes.2].clone(),
+            thickness_m: 0.0,
+            thickness_tolerance_m: extras.1 / 10.0,
+            outline_tolerance_m: 0.15e-3 + extras.1 / 10.0,
+            grain: if extras.2 { Grain::Any } else { Grain::AcrossPorts },
+            ground,
+            below,
+            slots: vec![SlotRequest { from_m: [0.01, 0.02], to_m: [0.03, 0.02 + extras.1 / 10.0], width_m: 1e-3 + extras.1 / 100.0, plated: extras.2 }],
+            plated_edges: vec![PlatedEdgeRequest { side: Side::Bottom, from_m: extras.1 / 3.0, to_m: 0.2 }],
+            launch: launches[classes.2 % launches.len()].clone(),
             mask: if board.0 { Mask::None } else { Mask::ClearOfFilter },
             size: if board.2 { BoardSize::Fixed([0.5, 0.123_456_789]) } else { BoardSize::Margin(board.1) },
             outline: board.4,
@@ -114,12 +135,13 @@ prop_compose! {
             request.keep_outs.push(KeepOut { from_m: [0.0, board.1], to_m: [0.1, 0.3] });
             request.size = BoardSize::Margin(board.1);
         }
-        Order {
+        let mut order = Order {
             name: "any-order-2".to_string(),
             title: texts.0,
             part_number: texts.1,
             contact: texts.2,
             acceptance_class: head.0,
+            paper: if extras.3 { Paper::A4 } else { Paper::Letter },
             revision: "B".to_string(),
             date: head.1.map(str::to_string),
             classes: None,
@@ -128,9 +150,13 @@ prop_compose! {
             laminate: laminate_class,
             shop,
             board: request,
-            housing: housing.map(|lid| Housing { lid_m: Some(lid), inside_m: limits.2.then_some([0.07, 0.03]) }),
+            housing: housing
+                .map(|lid| Housing { lid_m: Some(lid), inside_m: (limits.2 && ground == GroundOn::Layer2).then_some([0.07, 0.03]) }),
             defaults: Vec::new(),
-        }
+        };
+        // As near to the stack as its tolerance asks: exactly.
+        order.board.thickness_m = order.stack().iter().map(StackLayer::thickness_m).sum();
+        order
     }
 }
 
@@ -180,7 +206,17 @@ proptest! {
 fn defaults_are_remembered_over_any_number_of_rounds() {
     let starter = include_str!("../../templates/orders/edge-coupled.toml");
     let (first, _) = order::read(&Source::from_text("order.toml", starter), &stripwright::family::keys()).unwrap();
-    for key in ["filter.degree", "laminate.permittivity", "laminate.copper.base", "shop.grid", "launch.pad-width", "board.text"] {
+    for key in [
+        "filter.degree",
+        "laminate.permittivity",
+        "laminate.copper.base",
+        "shop.grid",
+        "launch.pad-width",
+        "board.text",
+        "board.thickness",
+        "board.grain",
+        "order.contact",
+    ] {
         assert!(first.defaults.iter().any(|d| d == key), "{key}");
     }
     assert!(!first.defaults.iter().any(|d| d == "laminate.thickness" || d == "filter.passband"));

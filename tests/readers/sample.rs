@@ -68,8 +68,13 @@ pub fn hand_board() -> Board {
         shape(rectangle(20.0, 4.5, 24.0, 5.0), vec![], Role::Circuit, "RES2"),
         shape(vec![mm(12.0, 17.0), mm(14.0, 17.0), mm(13.0, 18.123456)], vec![], Role::Text, ""),
     ];
-    let bottom = vec![shape(rectangle(0.25, 0.25, 29.75, 19.75), vec![rectangle(1.0, 17.0, 4.0, 19.0)], Role::Ground, "GND")];
-    let opening = vec![shape(rectangle(2.0, 2.0, 28.0, 16.0), vec![], Role::Opening, "")];
+    let bottom = vec![shape(
+        rectangle(0.25, 0.25, 29.75, 19.75),
+        vec![rectangle(1.0, 16.5, 4.0, 19.5), rectangle(26.0, 16.5, 29.0, 19.5)],
+        Role::Ground,
+        "GND",
+    )];
+    let opening = vec![shape(rectangle(0.4, 2.0, 29.6, 16.0), vec![], Role::Opening, "")];
     let via = |x: f64, y: f64, d: i64| Hole { at: mm(x, y), diameter: Nm(d), pad: Nm(2 * d), purpose: HoleUse::Via, net: "GND".into() };
     let hole = |x: f64, y: f64| Hole { at: mm(x, y), diameter: Nm(2_200_000), pad: Nm(0), purpose: HoleUse::Mounting, net: String::new() };
     let land = |x: f64, net: &str, refdes: &str| Land {
@@ -77,6 +82,7 @@ pub fn hand_board() -> Board {
         size: [Nm(2_000_000), Nm(1_100_000)],
         net: net.into(),
         pin: (refdes.into(), "1".into()),
+        fits: Fits::Connector,
     };
     let port = |number: usize, x: f64, plane: f64| Port {
         number,
@@ -97,6 +103,8 @@ pub fn hand_board() -> Board {
             (Layer::Legend(Face::Top), vec![shape(rectangle(14.0, 18.0, 16.0, 18.2), vec![], Role::Text, "")]),
         ]),
         holes: vec![via(3.5, 3.5, 300_000), via(3.5, 12.5, 300_000), via(26.5, 8.0, 400_000), hole(2.5, 18.0), hole(27.5, 18.0)],
+        slots: vec![],
+        plated_edges: vec![],
         lands: vec![land(1.5, "PORT1", "J1"), land(28.5, "PORT2", "J2")],
         ports: vec![port(1, 0.0, 3.0), port(2, 30.0, 27.0)],
         circuit: [mm(0.0, 4.5), mm(30.0, 15.2)],
