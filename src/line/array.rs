@@ -72,6 +72,12 @@ struct Part {
     even: [f64; 2],
 }
 
+/// One mode at one frequency.
+struct Dispersed {
+    eps_eff: f64,
+    impedance_factor: f64,
+}
+
 /// The modes of an array at one frequency; each is a line of 1 ohm, the strips' impedances are in the two matrices.
 ///
 /// For a length: strip voltages V and currents I at its ends follow from modal lines of 1 ohm, propagation constant 2 pi f index / c and attenuation
@@ -189,9 +195,7 @@ impl Array {
     /// All quasi-TEM modes at a frequency (zero allowed).
     pub fn at(&self, f_hz: f64) -> ArrayModes {
         let count = self.count();
-        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
-        let rises: Vec<[Rise; 3]> = self.strips.iter().map(|strip| strip.rises(f_n)).collect();
-        let factors: Vec<f64> = self.strips.iter().map(|strip| strip.impedance_factor(f_n)).collect();
+        let factors = self.impedance_factors(f_hz);
         let solved = self.solved_loss().and_then(|losses| losses.as_ref().ok());
         let mut out = ArrayModes {
             index: Vec::with_capacity(count),
@@ -199,22 +203,15 @@ impl Array {
             voltages: self.modes.voltages.clone(),
             currents: self.modes.currents.clone(),
         };
-        for (mode, (&eps_eff_static, parts)) in self.modes.eps_eff.iter().zip(&self.parts).enumerate() {
-            let mut rise = 0.0;
-            let mut factor = 0.0;
-            for ((part, [single, left, right]), strip_factor) in parts.iter().zip(&rises).zip(&factors) {
-                let beside = |rise: &Rise, even: f64| even * rise.by_neighbour.even + (1.0 - even) * rise.by_neighbour.odd;
-                rise += part.share * single.single * beside(left, part.even[0]) * beside(right, part.even[1]);
-                factor += part.share * strip_factor;
-            }
-            let eps_eff = self.strips.first().map_or(eps_eff_static, |strip| strip.single.raised(eps_eff_static, rise));
+        for (mode, Dispersed { eps_eff, impedance_factor }) in self.dispersed(f_hz, &factors).into_iter().enumerate() {
+            let eps_eff_static = self.modes.eps_eff.get(mode).copied().unwrap_or(eps_eff);
             let statics = StaticMode {
                 air_ohm: eps_eff_static.sqrt(),
                 eps_eff: eps_eff_static,
                 recession_ohm_per_m: self.recession_ohm_per_m.get(mode).copied().unwrap_or(0.0),
             };
             let loss = solved.and_then(|losses| losses.get(mode));
-            out.alpha_np_per_m.push(self.losses.mode(f_hz, &statics, eps_eff, factor, loss).alpha_np_per_m());
+            out.alpha_np_per_m.push(self.losses.mode(f_hz, &statics, eps_eff, impedance_factor, loss).alpha_np_per_m());
             out.index.push(eps_eff.sqrt());
         }
         for (row, factor) in factors.iter().enumerate() {
@@ -225,6 +222,35 @@ impl Array {
             }
         }
         out
+    }
+
+    /// Growth of each strip's impedance with frequency.
+    fn impedance_factors(&self, f_hz: f64) -> Vec<f64> {
+        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
+        self.strips.iter().map(|strip| strip.impedance_factor(f_n)).collect()
+    }
+
+    /// Effective permittivity of each mode at a frequency, and how far its impedance has grown.
+    fn dispersed(&self, f_hz: f64, factors: &[f64]) -> Vec<Dispersed> {
+        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
+        let rises: Vec<[Rise; 3]> = self.strips.iter().map(|strip| strip.rises(f_n)).collect();
+        let beside = |rise: &Rise, even: f64| even * rise.by_neighbour.even + (1.0 - even) * rise.by_neighbour.odd;
+        let one = |(eps_eff_static, parts): (&f64, &Vec<Part>)| {
+            let (mut rise, mut impedance_factor) = (0.0, 0.0);
+            for ((part, [single, left, right]), factor) in parts.iter().zip(&rises).zip(factors) {
+                rise += part.share * single.single * beside(left, part.even[0]) * beside(right, part.even[1]);
+                impedance_factor += part.share * factor;
+            }
+            let eps_eff = self.strips.first().map_or(*eps_eff_static, |strip| strip.single.raised(*eps_eff_static, rise));
+            Dispersed { eps_eff, impedance_factor }
+        };
+        self.modes.eps_eff.iter().zip(&self.parts).map(one).collect()
+    }
+
+    /// Impedance and effective permittivity of each mode at a frequency, over the static ones.
+    pub fn growth(&self, f_hz: f64) -> Vec<[f64; 2]> {
+        let dispersed = self.dispersed(f_hz, &self.impedance_factors(f_hz));
+        dispersed.iter().zip(&self.modes.eps_eff).map(|(mode, eps_eff)| [mode.impedance_factor, mode.eps_eff / eps_eff]).collect()
     }
 
     /// Loss of the solved cross-section; `None` where there is no loss or no solution.
