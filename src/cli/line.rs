@@ -307,9 +307,13 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         copper_thickness_m: arguments.copper.unwrap_or(laminate.copper.finished_m()),
         undercut_m: arguments.undercut,
         roughness_m: arguments.roughness.unwrap_or(laminate.copper.roughness_m),
+        // A roughness given as Rq asks for the law that takes it.
+        ten_point_height_m: if arguments.roughness.is_some() { None } else { laminate.copper.ten_point_height_m() },
         conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
         plating: plating_of(&laminate.finish),
         lid_m: arguments.lid,
+        walls_m: None,
+        coat: None,
         widening_m: 0.0,
         lossless: false,
         statics: StaticsModel::Numerical,

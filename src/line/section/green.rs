@@ -393,6 +393,7 @@ fn sample_cosines(numbers: &[(f64, f64)], spectra: &[Vec<f64>], start: f64, step
 }
 
 /// Dot product in four lanes, always added in the same order.
+#[inline(always)]
 pub(super) fn dot(one: &[f64], other: &[f64]) -> f64 {
     let mut lanes = [0.0; 4];
     let head = one.chunks_exact(4);
