@@ -51,14 +51,8 @@ pub fn say_reached(chosen: &Chosen, voice: Voice) {
     if let Some(reason) = &chosen.reason {
         voice.say(reason);
     }
-    let line = |miss: &crate::refine::Miss| {
-        // Rounded first: nobody wants to read -0.00.
-        let shown = |v: f64| (v * 100.0).round() / 100.0 + 0.0;
-        let [low, high] = miss.edges_hz.map(|e| shown(e / 1e6));
-        format!("edges {low:+.2} and {high:+.2} MHz, return loss {:+.2} dB from the prototype's", shown(miss.return_loss_db))
-    };
-    voice.say(&format!("refined: lossless {}", line(&chosen.refined.before_snapping)));
-    voice.say(&format!("on the shop grid: lossless {}", line(&chosen.refined.after_snapping)));
+    voice.say(&format!("refined: lossless {}", chosen.refined.before_snapping.describe()));
+    voice.say(&format!("on the shop grid: lossless {}", chosen.refined.after_snapping.describe()));
 }
 
 fn json(chosen: &Chosen) -> serde_json::Value {

@@ -311,6 +311,7 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         ten_point_height_m: if arguments.roughness.is_some() { None } else { laminate.copper.ten_point_height_m() },
         conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
         plating: plating_of(&laminate.finish),
+        hole_plating_m: 25e-6,
         lid_m: arguments.lid,
         walls_m: None,
         coat: None,

@@ -2,12 +2,18 @@
 
 mod edge_coupled;
 mod feeds;
+mod grounds;
+mod own;
+mod target;
+
+pub use target::Target;
 
 use crate::base::Outcome;
 use crate::base::Place;
 use crate::base::Problem;
 use crate::dimensions::Dimensions;
 use crate::layout::Layout;
+use crate::order::Band;
 use crate::order::FamilyKeys;
 use crate::order::Key;
 use crate::order::Order;
@@ -50,6 +56,17 @@ pub trait Family: Structure {
     /// # Errors
     /// `coupling-out-of-reach`, `impedance-out-of-reach`: no geometry on this laminate gives the impedances.
     fn first_guess(&self, order: &Order, degree: usize) -> Outcome<Dimensions>;
+
+    /// The lossless response of a degree to which refinement brings the set; for a band-pass, unless the family knows better, the prototype's
+    /// run evenly from edge to edge.
+    fn target(&self, order: &Order, degree: usize) -> Target {
+        match order.filter.band {
+            Band::LowPass { cutoff_hz } => Target::low_pass(order, degree, cutoff_hz, move |f| f / cutoff_hz),
+            Band::HighPass { from_hz, to_hz } | Band::BandPass { from_hz, to_hz } | Band::BandStop { from_hz, to_hz } => {
+                Target::band_pass(order, degree, [from_hz, to_hz])
+            }
+        }
+    }
 
     /// The directions in which refinement moves the set, symmetric partners together.
     fn knobs(&self, set: &Dimensions) -> Vec<Knob>;

@@ -42,6 +42,8 @@ pub struct AsBuilt {
     pub conductivity_s_per_m: f64,
     /// Metal over the copper that the current feels: the nickel of a finish.
     pub plating: Option<Plating>,
+    /// Copper on the wall of plated holes.
+    pub hole_plating_m: f64,
     /// Lid above the laminate surface.
     pub lid_m: Option<f64>,
     /// Distance of the housing's side walls from each other, the strips midway; `None` also where they are too far away to matter.
@@ -71,6 +73,7 @@ impl AsBuilt {
             ten_point_height_m: laminate.copper.ten_point_height_m(),
             conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
             plating: plating_of(&laminate.finish),
+            hole_plating_m: order.laminate.copper.plating_m,
             lid_m: order.housing.and_then(|housing| housing.lid_m),
             walls_m: None,
             coat: None,
@@ -125,6 +128,7 @@ impl AsBuilt {
             ten_point_height_m: None,
             conductivity_s_per_m: 5.8e7,
             plating: None,
+            hole_plating_m: 25e-6,
             lid_m: None,
             walls_m: None,
             coat: None,

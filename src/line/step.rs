@@ -42,3 +42,22 @@ pub fn step(one: &Strip, other: &Strip) -> Step {
         narrow_inductance_h: inductance_nh * (1.0 - wide_share) * 1e-9,
     }
 }
+
+/// A step whose narrow strip lies `offset_m` off the wide one's centre line; [`step`] at no offset.
+///
+/// The current that comes from one side of the wide strip only has twice the way round: between plates with magnetic side walls a step flush on one side has
+/// exactly twice the inductance of the centred one (its own half, by symmetry). Between them it grows with the square of the offset. The capacitance, of the
+/// width that ends, stays.
+///
+/// # Valid range
+/// As [`step`], offsets up to flush (beyond, as flush).
+///
+/// # Source
+/// Image argument, exact at both ends of the range for wide strips.
+pub fn offset_step(one: &Strip, other: &Strip, offset_m: f64) -> Step {
+    let flush_m = 0.5 * (one.built_width_m - other.built_width_m).abs();
+    let share = if flush_m > 0.0 { (offset_m.abs() / flush_m).min(1.0) } else { 0.0 };
+    let centred = step(one, other);
+    let factor = 1.0 + share * share;
+    Step { wide_inductance_h: factor * centred.wide_inductance_h, narrow_inductance_h: factor * centred.narrow_inductance_h, ..centred }
+}

@@ -59,6 +59,7 @@ pub fn thick(er: f64, h_m: f64, t_m: f64) -> AsBuilt {
         thickness_m: h_m,
         copper_thickness_m: t_m,
         undercut_m: 0.0,
+        hole_plating_m: 25e-6,
         roughness_m: 0.0,
         ten_point_height_m: None,
         conductivity_s_per_m: 5.8e7,
