@@ -36,6 +36,8 @@ use crate::order::nearest;
 
 /// Where losses are given when no frequency is asked for; said in the output.
 const LOSS_FREQUENCY_HZ: f64 = 1e9;
+/// Couplings below this are nothing to compare with.
+const LEAST_COUPLING: f64 = 1e-6;
 /// Decibel per neper.
 pub(super) const DB_PER_NP: f64 = 20.0 * std::f64::consts::LOG10_E;
 
@@ -429,7 +431,10 @@ pub(super) fn closed_form_lines(solved: &[(&str, [f64; 2])], closed: &[[f64; 2]]
         });
         of_modes.insert(name.to_owned(), of_mode);
     }
-    if let ([(_, [even, _]), (_, [odd, _])], [[closed_even, _], [closed_odd, _]]) = (solved, closed) {
+    // A coupling below the solver's rounding says nothing.
+    if let ([(_, [even, _]), (_, [odd, _])], [[closed_even, _], [closed_odd, _]]) = (solved, closed)
+        && coupling([*even, *odd]) > LEAST_COUPLING
+    {
         let by = coupling([*closed_even, *closed_odd]) / coupling([*even, *odd]) - 1.0;
         parts.push(format!("coupling {:+.2} %", 100.0 * by));
         of_modes.insert("coupling_relative_difference".to_owned(), json!(by));

@@ -45,6 +45,8 @@ pub struct Array {
     /// Slope of each mode's impedance of 1 ohm as walls recede, closed form.
     recession_ohm_per_m: Vec<f64>,
     strips: Vec<StripLaws>,
+    /// How much faster each mode rises under the lid.
+    lid_factors: Vec<f64>,
     /// Mode by mode, strip by strip.
     parts: Vec<Vec<Part>>,
     losses: Losses,
@@ -58,6 +60,7 @@ pub struct Array {
 #[derive(Clone, Debug)]
 struct StripLaws {
     single_eps_eff: f64,
+    single_lid_factor: f64,
     single: Dispersion,
     left: Option<Dispersion>,
     right: Option<Dispersion>,
@@ -128,19 +131,32 @@ impl Array {
         let built_widths_m: Vec<f64> = widths_m.iter().map(|width_m| statics::built_width_m(board, *width_m)).collect();
         let built_gaps_m: Vec<f64> = gaps_m.iter().map(|gap_m| statics::built_gap_m(board, *gap_m)).collect();
         let (h, er) = (board.thickness_m, board.permittivity);
+        let opened = statics::opened(board, &statics);
         let strips = (0..count)
             .map(|i| {
+                let single_eps_eff = statics::strip(board, widths_m[i]).modes.eps_eff;
+                let open = opened.as_ref().map(|open| statics::strip(open, widths_m[i]).modes.eps_eff);
                 let u = built_widths_m[i] / h;
                 let beside = |gap_m: Option<&f64>| gap_m.map(|gap_m| Dispersion::pair(u, gap_m / h, er));
                 StripLaws {
-                    single_eps_eff: statics::strip(board, widths_m[i]).modes.eps_eff,
+                    single_eps_eff,
+                    single_lid_factor: open.map_or(1.0, |open| statics::lid_factor(board, single_eps_eff, open)),
                     single: Dispersion::single(u, er),
                     left: beside(i.checked_sub(1).and_then(|left| built_gaps_m.get(left))),
                     right: beside(built_gaps_m.get(i)),
                 }
             })
             .collect();
+        // Mode by mode in their order: a lid moves no mode past another that differs from it.
+        let open_modes = opened.map(|open| Array::new(&open, &widths_m, &gaps_m).modes.eps_eff);
+        let lid_factors = (0..count)
+            .map(|mode| match (open_modes.as_ref().and_then(|open| open.get(mode)), modes.eps_eff.get(mode)) {
+                (Some(open), Some(with_lid)) => statics::lid_factor(board, *with_lid, *open),
+                _ => 1.0,
+            })
+            .collect();
         Array {
+            lid_factors,
             recession_ohm_per_m: (0..count).map(|mode| recession_ohm_per_m(&modes, mode, &statics.modes.air_recession)).collect(),
             parts: (0..count).map(|mode| parts(&modes.voltages_of(mode), &statics.modes.laminate)).collect(),
             losses: Losses::new(board),
@@ -235,16 +251,16 @@ impl Array {
         let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
         let rises: Vec<[Rise; 3]> = self.strips.iter().map(|strip| strip.rises(f_n)).collect();
         let beside = |rise: &Rise, even: f64| even * rise.by_neighbour.even + (1.0 - even) * rise.by_neighbour.odd;
-        let one = |(eps_eff_static, parts): (&f64, &Vec<Part>)| {
+        let one = |((eps_eff_static, parts), lid_factor): ((&f64, &Vec<Part>), &f64)| {
             let (mut rise, mut impedance_factor) = (0.0, 0.0);
             for ((part, [single, left, right]), factor) in parts.iter().zip(&rises).zip(factors) {
                 rise += part.share * single.single * beside(left, part.even[0]) * beside(right, part.even[1]);
                 impedance_factor += part.share * factor;
             }
-            let eps_eff = self.strips.first().map_or(*eps_eff_static, |strip| strip.single.raised(*eps_eff_static, rise));
+            let eps_eff = self.strips.first().map_or(*eps_eff_static, |strip| strip.single.raised(*eps_eff_static, lid_factor * rise));
             Dispersed { eps_eff, impedance_factor }
         };
-        self.modes.eps_eff.iter().zip(&self.parts).map(one).collect()
+        self.modes.eps_eff.iter().zip(&self.parts).zip(&self.lid_factors).map(one).collect()
     }
 
     /// Impedance and effective permittivity of each mode at a frequency, over the static ones.
@@ -303,7 +319,7 @@ impl StripLaws {
     }
 
     fn impedance_factor(&self, f_n: f64) -> f64 {
-        let eps_eff = self.single.single_eps_eff(f_n, self.single_eps_eff);
+        let eps_eff = self.single.single_eps_eff(f_n, self.single_eps_eff, self.single_lid_factor);
         self.single.impedance_factor(f_n, self.single_eps_eff, eps_eff)
     }
 }

@@ -27,6 +27,7 @@ fn board() -> AsBuilt {
         ten_point_height_m: None,
         conductivity_s_per_m: 5.8e7,
         plating: None,
+        hole_plating_m: 25e-6,
         lid_m: None,
         walls_m: None,
         coat: None,

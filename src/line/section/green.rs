@@ -63,7 +63,7 @@ impl Medium {
     }
 
     /// The nearest image that stays in the remainder is twice this far away.
-    fn scale_m(&self) -> f64 {
+    pub(super) fn scale_m(&self) -> f64 {
         let top = self.layers.last().map_or(f64::INFINITY, |layer| layer.1);
         let room = self.lid_m.map_or(f64::INFINITY, |lid| lid - self.copper_thickness_m);
         // The nearest repetition between walls is a whole distance of the walls away.

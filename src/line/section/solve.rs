@@ -9,7 +9,7 @@ use super::geometry::fault;
 use super::geometry::mm;
 use super::green::{Kernel, Medium};
 use super::panels::{Contour, Grid, Interpolation};
-use super::stackup::{COARSE, Kernels, Stackup};
+use super::stackup::{COARSE, COARSE_SHEET, Kernels, Stackup};
 
 /// Permittivity of free space, F/m (CODATA 2018).
 pub(super) const EPSILON_0: f64 = 8.854_187_812_8e-12;
@@ -21,6 +21,8 @@ const RICHARDSON: f64 = 0.164;
 const LEFT_OVER: f64 = 0.4;
 /// The same on the coarsest grids, whose difference is not yet all of that order.
 const LEFT_OVER_COARSEST: f64 = 0.8;
+/// Panels per width from which the difference of the grids is of the order that [`RICHARDSON`] takes.
+const FAIR_WIDTH: usize = 8;
 /// Rounding and table errors that no grid removes.
 const FLOOR: f64 = 2e-6;
 /// Grids tried in turn for an accuracy asked for, as panels per width.
@@ -369,10 +371,10 @@ fn extrapolate(coarse: &[Vec<f64>], fine: &[Vec<f64>], left_over: f64) -> (Vec<V
 }
 
 fn solve_on(section: &CrossSection, shared: &Shared<'_>, coarse: Grid) -> Result<Solved, Problem> {
-    let fine = Grid::new(2 * coarse.width);
+    let fine = coarse.doubled();
     let low = charges(section, shared, coarse)?;
     let high = charges(section, shared, fine)?;
-    let left_over = if coarse.width < COARSE.width { LEFT_OVER_COARSEST } else { LEFT_OVER };
+    let left_over = if coarse.width < FAIR_WIDTH { LEFT_OVER_COARSEST } else { LEFT_OVER };
     let (capacitance, estimate) = extrapolate(&total(&low, &low.dielectric), &total(&high, &high.dielectric), left_over);
     let (air_capacitance, air_estimate) = extrapolate(&total(&low, &low.air), &total(&high, &high.air), left_over);
     let inductance = invert(&air_capacitance).ok_or_else(not_solvable)?;
@@ -564,10 +566,14 @@ pub(super) fn solve_fixed(section: &CrossSection) -> Result<Solved, Problem> {
     solve_on(section, &tables.borrow(), array_grid(section))
 }
 
-/// Coarser of the two grids of an array; sheets have so few panels that both can be twice as fine.
+/// Coarser of the two grids of an array.
 fn array_grid(section: &CrossSection) -> Grid {
-    let grid = if section.strips.len() > FEW { ARRAY } else { COARSE };
-    if section.copper.thickness_m > 0.0 { grid } else { Grid::new(2 * grid.width) }
+    match (section.strips.len() > FEW, section.copper.thickness_m > 0.0) {
+        (false, true) => COARSE,
+        (false, false) => COARSE_SHEET,
+        (true, true) => ARRAY,
+        (true, false) => ARRAY.doubled(),
+    }
 }
 
 /// Many strips on a stackup's tables, on the fixed grids of an array.
