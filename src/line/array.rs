@@ -52,7 +52,7 @@ pub struct Array {
     losses: Losses,
     /// Asked for once, and only where there is loss: it costs more than all the rest.
     solved_loss: OnceLock<Result<Vec<ModeLoss>, Problem>>,
-    /// Numbers of widths and gaps that do not belong together.
+    /// Numbers of widths and gaps that do not belong together, or sizes that are none.
     mismatch: Option<Problem>,
 }
 
@@ -112,6 +112,11 @@ impl Array {
         let mismatch = (widths_m.is_empty() || widths_m.len() != gaps_m.len() + 1).then(|| {
             let message = format!("an array of {} widths and {} gaps: between N strips stand N - 1 gaps", widths_m.len(), gaps_m.len());
             Problem::error("array-gaps", Place::Whole, message, "give one gap fewer than widths")
+        });
+        let bad = widths_m.iter().chain(gaps_m).find(|size| !(**size > 0.0 && size.is_finite()));
+        let mismatch = mismatch.or_else(|| {
+            let message = format!("an array with a width or gap of {:.4} mm", bad? * 1e3);
+            Some(Problem::error("array-size", Place::Whole, message, "give sizes of more than zero"))
         });
         let (widths_m, gaps_m) = (widths_m[..count].to_vec(), gaps_m[..count.saturating_sub(1)].to_vec());
         let symmetric = widths_m.iter().eq(widths_m.iter().rev()) && gaps_m.iter().eq(gaps_m.iter().rev());

@@ -100,7 +100,7 @@ impl Array {
         under_lid(&self.board, open / self.board.thickness_m)
     }
 
-    /// Warnings as those of [`Pair::problems`], and the error `array-gaps`; none inside the range.
+    /// Warnings as those of [`Pair::problems`], and the errors `array-gaps` and `array-size`; none inside the range.
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, if self.count() > 1 { PAIR_SOURCE } else { SINGLE_SOURCE });
         range.problems.extend(self.mismatch().cloned());

@@ -5,7 +5,8 @@
 
 use faer::{Mat, Side};
 
-use super::solve::{LIGHT, Solved};
+use super::results::Solved;
+use super::solve::LIGHT;
 
 /// Modes of equal speed (always so without dielectric) may be mixed at will. This much of C0's diagonal, relative, added to C settles which are meant; it turns
 /// modes of different speed by less than the solver's rounding.

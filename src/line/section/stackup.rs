@@ -6,6 +6,7 @@ use std::sync::OnceLock;
 
 use crate::base::Problem;
 
+use super::fast::{solve_pair, solve_single};
 use super::geometry::CopperOf;
 use super::geometry::CrossSection;
 use super::geometry::HousingOf;
@@ -14,7 +15,8 @@ use super::geometry::SPAN_RATIO_AT_MOST;
 use super::geometry::StripOf;
 use super::green::{Kernel, Medium, OCTAVES_AT_MOST};
 use super::panels::{Grid, Interpolation};
-use super::solve::{Line, Pair, Solved, solve_array, solve_pair, solve_single, too_wide};
+use super::results::{Line, Pair, Solved};
+use super::solve::{solve_array, too_wide};
 
 /// Cached lines and pairs at most; then the cache is emptied. A synthesis with refine needs some thousand.
 const CACHED_AT_MOST: usize = 20_000;
