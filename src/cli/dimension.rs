@@ -8,7 +8,10 @@ use super::fresh_file;
 use super::read::Ordered;
 use super::results;
 use super::table;
+use crate::base::Problem;
 use crate::dimensions;
+use crate::line::Models;
+use crate::network;
 use crate::refine::Chosen;
 
 /// Synthesizes the dimension set of an order: each value with its first guess, the electrical target it serves and every correction
@@ -30,6 +33,10 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         Ok(chosen) => chosen,
         Err(problems) => return ordered.refuse(&problems, voice),
     };
+    let models = match line_models(&chosen) {
+        Ok(models) => models,
+        Err(problems) => return ordered.refuse(&problems, voice),
+    };
     let text = dimensions::write(&chosen.refined.dimensions);
     let written = match &arguments.file {
         Some(path) => {
@@ -39,11 +46,19 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
             voice.say(&format!("wrote {}", path.display()));
             Ending::Done
         }
-        None if voice.json => table::print_json(&json(&chosen)),
+        None if voice.json => table::print_json(&json(&chosen, &models)),
         None => results(&text),
     };
     say_reached(&chosen, voice);
+    voice.say(table::models_text(&models).trim());
     written
+}
+
+/// What gave the line constants of the chosen dimensions.
+fn line_models(chosen: &Chosen) -> Result<Models, Vec<Problem>> {
+    let set = &chosen.refined.dimensions;
+    let family = crate::family::of(&set.order).map_err(|problem| vec![problem])?;
+    network::models(&set.order, &family.layout(set)?)
 }
 
 /// One line each on the degree, on what refinement reached and on what the grid left.
@@ -58,7 +73,7 @@ pub fn say_reached(chosen: &Chosen, voice: Voice) {
     voice.say(&format!("on the shop grid: lossless {}", chosen.refined.after_snapping.describe()));
 }
 
-fn json(chosen: &Chosen) -> serde_json::Value {
+fn json(chosen: &Chosen, models: &Models) -> serde_json::Value {
     let miss = |m: &crate::refine::Miss| serde_json::json!({ "edges_hz": m.edges_hz, "return_loss_db": m.return_loss_db });
     let set = &chosen.refined.dimensions;
     let list: Vec<_> = set
@@ -74,6 +89,7 @@ fn json(chosen: &Chosen) -> serde_json::Value {
         "name": set.order.name, "degree": set.degree, "reason": chosen.reason,
         "measured": chosen.refined.curves.iter().map(curve_json).collect::<Vec<_>>(),
         "before_snapping": miss(&chosen.refined.before_snapping), "after_snapping": miss(&chosen.refined.after_snapping), "dimensions": list,
+        "line_models": table::models_json(models),
     })
 }
 

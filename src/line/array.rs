@@ -45,12 +45,14 @@ pub struct Array {
     /// Slope of each mode's impedance of 1 ohm as walls recede, closed form.
     recession_ohm_per_m: Vec<f64>,
     strips: Vec<StripLaws>,
+    /// How much faster each mode rises under the lid.
+    lid_factors: Vec<f64>,
     /// Mode by mode, strip by strip.
     parts: Vec<Vec<Part>>,
     losses: Losses,
     /// Asked for once, and only where there is loss: it costs more than all the rest.
     solved_loss: OnceLock<Result<Vec<ModeLoss>, Problem>>,
-    /// Numbers of widths and gaps that do not belong together.
+    /// Numbers of widths and gaps that do not belong together, or sizes that are none.
     mismatch: Option<Problem>,
 }
 
@@ -58,6 +60,7 @@ pub struct Array {
 #[derive(Clone, Debug)]
 struct StripLaws {
     single_eps_eff: f64,
+    single_lid_factor: f64,
     single: Dispersion,
     left: Option<Dispersion>,
     right: Option<Dispersion>,
@@ -70,6 +73,12 @@ struct Part {
     share: f64,
     /// How much of the even mode there is with the left and the right neighbour.
     even: [f64; 2],
+}
+
+/// One mode at one frequency.
+struct Dispersed {
+    eps_eff: f64,
+    impedance_factor: f64,
 }
 
 /// The modes of an array at one frequency; each is a line of 1 ohm, the strips' impedances are in the two matrices.
@@ -104,6 +113,11 @@ impl Array {
             let message = format!("an array of {} widths and {} gaps: between N strips stand N - 1 gaps", widths_m.len(), gaps_m.len());
             Problem::error("array-gaps", Place::Whole, message, "give one gap fewer than widths")
         });
+        let bad = widths_m.iter().chain(gaps_m).find(|size| !(**size > 0.0 && size.is_finite()));
+        let mismatch = mismatch.or_else(|| {
+            let message = format!("an array with a width or gap of {:.4} mm", bad? * 1e3);
+            Some(Problem::error("array-size", Place::Whole, message, "give sizes of more than zero"))
+        });
         let (widths_m, gaps_m) = (widths_m[..count].to_vec(), gaps_m[..count.saturating_sub(1)].to_vec());
         let symmetric = widths_m.iter().eq(widths_m.iter().rev()) && gaps_m.iter().eq(gaps_m.iter().rev());
         let mut statics = match (widths_m.as_slice(), gaps_m.as_slice()) {
@@ -122,19 +136,32 @@ impl Array {
         let built_widths_m: Vec<f64> = widths_m.iter().map(|width_m| statics::built_width_m(board, *width_m)).collect();
         let built_gaps_m: Vec<f64> = gaps_m.iter().map(|gap_m| statics::built_gap_m(board, *gap_m)).collect();
         let (h, er) = (board.thickness_m, board.permittivity);
+        let opened = statics::opened(board, &statics);
         let strips = (0..count)
             .map(|i| {
+                let single_eps_eff = statics::strip(board, widths_m[i]).modes.eps_eff;
+                let open = opened.as_ref().map(|open| statics::strip(open, widths_m[i]).modes.eps_eff);
                 let u = built_widths_m[i] / h;
                 let beside = |gap_m: Option<&f64>| gap_m.map(|gap_m| Dispersion::pair(u, gap_m / h, er));
                 StripLaws {
-                    single_eps_eff: statics::strip(board, widths_m[i]).modes.eps_eff,
+                    single_eps_eff,
+                    single_lid_factor: open.map_or(1.0, |open| statics::lid_factor(board, single_eps_eff, open)),
                     single: Dispersion::single(u, er),
                     left: beside(i.checked_sub(1).and_then(|left| built_gaps_m.get(left))),
                     right: beside(built_gaps_m.get(i)),
                 }
             })
             .collect();
+        // Mode by mode in their order: a lid moves no mode past another that differs from it.
+        let open_modes = opened.map(|open| Array::new(&open, &widths_m, &gaps_m).modes.eps_eff);
+        let lid_factors = (0..count)
+            .map(|mode| match (open_modes.as_ref().and_then(|open| open.get(mode)), modes.eps_eff.get(mode)) {
+                (Some(open), Some(with_lid)) => statics::lid_factor(board, *with_lid, *open),
+                _ => 1.0,
+            })
+            .collect();
         Array {
+            lid_factors,
             recession_ohm_per_m: (0..count).map(|mode| recession_ohm_per_m(&modes, mode, &statics.modes.air_recession)).collect(),
             parts: (0..count).map(|mode| parts(&modes.voltages_of(mode), &statics.modes.laminate)).collect(),
             losses: Losses::new(board),
@@ -189,9 +216,7 @@ impl Array {
     /// All quasi-TEM modes at a frequency (zero allowed).
     pub fn at(&self, f_hz: f64) -> ArrayModes {
         let count = self.count();
-        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
-        let rises: Vec<[Rise; 3]> = self.strips.iter().map(|strip| strip.rises(f_n)).collect();
-        let factors: Vec<f64> = self.strips.iter().map(|strip| strip.impedance_factor(f_n)).collect();
+        let factors = self.impedance_factors(f_hz);
         let solved = self.solved_loss().and_then(|losses| losses.as_ref().ok());
         let mut out = ArrayModes {
             index: Vec::with_capacity(count),
@@ -199,22 +224,15 @@ impl Array {
             voltages: self.modes.voltages.clone(),
             currents: self.modes.currents.clone(),
         };
-        for (mode, (&eps_eff_static, parts)) in self.modes.eps_eff.iter().zip(&self.parts).enumerate() {
-            let mut rise = 0.0;
-            let mut factor = 0.0;
-            for ((part, [single, left, right]), strip_factor) in parts.iter().zip(&rises).zip(&factors) {
-                let beside = |rise: &Rise, even: f64| even * rise.by_neighbour.even + (1.0 - even) * rise.by_neighbour.odd;
-                rise += part.share * single.single * beside(left, part.even[0]) * beside(right, part.even[1]);
-                factor += part.share * strip_factor;
-            }
-            let eps_eff = self.strips.first().map_or(eps_eff_static, |strip| strip.single.raised(eps_eff_static, rise));
+        for (mode, Dispersed { eps_eff, impedance_factor }) in self.dispersed(f_hz, &factors).into_iter().enumerate() {
+            let eps_eff_static = self.modes.eps_eff.get(mode).copied().unwrap_or(eps_eff);
             let statics = StaticMode {
                 air_ohm: eps_eff_static.sqrt(),
                 eps_eff: eps_eff_static,
                 recession_ohm_per_m: self.recession_ohm_per_m.get(mode).copied().unwrap_or(0.0),
             };
             let loss = solved.and_then(|losses| losses.get(mode));
-            out.alpha_np_per_m.push(self.losses.mode(f_hz, &statics, eps_eff, factor, loss).alpha_np_per_m());
+            out.alpha_np_per_m.push(self.losses.mode(f_hz, &statics, eps_eff, impedance_factor, loss).alpha_np_per_m());
             out.index.push(eps_eff.sqrt());
         }
         for (row, factor) in factors.iter().enumerate() {
@@ -225,6 +243,35 @@ impl Array {
             }
         }
         out
+    }
+
+    /// Growth of each strip's impedance with frequency.
+    fn impedance_factors(&self, f_hz: f64) -> Vec<f64> {
+        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
+        self.strips.iter().map(|strip| strip.impedance_factor(f_n)).collect()
+    }
+
+    /// Effective permittivity of each mode at a frequency, and how far its impedance has grown.
+    fn dispersed(&self, f_hz: f64, factors: &[f64]) -> Vec<Dispersed> {
+        let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
+        let rises: Vec<[Rise; 3]> = self.strips.iter().map(|strip| strip.rises(f_n)).collect();
+        let beside = |rise: &Rise, even: f64| even * rise.by_neighbour.even + (1.0 - even) * rise.by_neighbour.odd;
+        let one = |((eps_eff_static, parts), lid_factor): ((&f64, &Vec<Part>), &f64)| {
+            let (mut rise, mut impedance_factor) = (0.0, 0.0);
+            for ((part, [single, left, right]), factor) in parts.iter().zip(&rises).zip(factors) {
+                rise += part.share * single.single * beside(left, part.even[0]) * beside(right, part.even[1]);
+                impedance_factor += part.share * factor;
+            }
+            let eps_eff = self.strips.first().map_or(*eps_eff_static, |strip| strip.single.raised(*eps_eff_static, lid_factor * rise));
+            Dispersed { eps_eff, impedance_factor }
+        };
+        self.modes.eps_eff.iter().zip(&self.parts).zip(&self.lid_factors).map(one).collect()
+    }
+
+    /// Impedance and effective permittivity of each mode at a frequency, over the static ones.
+    pub fn growth(&self, f_hz: f64) -> Vec<[f64; 2]> {
+        let dispersed = self.dispersed(f_hz, &self.impedance_factors(f_hz));
+        dispersed.iter().zip(&self.modes.eps_eff).map(|(mode, eps_eff)| [mode.impedance_factor, mode.eps_eff / eps_eff]).collect()
     }
 
     /// Loss of the solved cross-section; `None` where there is no loss or no solution.
@@ -277,7 +324,7 @@ impl StripLaws {
     }
 
     fn impedance_factor(&self, f_n: f64) -> f64 {
-        let eps_eff = self.single.single_eps_eff(f_n, self.single_eps_eff);
+        let eps_eff = self.single.single_eps_eff(f_n, self.single_eps_eff, self.single_lid_factor);
         self.single.impedance_factor(f_n, self.single_eps_eff, eps_eff)
     }
 }

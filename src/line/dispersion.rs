@@ -22,8 +22,8 @@ const IMPEDANCE_FULL: f64 = 1.2;
 /// M. Kirschning, "Arguments and an accurate model for the power-current formulation of microstrip characteristic impedance", AEU 37, 1983, pp. 108-112
 /// (from memory).
 ///
-/// With solved statics the laws start from static values that hold thickness, taper and lid. Under a lid they are applied as they stand: no published law with a
-/// lid was at hand, and a lid, which draws field into the air, weakens dispersion, so the rise is on the high side; trust it where the rise itself is small.
+/// With solved statics the laws start from static values that hold thickness, taper and lid. Under a lid P is multiplied by `statics::lid_factor`, so that the
+/// permittivity runs from the lidded static value into that of the open line; not checked against full-wave values.
 ///
 /// The even and odd impedances take the factor of a single strip of the same width: so the coupling stays the static one and a wide gap becomes the single
 /// line. The 1984 laws for them are not used: no independent value for them was at hand, and the coupling follows from a small difference of the two.
@@ -123,18 +123,18 @@ impl Dispersion {
         [p1 * self.p2, self.p3_low * -(-(f_n / 38.7).powf(4.97)).exp_m1() * self.p4]
     }
 
-    /// Effective permittivity of the single strip at `fn` from its static value.
-    pub(super) fn single_eps_eff(&self, f_n: f64, eps_eff_static: f64) -> f64 {
+    /// Effective permittivity of the single strip at `fn` from its static value; `lid` multiplies P.
+    pub(super) fn single_eps_eff(&self, f_n: f64, eps_eff_static: f64, lid: f64) -> f64 {
         let [p12, p34] = self.common(f_n);
-        self.raised(eps_eff_static, p12 * ((p34 + 0.1844) * f_n).powf(1.5763))
+        self.raised(eps_eff_static, lid * p12 * ((p34 + 0.1844) * f_n).powf(1.5763))
     }
 
-    /// Even and odd effective permittivity at `fn` from their static values.
-    pub(super) fn pair_eps_eff(&self, f_n: f64, eps_eff_static: EvenOdd<f64>) -> EvenOdd<f64> {
+    /// Even and odd effective permittivity at `fn` from their static values; `lid` multiplies P.
+    pub(super) fn pair_eps_eff(&self, f_n: f64, eps_eff_static: EvenOdd<f64>, lid: EvenOdd<f64>) -> EvenOdd<f64> {
         let Rise { single, by_neighbour } = self.rise(f_n);
         EvenOdd {
-            even: self.raised(eps_eff_static.even, single * by_neighbour.even),
-            odd: self.raised(eps_eff_static.odd, single * by_neighbour.odd),
+            even: self.raised(eps_eff_static.even, lid.even * single * by_neighbour.even),
+            odd: self.raised(eps_eff_static.odd, lid.odd * single * by_neighbour.odd),
         }
     }
 

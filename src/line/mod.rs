@@ -8,8 +8,9 @@
 //!
 //! # Frequency
 //! Solved or closed, static values are carried up by M. Kirschning and R. H. Jansen's dispersion laws (1982 single, 1984 coupled): trusted to 39 GHz mm of laminate
-//! for one strip and 25 GHz mm for a pair (`trusted_up_to_hz`), outside their sizes with a warning where they move anything. Under a lid the open line's law is
-//! taken as it stands, from static values that hold the lid.
+//! for one strip and 25 GHz mm for a pair (`trusted_up_to_hz`), outside their sizes with a warning where they move anything. Under a lid the law
+//! starts from the lidded static value and runs into the open line's (`statics::lid_factor`), trusted below the first higher mode between ground and lid,
+//! c / (2 (lid + h sqrt(er))), where that is lower.
 //!
 //! # Where the closed forms are off
 //! By more than 1 % (`1`) or 3 % (`3`), else `.`; `cargo bench --bench closed_forms` prints both tables from the solver. One strip: impedance, effective

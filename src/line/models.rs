@@ -6,6 +6,9 @@ use super::Pair;
 use super::StaticsModel;
 use super::Strip;
 
+/// Couplings below this are the solver's rounding and nothing to compare with.
+const LEAST_COUPLING: f64 = 1e-6;
+
 /// The models behind a set of strips and pairs. Differences are of the closed form from the values used, static, relative, the largest in magnitude.
 #[derive(Clone, Debug, Default, PartialEq)]
 pub struct Models {
@@ -45,7 +48,9 @@ impl Models {
                 keep(&mut models.permittivity_difference, closed / used - 1.0);
             }
             let coupling = |even: f64, odd: f64| (even - odd) / (even + odd);
-            keep(&mut models.coupling_difference, coupling(closed_z.even, closed_z.odd) / coupling(z.even, z.odd) - 1.0);
+            if coupling(z.even, z.odd) > LEAST_COUPLING {
+                keep(&mut models.coupling_difference, coupling(closed_z.even, closed_z.odd) / coupling(z.even, z.odd) - 1.0);
+            }
         }
         models
     }
@@ -59,7 +64,7 @@ impl Models {
             for i in 0..array.count() {
                 keep(&mut self.impedance_difference, closed.z0_ohm(i) / used.z0_ohm(i) - 1.0);
                 keep(&mut self.permittivity_difference, closed.eps_eff(i) / used.eps_eff(i) - 1.0);
-                if i > 0 {
+                if i > 0 && used.coupling(i - 1, i) > LEAST_COUPLING {
                     keep(&mut self.coupling_difference, closed.coupling(i - 1, i) / used.coupling(i - 1, i) - 1.0);
                 }
             }

@@ -10,7 +10,6 @@ use super::section::CopperOf;
 use super::section::LayerOf;
 use super::section::MatrixLoss;
 use super::section::ModeLoss;
-use super::section::Roughness;
 use super::section::Solved;
 use super::section::Stackup;
 use super::section::StripOf;
@@ -171,7 +170,7 @@ fn lossy_thickness_m(board: &AsBuilt) -> f64 {
 /// Rough is the foil's laminate side: foot and ground. Plated are top and sides. The housing is taken as smooth metal of the copper's conductivity.
 pub(super) fn surfaces(board: &AsBuilt) -> Surfaces {
     let smooth = Surface::smooth(board.conductivity_s_per_m);
-    let laminate_side = Surface { roughness: Roughness::HammerstadJensen { rq_m: board.roughness_m }, ..smooth };
+    let laminate_side = Surface { roughness: board.roughness(), ..smooth };
     let outside = Surface { plating: board.plating, ..smooth };
     Surfaces { foot: laminate_side, top: outside, sides: outside, ground: laminate_side, housing: smooth }
 }

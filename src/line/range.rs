@@ -32,7 +32,7 @@ const DISPERSION_MATTERS: f64 = 2e-3;
 impl Strip {
     /// Frequency (Hz) up to which its dispersion is claimed by the source.
     pub fn trusted_up_to_hz(&self) -> f64 {
-        SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m
+        under_lid(&self.board, SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m)
     }
 
     /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
@@ -61,7 +61,7 @@ impl Strip {
 impl Pair {
     /// Frequency (Hz) up to which its dispersion is claimed by the source.
     pub fn trusted_up_to_hz(&self) -> f64 {
-        PAIR_GHZ_MM * 1e6 / self.board.thickness_m
+        under_lid(&self.board, PAIR_GHZ_MM * 1e6 / self.board.thickness_m)
     }
 
     /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
@@ -96,14 +96,11 @@ impl Pair {
 impl Array {
     /// Frequency (Hz) up to which the laws its dispersion is put together from are claimed by their sources.
     pub fn trusted_up_to_hz(&self) -> f64 {
-        if self.count() > 1 {
-            PAIR_GHZ_MM * 1e6 / self.board.thickness_m
-        } else {
-            SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m
-        }
+        let open = if self.count() > 1 { PAIR_GHZ_MM * 1e6 } else { SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S };
+        under_lid(&self.board, open / self.board.thickness_m)
     }
 
-    /// Warnings as those of [`Pair::problems`], and the error `array-gaps`; none inside the range.
+    /// Warnings as those of [`Pair::problems`], and the errors `array-gaps` and `array-size`; none inside the range.
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
         let mut range = Range::new(&self.board, if self.count() > 1 { PAIR_SOURCE } else { SINGLE_SOURCE });
         range.problems.extend(self.mismatch().cloned());
@@ -141,6 +138,11 @@ impl Array {
         }
         range.problems
     }
+}
+
+/// A lid adds the first higher mode between ground and lid, above which nothing here holds.
+fn under_lid(board: &AsBuilt, open_hz: f64) -> f64 {
+    board.lid_m.map_or(open_hz, |lid_m| open_hz.min(C_M_PER_S / (2.0 * (lid_m + board.thickness_m * board.permittivity.sqrt()))))
 }
 
 /// Least and greatest.

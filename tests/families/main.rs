@@ -60,7 +60,8 @@ fn every_starter_does_what_it_says() {
         // Nets by geometry (unions of polygons, points in them) against conductors by topology.
         let joined = Joined::of(&made.layout);
         let ground = joined.root(made.layout.nodes.len());
-        let used: BTreeSet<usize> = made.layout.parts.iter().flat_map(|placed| placed.nodes.iter().map(|node| joined.root(*node))).collect();
+        let used: BTreeSet<usize> =
+            made.layout.parts.iter().flat_map(|placed| placed.nodes.iter().map(|node| joined.root(*node))).collect();
         let strips = made.board.layers[&Layer::Copper(1)].iter().filter(|shape| shape.role == Role::Circuit);
         let mut pieces: BTreeMap<&str, usize> = BTreeMap::new();
         strips.for_each(|shape| *pieces.entry(&shape.net).or_default() += 1);

@@ -5,7 +5,8 @@
 
 use faer::{Mat, Side};
 
-use super::solve::{LIGHT, Solved};
+use super::results::Solved;
+use super::solve::LIGHT;
 
 /// Modes of equal speed (always so without dielectric) may be mixed at will. This much of C0's diagonal, relative, added to C settles which are meant; it turns
 /// modes of different speed by less than the solver's rounding.
@@ -30,7 +31,14 @@ impl Modes {
     /// `None` when a matrix is not positive definite.
     pub fn of(capacitance: &[f64], air_capacitance: &[f64], count: usize, symmetric: bool) -> Option<Modes> {
         let scale = air_capacitance.first()?.recip();
-        let full = |matrix: &[f64]| Mat::from_fn(count, count, |i, j| 0.5 * scale * (at(matrix, count, i, j) + at(matrix, count, j, i)));
+        let even = |matrix: &[f64], i: usize, j: usize| 0.5 * (at(matrix, count, i, j) + at(matrix, count, j, i));
+        // Rounding would leave the two halves of symmetric strips unequal.
+        let full = |matrix: &[f64]| {
+            Mat::from_fn(count, count, |i, j| {
+                let here = even(matrix, i, j);
+                scale * if symmetric { 0.5 * (here + even(matrix, count - 1 - i, count - 1 - j)) } else { here }
+            })
+        };
         let (with, without) = (full(capacitance), full(air_capacitance));
         let bases = if symmetric { halves(count) } else { vec![Mat::identity(count, count)] };
         let mut found: Vec<(f64, Vec<f64>)> = Vec::with_capacity(count);
