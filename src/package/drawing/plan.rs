@@ -157,13 +157,17 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
             }
         } else if let Some(&at) = kind.at.iter().min_by_key(|at| (at.y, at.x)) {
             let [x, y] = view.at(at);
-            let foot = [x + inside * 0.7, y - inside * 0.7];
-            let knee = [foot[0] + 3.0, foot[1] - 3.0];
-            sheet.line(&[foot, knee, [knee[0] + 1.5, knee[1]]], 0.18, INK);
+            // Towards the middle of the board, so that no label runs into the dimensions beside it.
+            let [right, _] = view.at(Point { x: facts::size(board)[0], y: Nm::ZERO });
+            let way = if x > 0.5 * (view.corner[0] + right) { -1.0 } else { 1.0 };
+            let foot = [x + way * inside * 0.7, y - inside * 0.7];
+            let knee = [foot[0] + way * 3.0, foot[1] - 3.0];
+            sheet.line(&[foot, knee, [knee[0] + way * 1.5, knee[1]]], 0.18, INK);
             let text = format!("{} ({} x)", kind.symbol, kind.at.len());
-            let backing = [text_width(&text, 2.4, Font::Bold) + 1.0, 3.0];
-            sheet.rectangle([knee[0] + 1.5, knee[1] - 1.4], backing, Some(PAPER), None);
-            sheet.text([knee[0] + 2.0, knee[1] - 0.8], 2.4, Font::Bold, Align::Left, false, INK, &text);
+            let wide = text_width(&text, 2.4, Font::Bold);
+            let left = if way > 0.0 { knee[0] + 2.0 } else { knee[0] - 2.0 - wide };
+            sheet.rectangle([left - 0.5, knee[1] - 1.4], [wide + 1.0, 3.0], Some(PAPER), None);
+            sheet.text([left, knee[1] - 0.8], 2.4, Font::Bold, Align::Left, false, INK, &text);
         }
     }
 }
