@@ -104,7 +104,7 @@ fn stack(job: &Job, flow: &mut Flow) {
         mm(order.board.thickness_tolerance_m)
     );
     if let Some((at, sheet)) = flow.take(4.5) {
-        sheet.text([at[0], at[1] + 1.5], 2.4, Font::Plain, Align::Left, false, FAINT, &overall);
+        sheet.text([at[0], at[1] + 1.5], 2.4, Font::Plain, Align::Left, FAINT, &overall);
     }
     flow.gap(2.0);
 }

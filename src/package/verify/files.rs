@@ -95,10 +95,8 @@ pub(super) fn read(pack: &mut Pack, listed: &Listed, found: &mut Findings) {
                 found.add("pdf-unreadable", name, what);
             }
         }
-        "svg" => {
-            if !text().starts_with("<svg") || !text().trim_end().ends_with("</svg>") {
-                found.add("picture-unreadable", name, "does not begin and end as a picture: the file is cut off");
-            }
+        "svg" if !text().starts_with("<svg") || !text().trim_end().ends_with("</svg>") => {
+            found.add("picture-unreadable", name, "does not begin and end as a picture: the file is cut off");
         }
         "toml" => match text().parse::<toml::Table>() {
             Err(error) => found.add("order-unreadable", name, error.message()),
