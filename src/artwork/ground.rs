@@ -5,6 +5,7 @@ use crate::artwork::HoleUse;
 use crate::artwork::Slot;
 use crate::artwork::launch::Launched;
 use crate::artwork::launch::fence;
+use crate::artwork::shape::CHORD_ERROR;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
 use crate::artwork::shape::convex_hull;
@@ -96,7 +97,8 @@ pub(super) fn stitching(order: &Order, size: Point, top: &Region, plane: &Region
     let pad = diameter + Nm::from_m(2.0 * ring);
     let wavelength_m = SPEED_OF_LIGHT / (highest_hz(order) * order.laminate.permittivity.sqrt());
     let pitch = Nm::from_m((2.0 * MAX_FENCE_PITCH_M).min(FENCE_WAVELENGTHS * wavelength_m));
-    let rim = Nm::from_m(shop.edge_clearance_m) + Nm(pad.0 / 2);
+    // A round pad's chords lie a little outside its circle.
+    let rim = Nm::from_m(shop.edge_clearance_m) + Nm(pad.0 / 2) + CHORD_ERROR + CHORD_ERROR;
     let mut places = Vec::new();
     for x in fence(rim, size.x - rim, pitch) {
         places.extend([Point { x, y: rim }, Point { x, y: size.y - rim }]);

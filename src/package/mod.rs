@@ -268,7 +268,7 @@ pub static WRITERS: &[Writer] = &[
     },
     Writer {
         file: FileName::Fixed("preview.svg"),
-        about: "the artwork at true scale and the predicted response",
+        about: "the artwork at a stated scale and the predicted response",
         for_board_house: false,
         applies: |_| true,
         write: preview::write,

@@ -155,7 +155,7 @@ fn files(note: &mut Note, job: &Job) {
         note.text("The files for the board house were withheld: a design rule is broken. Nothing may be built from this note alone.");
     }
     for file in listed {
-        note.lines.push(format!("  {}  ({})", file.file, ascii(&file.about)));
+        note.wrapped("  ", "      ", &format!("{} ({})", file.file, file.about));
         note.lines.push(format!("    sha-256 {}", file.sha256));
     }
 }

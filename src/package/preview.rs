@@ -1,4 +1,4 @@
-//! How do board and response look? `preview.svg`: the artwork at true scale, the predicted response with its limits, the figures.
+//! How do board and response look? `preview.svg`: the artwork at a stated scale, the predicted response with its limits, the figures.
 
 use std::fmt::Write as _;
 use std::io;
@@ -9,6 +9,8 @@ use crate::artwork::Layer;
 use crate::artwork::Role;
 use crate::artwork::Shape;
 use crate::artwork::shape::bounds;
+use crate::artwork::slot_area;
+use crate::base::Nm;
 use crate::base::Point;
 use crate::network::Method;
 use crate::network::Verdict;
@@ -32,6 +34,9 @@ const MISSED: &str = "#c0202c";
 /// Narrowest sheet: the plot and its tables want the room.
 const LEAST_WIDTH_MM: f64 = 190.0;
 const MARGIN_MM: f64 = 12.0;
+/// Scales a small board is shown at, and the greatest height it may then take.
+const ENLARGED: [f64; 4] = [10.0, 5.0, 4.0, 2.0];
+const ENLARGED_HEIGHT_MM: f64 = 90.0;
 const PLOT_HEIGHT_MM: f64 = 82.0;
 /// Room for the labels of the level axis.
 const AXIS_MM: f64 = 12.0;
@@ -71,7 +76,7 @@ pub fn draw(job: &Job) -> String {
     let date = order.date.as_ref().map_or(String::new(), |date| format!("  \u{b7}  {date}"));
     let degree = job.bundle.dimensions.degree;
     let sub = format!("{}  \u{b7}  revision {}{part}{date}  \u{b7}  {}, degree {degree}", order.name, order.revision, order.filter.family);
-    svg.text(MARGIN_MM, 22.0, 3.2, FAINT, "", &sub);
+    svg.text(MARGIN_MM, 22.0, fitting(&sub, right - MARGIN_MM), FAINT, "", &sub);
     let stack = format!(
         "{}: permittivity {}, {} mm dielectric, {} \u{b5}m copper",
         order.laminate.class,
@@ -79,16 +84,20 @@ pub fn draw(job: &Job) -> String {
         number(order.laminate.thickness_m * 1e3, 4),
         number(order.laminate.copper.finished_m() * 1e6, 1)
     );
-    svg.text(MARGIN_MM, 26.6, 3.2, FAINT, "", &stack);
+    svg.text(MARGIN_MM, 26.6, fitting(&stack, right - MARGIN_MM), FAINT, "", &stack);
     svg.line([MARGIN_MM, 30.0], [right, 30.0], RULE, 0.25);
 
     let artwork_top = 37.0;
-    artwork(&mut svg, job, [(width - board_mm[0]) / 2.0, artwork_top], low, board_mm);
-    let bar_y = artwork_top + board_mm[1] + 6.5;
+    // A small board is enlarged, in steps that a ruler can follow.
+    let room = [width - 2.0 * MARGIN_MM - 12.0, ENLARGED_HEIGHT_MM];
+    let scale = ENLARGED.into_iter().find(|scale| scale * board_mm[0] <= room[0] && scale * board_mm[1] <= room[1]).unwrap_or(1.0);
+    artwork(&mut svg, job, [(width - scale * board_mm[0]) / 2.0, artwork_top], low, board_mm, scale);
+    let bar_y = artwork_top + scale * board_mm[1] + 6.5;
     scale_bar(
         &mut svg,
         [right, bar_y],
-        &format!("{} mm \u{d7} {} mm, top side, finished size, 1:1", number(board_mm[0], 3), number(board_mm[1], 3)),
+        scale,
+        &format!("{} mm \u{d7} {} mm, top side, finished size, {scale}:1", number(board_mm[0], 3), number(board_mm[1], 3)),
     );
 
     let plot = Plot::new(job, [MARGIN_MM + AXIS_MM, bar_y + 14.0], [right, bar_y + 14.0 + PLOT_HEIGHT_MM]);
@@ -189,10 +198,16 @@ impl Svg {
     }
 }
 
-fn artwork(svg: &mut Svg, job: &Job, corner: [f64; 2], low: Point, size: [f64; 2]) {
+/// Size of a line of text that fits the width: a letter is about 0.52 of its height wide on average.
+fn fitting(text: &str, width: f64) -> f64 {
+    number((1.9 * width / text.chars().count().max(1) as f64).min(3.2), 2).parse().unwrap_or(3.2)
+}
+
+fn artwork(svg: &mut Svg, job: &Job, corner: [f64; 2], low: Point, size_mm: [f64; 2], scale: f64) {
     let board = job.bundle.board;
+    let size = size_mm.map(|v| scale * v);
     // From board coordinates, y up, to the sheet, y down.
-    let at = |p: Point| [corner[0] + (p.x - low.x).mm(), corner[1] + size[1] - (p.y - low.y).mm()];
+    let at = |p: Point| [corner[0] + scale * (p.x - low.x).mm(), corner[1] + size[1] - scale * (p.y - low.y).mm()];
     let path = |shape: &Shape| {
         let mut d = String::new();
         for ring in std::iter::once(&shape.outer).chain(&shape.voids) {
@@ -223,8 +238,34 @@ fn artwork(svg: &mut Svg, job: &Job, corner: [f64; 2], low: Point, size: [f64; 2
     }
     for hole in &board.holes {
         let [x, y] = at(hole.at).map(|v| number(v, 4));
-        let radius = number(hole.diameter.mm() / 2.0, 4);
+        let radius = number(scale * hole.diameter.mm() / 2.0, 4);
         svg.add(format_args!("<circle cx=\"{x}\" cy=\"{y}\" r=\"{radius}\" fill=\"{PAPER}\" stroke=\"#8c6a45\" stroke-width=\"0.08\"/>"));
+    }
+    for slot in &board.slots {
+        for piece in slot_area(slot, Nm::ZERO).pieces {
+            let shape = Shape { outer: piece.outer, voids: piece.voids, role: Role::Opening, net: String::new() };
+            svg.add(format_args!("<path d=\"{}\" fill=\"{PAPER}\" stroke=\"#8c6a45\" stroke-width=\"0.12\"/>", path(&shape)));
+        }
+    }
+    for [from, to] in &board.plated_edges {
+        svg.line(at(*from), at(*to), CIRCUIT, 0.8);
+    }
+    // What is no copper and yet decides where copper may lie: areas to keep free, the housing in the middle of the board.
+    let order = job.order();
+    let mut areas: Vec<([Point; 2], &str)> = Vec::new();
+    for area in &order.board.keep_outs {
+        areas.push(([Point::from_m(area.from_m[0], area.from_m[1]), Point::from_m(area.to_m[0], area.to_m[1])], "keep out"));
+    }
+    if let Some(inside) = order.housing.and_then(|housing| housing.inside_m) {
+        let half = inside.map(|v| 0.5e3 * v);
+        let corner = |sign: f64| Point::from_m(5e-4 * size_mm[0] + 1e-3 * sign * half[0], 5e-4 * size_mm[1] + 1e-3 * sign * half[1]);
+        areas.push(([corner(-1.0), corner(1.0)].map(|p| p.shifted(low.x, low.y)), "housing wall"));
+    }
+    for ([from, to], name) in areas {
+        let (a, b) = (at(from), at(to));
+        let dashes = "stroke=\"#12608f\" stroke-width=\"0.2\" stroke-dasharray=\"1.2 0.8\"";
+        svg.rectangle(a[0], b[1], [b[0] - a[0], a[1] - b[1]], "none", dashes);
+        svg.text(a[0] + 0.8, a[1] - 0.8, 1.9, THROUGH, "", name);
     }
     for port in &board.ports {
         let [x, y] = at(port.edge.middle());
@@ -238,14 +279,21 @@ fn artwork(svg: &mut Svg, job: &Job, corner: [f64; 2], low: Point, size: [f64; 2
     }
 }
 
-/// Ten millimetres that end at `at`, and what the picture shows to their left.
-fn scale_bar(svg: &mut Svg, at: [f64; 2], caption: &str) {
+/// Ten millimetres of the board that end at `at` (one where it is much enlarged), and what the picture shows to their left.
+fn scale_bar(svg: &mut Svg, at: [f64; 2], scale: f64, caption: &str) {
     let [x, y] = at;
+    let (shown, name) = if scale > 5.0 { (scale, "1 mm") } else { (10.0 * scale, "10 mm") };
     for i in 0..2 {
         let fill = if i == 0 { INK } else { PAPER };
-        svg.rectangle(x - 10.0 + 5.0 * f64::from(i), y - 0.6, [5.0, 1.2], fill, &format!("stroke=\"{INK}\" stroke-width=\"0.15\""));
+        svg.rectangle(
+            x - shown + 0.5 * shown * f64::from(i),
+            y - 0.6,
+            [0.5 * shown, 1.2],
+            fill,
+            &format!("stroke=\"{INK}\" stroke-width=\"0.15\""),
+        );
     }
-    svg.text(x - 12.0, y + 1.0, 2.9, INK, "text-anchor=\"end\"", "10 mm");
+    svg.text(x - shown - 2.0, y + 1.0, 2.9, INK, "text-anchor=\"end\"", name);
     svg.text(MARGIN_MM, y + 1.0, 2.9, FAINT, "", caption);
 }
 

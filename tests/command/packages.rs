@@ -35,7 +35,18 @@ fn the_starter_meets_its_requirements_and_its_rules() {
     assert!(!ran.out.contains("MISSED") && ran.out.contains("met "), "{}", ran.out);
     assert!(ran.err.contains("degree 4 is the least that meets every requirement"), "{}", ran.err);
     let package = folder.path().join("out").join(NAME);
-    for file in ["-copper-l1-top.gbr", "-profile.gbr", "-plated.drl", ".dxf", "-fabrication.txt", "-to-board-house.zip"] {
+    for file in [
+        "-copper-l1-top.gbr",
+        "-profile.gbr",
+        "-plated.drl",
+        ".dxf",
+        ".gbrjob",
+        ".ipc",
+        "-drillmap.gbr",
+        "-fabrication.pdf",
+        "-fabrication.txt",
+        "-to-board-house.zip",
+    ] {
         assert!(package.join(format!("{NAME}{file}")).exists(), "{file}");
     }
     assert_eq!(run(folder.path(), STARTER, &["check", &format!("out/{NAME}")]).code, 0);
@@ -66,6 +77,14 @@ fn a_broken_rule_withholds_the_files_for_the_board_house() {
     assert_eq!(ran.code, 1);
     let note = fs::read_to_string(folder.path().join(format!("out/{NAME}/{NAME}-fabrication.txt"))).unwrap();
     assert!(note.contains("gap-below-minimum"), "the note must carry the mark:\n{note}");
+    // Every file for the board house carries the mark, not the note alone.
+    for ending in
+        ["-copper-l1-top.gbr", "-copper-l2-bottom.gbr", "-profile.gbr", "-plated.drl", ".gbrjob", ".ipc", ".dxf", "-fabrication.pdf"]
+    {
+        let bytes = fs::read(folder.path().join(format!("out/{NAME}/{NAME}{ending}"))).unwrap();
+        let mark = b"DESIGN RULE IS BROKEN";
+        assert!(bytes.windows(mark.len()).any(|window| window == mark), "{ending} carries no mark");
+    }
 }
 
 #[test]

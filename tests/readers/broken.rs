@@ -259,8 +259,8 @@ const CASES: &[Case] = &[
     ("a tool without a function", "drill-function-missing", |b| b.replace(PLATED, "; #@! TA.AperFunction,ViaDrill,None\n", "")),
     ("holes through layers that are not there", "drill-span-differs", |b| b.replace(PLATED, "Plated,1,2,PTH", "Plated,1,4,PTH")),
     // One issue of one project.
-    ("bottom copper of another revision", "revision-differs", |b| b.edit(BOTTOM, |t| revised(t))),
-    ("drill file of another revision", "revision-differs", |b| b.edit(PLATED, |t| revised(t))),
+    ("bottom copper of another revision", "revision-differs", |b| b.edit(BOTTOM, revised)),
+    ("drill file of another revision", "revision-differs", |b| b.edit(PLATED, revised)),
     ("netlist of another revision", "revision-differs", |b| b.replace(".ipc", "P  REV   A", "P  REV   B")),
     ("job file of another revision", "revision-differs", |b| job(b, |job| job["GeneralSpecs"]["ProjectId"]["Revision"] = "B".into())),
     ("note of another revision", "revision-differs", |b| b.replace("-fabrication.txt", "revision A\n", "revision B\n")),

@@ -1,4 +1,4 @@
-"""Reads a package with libraries of other people: gerbonara, ezdxf, shapely (from PyPI).
+"""Reads a package with libraries of other people: gerbonara, ezdxf, shapely, pypdf (from PyPI).
 
 Usage: independent.py PACKAGE-FOLDER
 Prints one line for each file and "N passed, N failed"; exits with 1 when any failed, with 2 when there is nothing to read.
@@ -7,6 +7,7 @@ Held against one another: Gerber areas and extents against the DXF, drill hits a
 
 import hashlib
 import json
+import re
 import sys
 import warnings
 import zipfile
@@ -15,7 +16,9 @@ from pathlib import Path
 import ezdxf
 from gerbonara import ExcellonFile, GerberFile
 from gerbonara.graphic_primitives import ArcPoly, Circle, Line, Rectangle
+from gerbonara.ipc356 import Netlist
 from gerbonara.utils import MM
+from pypdf import PdfReader
 from shapely.geometry import LineString, Point, Polygon, box
 from shapely.ops import unary_union
 
@@ -111,6 +114,87 @@ def copper_of(rings, layer):
     return area
 
 
+# The published JSON schema of the Gerber job file (revision 2023.06): the keys there are, and no other.
+JOB_KEYS = {
+    "": {"Header", "GeneralSpecs", "DesignRules", "FilesAttributes", "MaterialStackup"},
+    "Header": {"GenerationSoftware", "CreationDate", "Comment"},
+    "GeneralSpecs": {
+        "ProjectId", "Owner", "Size", "LayerNumber", "BoardThickness", "IPC-2221-Type", "IPC-600-Class", "Standard", "ImpedanceControlled",
+        "UL_Logo", "Fabricator_Logo", "Fabricator_Datecode", "ViaProtection", "HolePlatingThickness", "HalogenFree", "Press-fit",
+        "HeatSinkPaste", "EdgePlating", "Castellated", "EdgeConnector", "EdgeConnectorBevelled", "HardGoldArea", "RoHS", "Finish", "Foil",
+        "Substrates", "Material_Tg", "ITAR", "ElectricalTest", "Notes",
+    },
+    "DesignRules": {
+        "Layers", "PadToPad", "PadToTrack", "PadToRegion", "TrackToTrack", "TrackToRegion", "RegionToRegion", "MinLineWidth", "MinRing",
+        "MinClearanceToProfile", "Notes",
+    },
+    "FilesAttributes": {"Path", "FileFunction", "FilePolarity", "FileFormat"},
+    "MaterialStackup": {
+        "Type", "Thickness", "Color", "DielectricConstant", "LossTangent", "Conductivity", "Tg", "Material", "Name", "Note", "Substacks",
+    },
+}
+
+
+def job_file(name, job, files, edge):
+    """Keys by the schema, size by the profile, stack by the thickness, files by the package."""
+    faults = [f"key {key}" for key in set(job) - JOB_KEYS[""]]
+    for block, value in job.items():
+        for entry in value if isinstance(value, list) else [value]:
+            faults += [f"{block} has no key {key}" for key in set(entry) - JOB_KEYS.get(block, set())]
+    general = job["GeneralSpecs"]
+    if edge and any(abs(a - b) > PLACE_TOLERANCE_MM for a, b in zip((general["Size"]["X"], general["Size"]["Y"]), (edge[2] - edge[0], edge[3] - edge[1]))):
+        faults.append(f"size {general['Size']} differs from the profile {edge}")
+    coppers = [entry for entry in job["MaterialStackup"] if entry["Type"] == "Copper"]
+    if len(coppers) != general["LayerNumber"]:
+        faults.append(f"{len(coppers)} coppers in the stack, {general['LayerNumber']} layers")
+    listed = {entry["Path"] for entry in job["FilesAttributes"]}
+    if listed != {n for n in files if n.endswith((".gbr", ".drl"))}:
+        faults.append("does not list the layer files")
+    report(name, faults, f"{len(listed)} files, {len(coppers)} copper layers, {general['BoardThickness']} mm")
+
+
+def netlist(name, path, lines):
+    """Fixed columns, and read by gerbonara; every net at two places or more."""
+    faults = [f"line of {len(line)} columns" for line in lines if len(line) > 80]
+    tests = [line for line in lines if line[:3] in ("317", "327", "367")]
+    for line in tests:
+        if line[38] != "A" or line[41] != "X" or line[49] != "Y" or not line[42:49].lstrip("+-").isdigit() or not line[50:57].lstrip("+-").isdigit():
+            faults.append(f"columns are wrong: {line}")
+    read = Netlist.open(path)
+    if len(read.test_records) != len(tests):
+        faults.append(f"gerbonara reads {len(read.test_records)} of {len(tests)} records")
+    nets = {}
+    for line in tests:
+        nets[line[3:17].strip()] = nets.get(line[3:17].strip(), 0) + 1
+    faults += [f"{net} is tested at one place" for net, count in nets.items() if count < 2 and net not in ("N/C",)]
+    report(name, faults, f"{len(tests)} test points of {len(nets)} nets")
+
+
+def paper(name, path, note, contents):
+    """Page size, fonts, and that every controlled feature of the note stands in the drawing with its value and tolerance."""
+    reader = PdfReader(path)
+    faults = []
+    # ISO 216 A4 and ANSI A, landscape, points.
+    sizes = [(841.89, 595.28), (792.0, 612.0)]
+    for page in reader.pages:
+        found = (float(page.mediabox.width), float(page.mediabox.height))
+        if not any(abs(found[0] - w) < 0.1 and abs(found[1] - h) < 0.1 for w, h in sizes):
+            faults.append(f"page of {found} points")
+        fonts = {font.get_object()["/BaseFont"] for font in page["/Resources"]["/Font"].values()}
+        if fonts - {"/Helvetica", "/Helvetica-Bold"}:
+            faults.append(f"fonts {fonts}")
+    text = "\n".join(page.extract_text() for page in reader.pages)
+    first = reader.pages[0].extract_text()
+    for wanted in ("REVISION", "SCALE", "UNITS", "GRAIN", "PART NUMBER", "SECTION OF THE STACK", "DRILL TABLE", "NOTES"):
+        if wanted not in text:
+            faults.append(f"{wanted} is not in the text")
+    rows = re.findall(r"^  (\d+) +(.+?) +(\d+\.\d{4}) +\+/-(\d+\.\d+) +(width|gap|length|size) ", note, re.M)
+    for number, feature, nominal, tolerance, kind in rows:
+        if f"{kind} {nominal} \xb1{tolerance}" not in first and len(rows) < 60:
+            faults.append(f"{feature} {nominal} is not called out")
+    report(name, faults, f"{len(reader.pages)} pages, {len(rows)} controlled features called out")
+
+
 def main(folder):
     """Reads every file; gives the exit status."""
     contents = json.loads((folder / "contents.json").read_text())
@@ -143,7 +227,8 @@ def main(folder):
             if area.is_empty:
                 faults.append("holds nothing")
             good = f"{area.area:.6f} mm2 in {len(getattr(area, 'geoms', [area]))} islands"
-            layer = "L1_TOP_COPPER" if "-copper-l1-" in name else "L2_BOT_COPPER" if "-copper-l2-" in name else None
+            copper = re.search(r"-copper-l(\d)-(top|inner|bottom)\.gbr$", name)
+            layer = f"L{copper[1]}_{ {'top': 'TOP', 'inner': 'INNER', 'bottom': 'BOT'}[copper[2]]}_COPPER" if copper else None
             if layer:
                 drawn = copper_of(rings, layer)
                 if abs(drawn.area - area.area) > AREA_TOLERANCE_MM2 or area.symmetric_difference(drawn).area > AREA_TOLERANCE_MM2:
@@ -155,10 +240,11 @@ def main(folder):
             report(name, faults, good)
         elif name.endswith(".drl"):
             drill = ExcellonFile.open(path)
-            hits = sorted((round(o.x, 6), round(o.y, 6), round(o.tool.diameter, 6)) for o in drill.objects)
+            # Slots are strokes here, and no circles in the DXF.
+            hits = sorted((round(o.x, 6), round(o.y, 6), round(o.tool.diameter, 6)) for o in drill.objects if hasattr(o, "x"))
             layer = "DRILL_NPTH" if name.endswith("-unplated.drl") else "DRILL_PTH"
             drawn = sorted((round(x, 6), round(y, 6), round(d, 6)) for x, y, d in circles.get(layer, []))
-            report(name, [] if hits == drawn and hits else [f"{len(hits)} holes differ from the DXF's {len(drawn)}"], f"{len(hits)} holes")
+            report(name, [] if hits == drawn and list(drill.objects) else [f"{len(hits)} holes differ from the DXF's {len(drawn)}"], f"{len(hits)} holes")
         elif name.endswith(".zip"):
             with zipfile.ZipFile(path) as archive:
                 faults = [] if archive.testzip() is None else ["a damaged entry"]
@@ -167,6 +253,13 @@ def main(folder):
                     faults.append("does not hold the files for the board house")
                 faults += [f"{n} differs" for n in archive.namelist() if archive.read(n) != (folder / n).read_bytes()]
             report(name, faults, f"{len(wanted)} files")
+        elif name.endswith(".gbrjob"):
+            job_file(name, json.loads(data), files, edge)
+        elif name.endswith(".ipc"):
+            netlist(name, path, data.decode("ascii").splitlines())
+        elif name.endswith(".pdf"):
+            note = (folder / name.replace(".pdf", ".txt")).read_text()
+            paper(name, path, note, contents)
         elif name.endswith(".txt"):
             lines = data.decode("ascii").splitlines()
             wide = [line for line in lines if len(line) > 100]

@@ -6,6 +6,7 @@ mod broken;
 mod drawing;
 mod drills;
 mod gerbers;
+mod hand_off;
 mod placing;
 mod sample;
 mod touchstone;

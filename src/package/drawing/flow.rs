@@ -78,7 +78,7 @@ impl Flow {
         self.room(20.0);
         let width = self.width();
         if let Some((at, sheet)) = self.take(8.5) {
-            sheet.text([at[0], at[1] + 2.6], 3.0, Font::Bold, Align::Left, false, ACCENT, text);
+            sheet.text([at[0], at[1] + 2.6], 3.0, Font::Bold, Align::Left, ACCENT, text);
             sheet.line(&[[at[0], at[1] + 1.2], [at[0] + width, at[1] + 1.2]], 0.3, ACCENT);
         }
     }
@@ -107,9 +107,9 @@ impl Flow {
                 let (x, w) = (places.get(c).copied().unwrap_or(0.0), natural.get(c).copied().unwrap_or(0.0) * stretch);
                 let color = if font == Font::Bold { FAINT } else { INK };
                 if right.contains(&c) {
-                    sheet.text([at[0] + x + w - 3.0, at[1] + 1.2], text, font, Align::Right, false, color, cell);
+                    sheet.text([at[0] + x + w - 3.0, at[1] + 1.2], text, font, Align::Right, color, cell);
                 } else {
-                    sheet.text([at[0] + x, at[1] + 1.2], text, font, Align::Left, false, color, cell);
+                    sheet.text([at[0] + x, at[1] + 1.2], text, font, Align::Left, color, cell);
                 }
             }
             sheet.line(&[[at[0], at[1]], [at[0] + width, at[1]]], if font == Font::Bold { 0.25 } else { 0.1 }, HAIR);
@@ -148,9 +148,9 @@ impl Flow {
         for (i, line) in lines.iter().enumerate() {
             let Some((at, sheet)) = self.take(LINE) else { return };
             if i == 0 {
-                sheet.text([at[0], at[1] + 1.1], TEXT, Font::Bold, Align::Left, false, FAINT, before);
+                sheet.text([at[0], at[1] + 1.1], TEXT, Font::Bold, Align::Left, FAINT, before);
             }
-            sheet.text([at[0] + indent, at[1] + 1.1], TEXT, Font::Plain, Align::Left, false, INK, line);
+            sheet.text([at[0] + indent, at[1] + 1.1], TEXT, Font::Plain, Align::Left, INK, line);
         }
         self.gap(1.1);
     }

@@ -119,14 +119,14 @@ fn title_block(sheet: &mut Sheet, job: &Job, size: [f64; 2], scale: &str, number
                 sheet.line(&[[x, y - height], [x, y]], 0.25, INK);
             }
             let width = share * (right - split);
-            sheet.text([x + 2.0, y - 3.6], 1.9, Font::Plain, Align::Left, false, FAINT, name);
+            sheet.text([x + 2.0, y - 3.6], 1.9, Font::Plain, Align::Left, FAINT, name);
             fitted(sheet, [x + 2.0, y - 8.4], 3.3, Font::Bold, width - 4.0, INK, value);
             x += width;
         }
     }
     if job.breaks_a_rule() {
         let text = "A DESIGN RULE IS BROKEN: quote and build only on written consent";
-        sheet.text([0.5 * size[0], size[1] - MARGIN - 6.0], 4.2, Font::Bold, Align::Middle, false, ALARM, text);
+        sheet.text([0.5 * size[0], size[1] - MARGIN - 6.0], 4.2, Font::Bold, Align::Middle, ALARM, text);
     }
 }
 
@@ -144,5 +144,5 @@ fn fitted(sheet: &mut Sheet, at: [f64; 2], height: f64, font: Font, width: f64, 
         }
         shown = format!("{kept}...");
     }
-    sheet.text(at, height, font, Align::Left, false, color, &shown);
+    sheet.text(at, height, font, Align::Left, color, &shown);
 }

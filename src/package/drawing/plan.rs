@@ -133,7 +133,7 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
         let corners = [Point::from_m(area.from_m[0], area.from_m[1]), Point::from_m(area.to_m[0], area.to_m[1])].map(|p| view.at(p));
         let ring = [corners[0], [corners[1][0], corners[0][1]], corners[1], [corners[0][0], corners[1][1]], corners[0]];
         sheet.dashed(&ring, 0.25, ACCENT, [1.6, 1.0]);
-        sheet.text([corners[0][0] + 1.0, corners[0][1] + 1.2], 1.9, Font::Plain, Align::Left, false, ACCENT, "keep out");
+        sheet.text([corners[0][0] + 1.0, corners[0][1] + 1.2], 1.9, Font::Plain, Align::Left, ACCENT, "keep out");
     }
     // The housing stands in the middle of the board.
     if let Some(inside) = job.order().housing.and_then(|housing| housing.inside_m) {
@@ -145,7 +145,7 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
         let ring = [at(-1.0, -1.0), at(1.0, -1.0), at(1.0, 1.0), at(-1.0, 1.0), at(-1.0, -1.0)];
         sheet.dashed(&ring, 0.25, ACCENT, [4.0, 1.0]);
         let text = format!("housing inside {} x {}", mm(inside[0]), mm(inside[1]));
-        sheet.text([at(-1.0, -1.0)[0] + 1.0, at(-1.0, -1.0)[1] + 1.2], 1.9, Font::Plain, Align::Left, false, ACCENT, &text);
+        sheet.text([at(-1.0, -1.0)[0] + 1.0, at(-1.0, -1.0)[1] + 1.2], 1.9, Font::Plain, Align::Left, ACCENT, &text);
     }
     // The letter of each kind of hole, at the one nearest to the middle of the board's lower edge, where there is most room beside it.
     for kind in facts::hole_kinds(board) {
@@ -153,17 +153,21 @@ fn artwork(sheet: &mut Sheet, view: &View, job: &Job) {
         if inside >= 2.0 {
             for &at in &kind.at {
                 let [x, y] = view.at(at);
-                sheet.text([x, y - 0.9], 2.6, Font::Bold, Align::Middle, false, INK, &kind.symbol);
+                sheet.text([x, y - 0.9], 2.6, Font::Bold, Align::Middle, INK, &kind.symbol);
             }
         } else if let Some(&at) = kind.at.iter().min_by_key(|at| (at.y, at.x)) {
             let [x, y] = view.at(at);
-            let foot = [x + inside * 0.7, y - inside * 0.7];
-            let knee = [foot[0] + 3.0, foot[1] - 3.0];
-            sheet.line(&[foot, knee, [knee[0] + 1.5, knee[1]]], 0.18, INK);
+            // Towards the middle of the board, so that no label runs into the dimensions beside it.
+            let [right, _] = view.at(Point { x: facts::size(board)[0], y: Nm::ZERO });
+            let way = if x > 0.5 * (view.corner[0] + right) { -1.0 } else { 1.0 };
+            let foot = [x + way * inside * 0.7, y - inside * 0.7];
+            let knee = [foot[0] + way * 3.0, foot[1] - 3.0];
+            sheet.line(&[foot, knee, [knee[0] + way * 1.5, knee[1]]], 0.18, INK);
             let text = format!("{} ({} x)", kind.symbol, kind.at.len());
-            let backing = [text_width(&text, 2.4, Font::Bold) + 1.0, 3.0];
-            sheet.rectangle([knee[0] + 1.5, knee[1] - 1.4], backing, Some(PAPER), None);
-            sheet.text([knee[0] + 2.0, knee[1] - 0.8], 2.4, Font::Bold, Align::Left, false, INK, &text);
+            let wide = text_width(&text, 2.4, Font::Bold);
+            let left = if way > 0.0 { knee[0] + 2.0 } else { knee[0] - 2.0 - wide };
+            sheet.rectangle([left - 0.5, knee[1] - 1.4], [wide + 1.0, 3.0], Some(PAPER), None);
+            sheet.text([left, knee[1] - 0.8], 2.4, Font::Bold, Align::Left, INK, &text);
         }
     }
 }
@@ -189,9 +193,9 @@ fn dimension(sheet: &mut Sheet, ends: [f64; 2], from: f64, line: f64, vertical: 
     let middle = 0.5 * (ends[0] + ends[1]);
     let height = 2.8;
     if vertical {
-        sheet.text([line - 1.0, middle], height, Font::Plain, Align::Middle, true, INK, text);
+        sheet.upright([line - 1.0, middle], height, Font::Plain, Align::Middle, INK, text);
     } else {
-        sheet.text([middle, line + 1.0], height, Font::Plain, Align::Middle, false, INK, text);
+        sheet.text([middle, line + 1.0], height, Font::Plain, Align::Middle, INK, text);
     }
 }
 
@@ -218,13 +222,13 @@ fn dimensions(sheet: &mut Sheet, view: &View, job: &Job) {
             [px, if dy < 0.0 { bottom - 5.0 } else { top + 5.0 }]
         };
         sheet.circle(label, 2.4, PAPER, Some((0.25, INK)));
-        sheet.text([label[0], label[1] - 1.0], 2.8, Font::Bold, Align::Middle, false, INK, &port.number.to_string());
+        sheet.text([label[0], label[1] - 1.0], 2.8, Font::Bold, Align::Middle, INK, &port.number.to_string());
     }
     // The origin.
     sheet.circle([left, bottom], 0.9, PAPER, Some((0.25, ACCENT)));
     sheet.line(&[[left - 2.0, bottom], [left + 2.0, bottom]], 0.25, ACCENT);
     sheet.line(&[[left, bottom - 2.0], [left, bottom + 2.0]], 0.25, ACCENT);
-    sheet.text([left - 2.0, bottom - 4.2], 2.2, Font::Plain, Align::Right, false, ACCENT, "origin 0, 0");
+    sheet.text([left - 2.0, bottom - 4.2], 2.2, Font::Plain, Align::Right, ACCENT, "origin 0, 0");
 }
 
 /// Every controlled feature with number, kind, nominal and tolerance, on leaders above and below the board.
@@ -252,10 +256,10 @@ fn call_outs(sheet: &mut Sheet, view: &View, job: &Job, across: [f64; 2], [botto
             sheet.line(&[at, [at[0], knee], [x, centre - BALLOON * outwards]], 0.13, ACCENT);
             sheet.circle(at, 0.42, ACCENT, None);
             sheet.circle([x, centre], BALLOON, PAPER, Some((0.22, ACCENT)));
-            sheet.text([x, centre - 0.85], 2.4, Font::Bold, Align::Middle, false, ACCENT, &feature.number.to_string());
+            sheet.text([x, centre - 0.85], 2.4, Font::Bold, Align::Middle, ACCENT, &feature.number.to_string());
             let text = format!("{} {:.4} \u{b1}{tolerance}", feature.kind, feature.nominal_m * 1e3);
             let align = if above { Align::Left } else { Align::Right };
-            sheet.text([x + 0.8, centre + (BALLOON + 1.2) * outwards], 2.3, Font::Plain, align, true, INK, &text);
+            sheet.upright([x + 0.8, centre + (BALLOON + 1.2) * outwards], 2.3, Font::Plain, align, INK, &text);
         }
     }
 }
@@ -285,16 +289,16 @@ fn spread(wanted: &[f64], apart: f64, [from, to]: [f64; 2]) -> Vec<f64> {
 /// What the view is, its bar, the grain, the area to leave alone.
 fn legend(sheet: &mut Sheet, job: &Job, low: [f64; 2], high: [f64; 2], scale: f64, name: &str) {
     let order = job.order();
-    sheet.text([low[0] + 4.0, high[1] - 6.0], 3.0, Font::Bold, Align::Left, false, INK, "COPPER 1, SEEN FROM THE TOP");
+    sheet.text([low[0] + 4.0, high[1] - 6.0], 3.0, Font::Bold, Align::Left, INK, "COPPER 1, SEEN FROM THE TOP");
     let under = format!("scale {name}, finished size; numbers in circles: controlled features, see table");
     let wide = 6.0 + text_width("COPPER 1, SEEN FROM THE TOP", 3.0, Font::Bold);
-    sheet.text([low[0] + 4.0 + wide, high[1] - 6.0], 2.4, Font::Plain, Align::Left, false, FAINT, &under);
+    sheet.text([low[0] + 4.0 + wide, high[1] - 6.0], 2.4, Font::Plain, Align::Left, FAINT, &under);
     // A bar of ten millimetres, or of one or a hundred where that is out of proportion.
     let long = [10.0, 1.0, 100.0].into_iter().find(|mm| (6.0..=70.0).contains(&(mm * scale))).unwrap_or(10.0);
     let (x, y) = (high[0] - 6.0 - long * scale, low[1] + 4.0);
     sheet.rectangle([x, y], [0.5 * long * scale, 1.2], Some(INK), Some((0.15, INK)));
     sheet.rectangle([x + 0.5 * long * scale, y], [0.5 * long * scale, 1.2], Some(PAPER), Some((0.15, INK)));
-    sheet.text([x - 1.5, y], 2.4, Font::Plain, Align::Right, false, INK, &format!("{long} mm"));
+    sheet.text([x - 1.5, y], 2.4, Font::Plain, Align::Right, INK, &format!("{long} mm"));
     let mut x = low[0] + 6.0;
     if let Some(axis) = facts::grain_axis(order) {
         let ends = if axis == 'x' { [[x, y + 0.6], [x + 14.0, y + 0.6]] } else { [[x + 3.0, y - 2.0], [x + 3.0, y + 10.0]] };
@@ -303,12 +307,12 @@ fn legend(sheet: &mut Sheet, job: &Job, low: [f64; 2], high: [f64; 2], scale: f6
         arrow(sheet, ends[1], way);
         arrow(sheet, ends[0], [-way[0], -way[1]]);
         x += if axis == 'x' { 17.0 } else { 8.0 };
-        sheet.text([x, y - 0.2], 2.4, Font::Plain, Align::Left, false, INK, &format!("grain along {axis}"));
+        sheet.text([x, y - 0.2], 2.4, Font::Plain, Align::Left, INK, &format!("grain along {axis}"));
         x += 26.0;
     }
     for (color, text) in [(COPPER, "filter copper"), (GROUND, "ground copper")] {
         sheet.rectangle([x, y - 0.6], [5.0, 2.6], Some(color), None);
-        sheet.text([x + 6.5, y - 0.2], 2.4, Font::Plain, Align::Left, false, INK, text);
+        sheet.text([x + 6.5, y - 0.2], 2.4, Font::Plain, Align::Left, INK, text);
         x += 32.0;
     }
 }

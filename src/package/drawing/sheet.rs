@@ -108,19 +108,24 @@ impl Sheet {
         }
     }
 
-    /// Text of a height in millimetres (from line to line it wants 1.4 of it), turned a quarter counter-clockwise when `upright`.
-    pub fn text(&mut self, at: [f64; 2], height: f64, font: Font, align: Align, upright: bool, color: Color, text: &str) {
+    /// Text of a height in millimetres (from line to line it wants 1.4 of it).
+    pub fn text(&mut self, at: [f64; 2], height: f64, font: Font, align: Align, color: Color, text: &str) {
         let bytes = encoded(text);
-        let shift = match align {
-            Align::Left => 0.0,
-            Align::Middle => -0.5 * width_of(&bytes, height, font),
-            Align::Right => -width_of(&bytes, height, font),
-        };
-        let (x, y) = if upright { (at[0], at[1] + shift) } else { (at[0] + shift, at[1]) };
-        let matrix = if upright { [0.0, 1.0, -1.0, 0.0, x as f32, y as f32] } else { [1.0, 0.0, 0.0, 1.0, x as f32, y as f32] };
+        let x = at[0] + shift(&bytes, height, font, align);
+        self.show([1.0, 0.0, 0.0, 1.0, x as f32, at[1] as f32], height, font, color, &bytes);
+    }
+
+    /// The same turned a quarter counter-clockwise.
+    pub fn upright(&mut self, at: [f64; 2], height: f64, font: Font, align: Align, color: Color, text: &str) {
+        let bytes = encoded(text);
+        let y = at[1] + shift(&bytes, height, font, align);
+        self.show([0.0, 1.0, -1.0, 0.0, at[0] as f32, y as f32], height, font, color, &bytes);
+    }
+
+    fn show(&mut self, matrix: [f32; 6], height: f64, font: Font, color: Color, bytes: &[u8]) {
         let name = if font == Font::Bold { Name(b"B") } else { Name(b"P") };
         self.content.set_fill_rgb(color[0], color[1], color[2]);
-        self.content.begin_text().set_font(name, height as f32).set_text_matrix(matrix).show(Str(&bytes)).end_text();
+        self.content.begin_text().set_font(name, height as f32).set_text_matrix(matrix).show(Str(bytes)).end_text();
     }
 
     fn path<'p>(&mut self, chains: impl Iterator<Item = (&'p [[f64; 2]], bool)>) {
@@ -179,6 +184,15 @@ fn encoded(text: &str) -> Vec<u8> {
 /// Width of a text, millimetres.
 pub(super) fn text_width(text: &str, height: f64, font: Font) -> f64 {
     width_of(&encoded(text), height, font)
+}
+
+/// From the point a text is aligned to, to where it begins.
+fn shift(bytes: &[u8], height: f64, font: Font, align: Align) -> f64 {
+    match align {
+        Align::Left => 0.0,
+        Align::Middle => -0.5 * width_of(bytes, height, font),
+        Align::Right => -width_of(bytes, height, font),
+    }
 }
 
 fn width_of(bytes: &[u8], height: f64, font: Font) -> f64 {

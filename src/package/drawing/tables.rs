@@ -5,6 +5,7 @@ use super::FAINT;
 use super::INK;
 use super::LAMINATE;
 use super::PAPER;
+use super::fitted;
 use super::flow::Flow;
 use super::sheet::Align;
 use super::sheet::Font;
@@ -42,6 +43,7 @@ fn stack(job: &Job, flow: &mut Flow) {
     let total: f64 = layers.iter().map(height_of).sum();
     let last = order.copper_layers();
     let plated = board.holes.iter().any(|hole| hole.is_plated());
+    let column = flow.width();
     let Some((at, sheet)) = flow.take(total + 6.0) else { return };
     let width = 44.0;
     let mut y = at[1] + 3.0 + total;
@@ -93,8 +95,8 @@ fn stack(job: &Job, flow: &mut Flow) {
         };
         let middle = y + 0.5 * height;
         let x = at[0] + width + 2.0;
-        sheet.text([x, middle - 0.8], 2.4, Font::Bold, Align::Left, false, INK, &name);
-        sheet.text([x + 35.0, middle - 0.8], 2.4, Font::Plain, Align::Left, false, INK, &value);
+        fitted(sheet, [x, middle - 0.8], 2.4, Font::Bold, 34.0, INK, &name);
+        fitted(sheet, [x + 35.0, middle - 0.8], 2.4, Font::Plain, column - width - 37.0, INK, &value);
     }
     let overall = format!(
         "Overall {} \u{b1}{} mm over foil and plating, without finish, mask and legend.",
@@ -102,7 +104,7 @@ fn stack(job: &Job, flow: &mut Flow) {
         mm(order.board.thickness_tolerance_m)
     );
     if let Some((at, sheet)) = flow.take(4.5) {
-        sheet.text([at[0], at[1] + 1.5], 2.4, Font::Plain, Align::Left, false, FAINT, &overall);
+        sheet.text([at[0], at[1] + 1.5], 2.4, Font::Plain, Align::Left, FAINT, &overall);
     }
     flow.gap(2.0);
 }

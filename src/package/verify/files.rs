@@ -95,10 +95,8 @@ pub(super) fn read(pack: &mut Pack, listed: &Listed, found: &mut Findings) {
                 found.add("pdf-unreadable", name, what);
             }
         }
-        "svg" => {
-            if !text().starts_with("<svg") || !text().trim_end().ends_with("</svg>") {
-                found.add("picture-unreadable", name, "does not begin and end as a picture: the file is cut off");
-            }
+        "svg" if !text().starts_with("<svg") || !text().trim_end().ends_with("</svg>") => {
+            found.add("picture-unreadable", name, "does not begin and end as a picture: the file is cut off");
         }
         "toml" => match text().parse::<toml::Table>() {
             Err(error) => found.add("order-unreadable", name, error.message()),
@@ -142,13 +140,14 @@ fn note(pack: &Pack, name: &str, text: &str, found: &mut Findings) {
         found.add("note-unreadable", name, "is not plain text to its closing line: the file is cut off");
     }
     let mut last = "";
-    for line in text.lines().map(str::trim) {
-        if let Some(sum) = line.strip_prefix("sha-256 ") {
+    for line in text.lines() {
+        if let Some(sum) = line.trim().strip_prefix("sha-256 ") {
             let listed = pack.contents.files.iter().find(|file| file.file == last);
             if listed.is_none_or(|file| file.sha256 != sum) {
                 found.add("note-checksum-differs", name, format!("the checksum of {last} is not the package's"));
             }
-        } else {
+        } else if !line.starts_with("   ") {
+            // Lines further in go on with what a file is.
             last = line.split_whitespace().next().unwrap_or_default();
         }
     }
