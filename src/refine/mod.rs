@@ -109,21 +109,25 @@ pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Pr
     }
     let before_snapping = miss_with(family, &refined, &goal, &book)?;
     if !before_snapping.is_met() {
-        return Err(vec![not_reached(&before_snapping, &goal)]);
+        return Err(vec![not_reached(&before_snapping, &goal, &curves)]);
     }
     let dimensions = snap(family, &refined, &goal, &book);
     let after_snapping = miss_with(family, &dimensions, &goal, &book)?;
     Ok(Refined { dimensions, before_snapping, after_snapping, curves })
 }
 
-fn not_reached(miss: &Miss, goal: &Target) -> Problem {
+fn not_reached(miss: &Miss, goal: &Target, curves: &[ProbeCurve]) -> Problem {
+    // What could not be had by itself is most likely the reason.
+    let lacking: Vec<String> =
+        curves.iter().filter(|curve| curve.found_m.is_none()).map(|curve| format!("; {}", curve.describe())).collect();
     Problem::error(
         "passband-not-reached",
         Place::Key("filter.passband".into()),
         format!(
-            "the best these dimensions do is {}; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB",
+            "the best these dimensions do is {}; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB{}",
             miss.describe(),
             goal.edges_hz.first().map_or(0.0, |edge| passband::allowed_hz(goal, *edge)) / 1e6,
+            lacking.concat(),
         ),
         "make the band narrower, the degree lower or the laminate thinner",
     )
