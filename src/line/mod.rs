@@ -80,7 +80,7 @@
 mod array;
 mod array_inverse;
 mod as_built;
-mod bend;
+pub mod bend;
 mod book;
 mod coplanar;
 mod coupled;
@@ -89,6 +89,7 @@ mod cross;
 mod dispersion;
 pub mod gap;
 mod inverse;
+mod junction_statics;
 mod many;
 mod mode;
 mod models;

@@ -49,6 +49,7 @@ fn every_published_row_ran() {
         junctions::optimum_cuts(),
         junctions::sectors(),
         junctions::equal_gaps_by_the_unequal_law(),
+        junctions::solved_gaps(),
         loss::rows(),
     ];
     let misses: Vec<&String> = ran.iter().filter_map(|table| table.as_ref().err()).collect();
@@ -57,4 +58,4 @@ fn every_published_row_ran() {
 }
 
 /// Printed values held against ours.
-const PINNED_ROWS: usize = 1080;
+const PINNED_ROWS: usize = 1098;
