@@ -1,6 +1,7 @@
 //! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
 
 mod edge_coupled;
+mod end_coupled;
 mod feeds;
 mod grounds;
 mod own;
@@ -95,7 +96,10 @@ pub enum Moves {
 }
 
 /// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
-pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled];
+pub static FAMILIES: &[&dyn Family] = &[
+    &edge_coupled::EdgeCoupled,
+    &end_coupled::EndCoupled,
+];
 
 /// The family an order names.
 ///

@@ -26,9 +26,12 @@ pub use passband::{Miss, Passband};
 const FIT_ITERATIONS: usize = 25;
 /// Iterations of one round of the second stage, which levels the ripple.
 const LEVEL_ITERATIONS: usize = 8;
-/// Before the stages: the passband is looked for this far to either side of the centre, at so many points, and moved so many times.
+/// Before the stages: the passband is looked for this far to either side of the centre, at so many points (more, up to the greatest number,
+/// where a band is so narrow that it would slip between them), and moved so many times.
 const ALIGN_REACH: f64 = 0.25;
 const ALIGN_POINTS: usize = 201;
+const ALIGN_POINTS_PER_BAND: f64 = 4.0;
+const ALIGN_POINTS_AT_MOST: usize = 20_001;
 const ALIGN_STEPS: usize = 3;
 /// Rounds of both stages.
 const ROUNDS: usize = 4;
@@ -191,8 +194,9 @@ impl Search<'_> {
             _ => return self.align_edges(x),
         };
         let center_hz = 0.5 * (from_hz + to_hz);
-        let f: Vec<f64> =
-            (0..ALIGN_POINTS).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (ALIGN_POINTS - 1) as f64 - 1.0))).collect();
+        let wanted = 2.0 * ALIGN_REACH * center_hz / (to_hz - from_hz) * ALIGN_POINTS_PER_BAND;
+        let points = (wanted.ceil() as usize).clamp(ALIGN_POINTS, ALIGN_POINTS_AT_MOST);
+        let f: Vec<f64> = (0..points).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (points - 1) as f64 - 1.0))).collect();
         for _ in 0..ALIGN_STEPS {
             let Some(circuit) = self.circuit(x) else { return };
             let weights: Vec<f64> = circuit.sweep(&f).s.iter().map(|s| s[1].norm_sqr().powi(2)).collect();
