@@ -20,7 +20,8 @@ pub(super) fn callouts(layout: &Layout) -> Vec<Callout> {
     let mut called = BTreeSet::new();
     let mut found = Vec::new();
     for placed in &layout.parts {
-        if let (Part::Gap { .. }, Some(name), Some((from, to))) = (&placed.part, placed.serves.first(), between_ends(layout, &placed.nodes)) {
+        if let (Part::Gap { .. }, Some(name), Some((from, to))) = (&placed.part, placed.serves.first(), between_ends(layout, &placed.nodes))
+        {
             if called.insert(name.clone()) {
                 found.push(Callout { dimension: name.clone(), from, to });
             }

@@ -1,10 +1,12 @@
 //! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
 
+mod coupled_resonator_stop;
 mod edge_coupled;
 mod end_coupled;
 mod feeds;
 mod grounds;
 mod own;
+mod single_resonator;
 mod target;
 
 pub use target::Target;
@@ -99,6 +101,8 @@ pub enum Moves {
 pub static FAMILIES: &[&dyn Family] = &[
     &edge_coupled::EdgeCoupled,
     &end_coupled::EndCoupled,
+    &single_resonator::SingleResonator,
+    &coupled_resonator_stop::CoupledResonatorStop,
 ];
 
 /// The family an order names.
