@@ -7,6 +7,7 @@ mod feeds;
 mod grounds;
 mod own;
 mod single_resonator;
+mod taps;
 mod target;
 
 pub use target::Target;
