@@ -20,6 +20,13 @@ pub(super) fn callouts(layout: &Layout) -> Vec<Callout> {
     let mut called = BTreeSet::new();
     let mut found = Vec::new();
     for placed in &layout.parts {
+        if let (Part::Gap { .. }, Some(name), Some((from, to))) = (&placed.part, placed.serves.first(), between_ends(layout, &placed.nodes))
+        {
+            if called.insert(name.clone()) {
+                found.push(Callout { dimension: name.clone(), from, to });
+            }
+            continue;
+        }
         let Part::Lines { widths, .. } = &placed.part else { continue };
         let strips: Vec<[Side; 2]> = (0..widths.len())
             .filter_map(|i| {
@@ -62,6 +69,18 @@ fn place(kind: Kind, strips: &[[Side; 2]], i: usize) -> Option<(Point, Point)> {
         }
         Kind::Length => strips.first().map(|strip| strip[0]),
     }
+}
+
+/// A gap between two ends that face each other along x or y, at the upper (or right) corner of the narrower one.
+fn between_ends(layout: &Layout, nodes: &[usize]) -> Option<(Point, Point)> {
+    let (one, other) = (layout.nodes.get(*nodes.first()?)?, layout.nodes.get(*nodes.get(1)?)?);
+    let narrow = if one.width() <= other.width() { one } else { other };
+    let corner = narrow.left.max(narrow.right);
+    Some(if one.left.x == one.right.x {
+        (Point { x: one.left.x, y: corner.y }, Point { x: other.left.x, y: corner.y })
+    } else {
+        (Point { x: corner.x, y: one.left.y }, Point { x: corner.x, y: other.left.y })
+    })
 }
 
 fn sides(near: &Node, far: &Node) -> [Side; 2] {

@@ -1,5 +1,6 @@
 //! Arguments, printing and progress; one file per command.
 
+mod advise;
 mod check;
 mod dimension;
 mod fresh_file;
@@ -44,6 +45,7 @@ enum Command {
     Dimension(dimension::Arguments),
     Draw(make::DrawArguments),
     Predict(predict::Arguments),
+    Advise(advise::Arguments),
     Solve(solve::Arguments),
     Line(line::Arguments),
     Check(check::Arguments),
@@ -115,6 +117,7 @@ pub fn run() -> ExitCode {
         Command::Dimension(arguments) => dimension::run(arguments, voice),
         Command::Draw(arguments) => make::run_draw(arguments, voice),
         Command::Predict(arguments) => predict::run(arguments, voice),
+        Command::Advise(arguments) => advise::run(arguments, voice),
         Command::Solve(arguments) => solve::run(arguments, voice),
         Command::Line(arguments) => line::run(arguments, voice),
         Command::Check(arguments) => check::run(arguments, voice),

@@ -14,6 +14,8 @@ use super::Moves;
 use super::Structure;
 use super::feeds;
 use super::own;
+use super::taps;
+use super::taps::Tap;
 use crate::base::Dimensionality;
 use crate::base::Nm;
 use crate::base::Outcome;
@@ -25,6 +27,7 @@ use crate::dimensions::Dimensions;
 use crate::layout::Draft;
 use crate::layout::Layout;
 use crate::layout::Part;
+use crate::layout::Way;
 use crate::line::AsBuilt;
 use crate::line::C_M_PER_S;
 use crate::line::Pair;
@@ -36,6 +39,7 @@ use crate::order::Key;
 use crate::order::Order;
 use crate::order::OwnKind;
 use crate::order::Passes;
+use crate::prototype::external_q;
 use crate::prototype::ladder;
 
 /// The edge-coupled family.
@@ -50,6 +54,12 @@ static KEYS: &[Key] = &[
         about: "impedance level of the resonators; higher makes narrower lines and wider gaps at the ends",
         kind: OwnKind::Quantity(Dimensionality::Impedance),
         default: Some("50 ohm"),
+    },
+    Key {
+        name: "input",
+        about: "how the ports reach the end resonators: across a gap, or tapped where the shop cannot etch that gap",
+        kind: OwnKind::OneOf(&["coupled", "tapped"]),
+        default: Some("coupled"),
     },
     Key {
         name: "feed-length",
@@ -73,14 +83,18 @@ impl Structure for EdgeCoupled {
     }
 
     fn names(&self, order: &Order, degree: usize) -> Vec<String> {
-        let sections = (1..=degree + 1).flat_map(|k| ["width", "gap", "length"].map(|what| section(k, what)));
-        sections.chain(feeds::names(order)).collect()
+        let names = sections(order, degree).flat_map(|k| ["width", "gap", "length"].map(|what| section(k, what)));
+        if is_tapped(order) {
+            return taps::names(1).into_iter().chain(names).chain(taps::names(2)).chain(feeds::names(order)).collect();
+        }
+        names.chain(feeds::names(order)).collect()
     }
 
     fn layout(&self, set: &Dimensions) -> Result<Layout, Vec<Problem>> {
         let value = |name: String| set.value(&name).map(Nm::from_m);
         let mut draft = Draft::default();
-        let sections = (1..=set.degree + 1)
+        let tapped = is_tapped(&set.order);
+        let sections = sections(&set.order, set.degree)
             .map(|k| Ok([value(section(k, "width"))?, value(section(k, "gap"))?, value(section(k, "length"))?]))
             .collect::<Result<Vec<_>, Problem>>()
             .map_err(|problem| vec![problem])?;
@@ -88,20 +102,21 @@ impl Structure for EdgeCoupled {
         let (first_feed, last_feed) = (feed(1)?, feed(2)?);
         let Some(first) = sections.first() else { return Err(Vec::new()) };
 
-        // The feed's upper edge, which faces the first gap, is in line with the first strip's.
-        let mut x = Nm::ZERO;
-        let mut low = first_feed.width - first[0];
-        let start = mouth(&mut draft, x, (Nm::ZERO, first_feed.width), false);
-        draft.launch(1, start, first_feed.launch, feeds::launch_names(&set.order, 1));
-        x = x + first_feed.length;
-        let mut arriving = mouth(&mut draft, x, (Nm::ZERO, first_feed.width), true);
-        draft.place(
-            Part::Lines { widths: vec![first_feed.width], gaps: vec![], length: first_feed.length },
-            vec![start, arriving],
-            feeds::line_names(1),
-        );
+        // The upper edge of the feed (or of a tapped resonator's free half), which faces the first gap, is in line with the first strip's.
+        let one = |problem: Problem| vec![problem];
+        let width = if tapped { taps::width(set, 1).map_err(one)? } else { first_feed.width };
+        let mut low = width - first[0];
+        let begin = mouth(&mut draft, Nm::ZERO, (Nm::ZERO, width), false);
+        let (start, mut arriving) = if tapped {
+            taps::begin(&mut draft, set, begin).map_err(one)?
+        } else {
+            draft.launch(1, begin, first_feed.launch, feeds::launch_names(&set.order, 1));
+            (begin, draft.strip(begin, first_feed.length, Way::Right, feeds::line_names(1)))
+        };
+        let mut x = draft.node(arriving).left.x;
+        let last_width = if tapped { taps::width(set, 2).map_err(one)? } else { last_feed.width };
         for (index, [width, gap, length]) in sections.iter().copied().enumerate() {
-            let k = index + 1;
+            let k = index + if tapped { 2 } else { 1 };
             let (lower, upper) = ((low, low + width), (low + width + gap, low + width + gap + width));
             let near = joined(&mut draft, arriving, x, lower);
             let far_x = x + length;
@@ -117,20 +132,21 @@ impl Structure for EdgeCoupled {
             draft.open(open_far);
             // Through a step the next strip keeps in line the edge whose neighbour would otherwise be touched: a wider one grows
             // away from the open end below it, a narrower one leaves the upper edge where the next open end faces it.
-            let next = sections.get(k).map_or(last_feed.width, |next| next[0]);
-            low = if k == sections.len() || width <= next { upper.0 } else { upper.1 - next };
+            let next = sections.get(index + 1).map_or(last_width, |next| next[0]);
+            low = if index + 1 == sections.len() || width <= next { upper.0 } else { upper.1 - next };
             (x, arriving) = (far_x, leaving);
         }
-        let near = joined(&mut draft, arriving, x, (low, low + last_feed.width));
-        let end = mouth(&mut draft, x + last_feed.length, (low, low + last_feed.width), true);
-        draft.place(
-            Part::Lines { widths: vec![last_feed.width], gaps: vec![], length: last_feed.length },
-            vec![near, end],
-            feeds::line_names(2),
-        );
-        draft.launch(2, end, last_feed.launch, feeds::launch_names(&set.order, 2));
+        let near = joined(&mut draft, arriving, x, (low, low + last_width));
+        let end = if tapped {
+            taps::end(&mut draft, set, near).map_err(one)?
+        } else {
+            let end = draft.strip(near, last_feed.length, Way::Right, feeds::line_names(2));
+            draft.launch(2, end, last_feed.launch, feeds::launch_names(&set.order, 2));
+            end
+        };
 
-        let mut layout = draft.finish([start, end], set.degree + 2);
+        // A tapped resonator is one piece with its port.
+        let mut layout = draft.finish([start, end], if tapped { set.degree } else { set.degree + 2 });
         if set.order.board.level {
             let (from, to) = (layout.nodes[start].middle(), layout.nodes[end].middle());
             layout.turn_deg = -(to.y - from.y).m().atan2((to.x - from.x).m()).to_degrees();
@@ -167,7 +183,26 @@ impl Family for EdgeCoupled {
         let resonator_ohm = own::number(order, KEYS, "resonator-impedance");
         let mut list = Vec::new();
         let mut problems = Vec::new();
-        for k in 1..=degree + 1 {
+        let tapped = is_tapped(order);
+        if tapped && degree < 2 {
+            return Err(vec![Problem::error(
+                "degree-below-tapped",
+                Place::Key("filter.degree".into()),
+                "tapped ports need a resonator each: degree 2 is the least",
+                "take degree = 2, or input = \"coupled\"",
+            )]);
+        }
+        let tap = |list: &mut Vec<Dimension>, problems: &mut Vec<Problem>, port: usize| {
+            let external_q = external_q(&g, fraction)[port - 1];
+            match (Tap { resonator_ohm, external_q, center_hz }).guess(order, &built, port) {
+                Ok(dimensions) => list.extend(dimensions),
+                Err(problem) => problems.push(problem),
+            }
+        };
+        if tapped {
+            tap(&mut list, &mut problems, 1);
+        }
+        for k in sections(order, degree) {
             let inverter = inverter(&g, k, fraction, resonator_ohm, order.filter.ports_ohm);
             let (even_ohm, odd_ohm) = impedances(inverter, resonator_ohm);
             match pair_for_impedances(&built, even_ohm, odd_ohm, center_hz) {
@@ -182,7 +217,13 @@ impl Family for EdgeCoupled {
                 )),
             }
         }
-        match feeds::guess(order, &built, own::number(order, KEYS, "feed-length"), center_hz) {
+        let mut feed_m = own::number(order, KEYS, "feed-length");
+        if tapped {
+            tap(&mut list, &mut problems, 2);
+            // A tapped feed runs past the free half before it is straight and alone.
+            feed_m += list.iter().find(|d| d.name.ends_with("outer length")).map_or(0.0, |d| d.value_m);
+        }
+        match feeds::guess(order, &built, feed_m, center_hz) {
             Ok(ports) => list.extend(ports),
             Err(found) => problems.extend(found),
         }
@@ -190,32 +231,53 @@ impl Family for EdgeCoupled {
     }
 
     fn knobs(&self, set: &Dimensions) -> Vec<Knob> {
-        let sections = set.degree + 1;
+        let count = set.degree + 1;
+        let tapped = is_tapped(&set.order);
         let symmetric = set.order.filter.ports_ohm[0] == set.order.filter.ports_ohm[1]
-            && (1..=sections).all(|k| {
-                ["width", "gap", "length"].iter().all(|what| set.value(&section(k, what)) == set.value(&section(sections + 1 - k, what)))
+            && (!tapped || taps::alike(set))
+            && sections(&set.order, set.degree).all(|k| {
+                ["width", "gap", "length"].iter().all(|what| set.value(&section(k, what)) == set.value(&section(count + 1 - k, what)))
             });
         let built = AsBuilt::nominal(&set.order).without_loss();
         let at = |k: usize, what: &str| set.list.iter().position(|d| d.name == section(k, what));
         let mirrored = |k: usize, count: usize| if symmetric && 2 * k != count + 1 { vec![k, count + 1 - k] } else { vec![k] };
         let distinct = |count: usize| if symmetric { count.div_ceil(2) } else { count };
+        let port_of = |k: usize| (tapped && (k == 1 || k == count)).then_some(if k == 1 { 1 } else { 2 });
         let mut knobs = Vec::new();
-        for k in 1..=distinct(sections) {
-            let (width_rate, gap_rate) = coupling_rates(set, &built, k);
-            let moves = mirrored(k, sections).into_iter().flat_map(|k| [(at(k, "width"), width_rate), (at(k, "gap"), gap_rate)]);
-            let moves = moves.filter_map(|(index, rate)| index.map(|i| (i, Moves::Relative(rate)))).collect();
+        for k in 1..=distinct(count) {
+            let moves = match port_of(k) {
+                Some(_) => mirrored(k, count).into_iter().filter_map(port_of).flat_map(|port| taps::coupling_moves(set, port)).collect(),
+                None => {
+                    let (width_rate, gap_rate) = coupling_rates(set, &built, k);
+                    let moves = mirrored(k, count).into_iter().flat_map(|k| [(at(k, "width"), width_rate), (at(k, "gap"), gap_rate)]);
+                    moves.filter_map(|(index, rate)| index.map(|i| (i, Moves::Relative(rate)))).collect()
+                }
+            };
             knobs.push(Knob { about: format!("coupling {k}"), is_resonator: false, moves, greatest_step: 0.2 });
         }
         for j in 1..=distinct(set.degree) {
-            // A section between two resonators is moved half by each, an end section by its only one.
-            let share = |k: usize| if k == 1 || k == sections { 1.0 } else { 0.5 };
-            let halves =
-                mirrored(j, set.degree).into_iter().flat_map(|j| [(at(j, "length"), share(j)), (at(j + 1, "length"), share(j + 1))]);
-            let moves = halves.filter_map(|(index, share)| index.map(|i| (i, Moves::Absolute(share * set.list[i].value_m)))).collect();
+            // A section between two resonators is moved half by each, an end section (or a free half) by its only one.
+            let half = |k: usize| match port_of(k) {
+                Some(port) => taps::tuning_move(set, port),
+                None => {
+                    let share = if k == 1 || k == count { 1.0 } else { 0.5 };
+                    at(k, "length").map(|i| (i, Moves::Absolute(share * set.list[i].value_m)))
+                }
+            };
+            let moves = mirrored(j, set.degree).into_iter().flat_map(|j| [half(j), half(j + 1)]).flatten().collect();
             knobs.push(Knob { about: format!("resonator {j}"), is_resonator: true, moves, greatest_step: 0.05 });
         }
         knobs
     }
+}
+
+fn is_tapped(order: &Order) -> bool {
+    own::word(order, KEYS, "input") == "tapped"
+}
+
+/// The coupled sections: all n+1, or those between resonators where the ports are tapped.
+fn sections(order: &Order, degree: usize) -> std::ops::RangeInclusive<usize> {
+    if is_tapped(order) { 2..=degree } else { 1..=degree + 1 }
 }
 
 fn section(k: usize, what: &str) -> String {
@@ -279,7 +341,7 @@ fn coupling_rates(set: &Dimensions, built: &AsBuilt, k: usize) -> (f64, f64) {
 
 fn mending(inverter: f64) -> String {
     if inverter > 0.2 {
-        "make the band narrower, the laminate thicker or of lower permittivity, raise filter.resonator-impedance, or tap the input (another family)".into()
+        "make the band narrower, the laminate thicker or of lower permittivity, raise filter.resonator-impedance, or set filter.input = \"tapped\"".into()
     } else {
         "make the band wider, the laminate thinner or of higher permittivity, or choose a family for narrow bands".into()
     }

@@ -2,7 +2,9 @@
 
 mod comb;
 mod combline;
+mod coupled_resonator_stop;
 mod edge_coupled;
+mod end_coupled;
 mod feeds;
 mod grounds;
 mod hairpin;
@@ -10,6 +12,8 @@ mod interdigital;
 mod own;
 mod probe;
 mod row;
+mod single_resonator;
+mod taps;
 mod target;
 
 pub use probe::{Aim, Drawing, Probe};
@@ -107,7 +111,15 @@ pub enum Moves {
 }
 
 /// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
-pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled, &interdigital::Interdigital, &hairpin::Hairpin, &combline::Combline];
+pub static FAMILIES: &[&dyn Family] = &[
+    &edge_coupled::EdgeCoupled,
+    &end_coupled::EndCoupled,
+    &hairpin::Hairpin,
+    &interdigital::Interdigital,
+    &combline::Combline,
+    &single_resonator::SingleResonator,
+    &coupled_resonator_stop::CoupledResonatorStop,
+];
 
 /// The family an order names.
 ///

@@ -20,8 +20,8 @@ pub(super) enum Block {
     OpenEnd { strip: usize },
     /// Series inductance either side of a shunt capacitance: a step, a corner.
     Ladder { first_h: f64, shunt_f: f64, second_h: f64 },
-    /// Capacitance to ground either side of one in series: a gap.
-    Gap { first_f: f64, series_f: f64, second_f: f64 },
+    /// Capacitance to ground either side of one in series: a gap; each end radiates as its strip's open end does.
+    Gap { strips: [usize; 2], first_f: f64, series_f: f64, second_f: f64 },
     /// N coupled strips, nodes near 1..N, far 1..N: index into the arrays.
     Array { array: usize, length_m: f64 },
     /// The point where the arms of a tee or a cross meet: index into the junctions.
@@ -54,10 +54,10 @@ pub(super) fn ladder_s([first_h, shunt_f, second_h]: [f64; 3], f_hz: f64) -> [Co
     [(a + b - c - d) * inverse, through, through, (d + b - c - a) * inverse]
 }
 
-/// Capacitances to ground either side of one in series, between the inner reference impedance.
-pub(super) fn gap_s([first_f, series_f, second_f]: [f64; 3], f_hz: f64) -> [Complex64; 4] {
-    let b = |farad: f64| Complex64::new(0.0, std::f64::consts::TAU * f_hz * farad * INNER_OHM);
-    let (y1, y, y2) = (b(first_f), b(series_f), b(second_f));
+/// Capacitances to ground either side of one in series, conductances beside the outer ones, between the inner reference impedance.
+pub(super) fn gap_s([first_f, series_f, second_f]: [f64; 3], ends_s: [f64; 2], f_hz: f64) -> [Complex64; 4] {
+    let y = |farad: f64, siemens: f64| Complex64::new(siemens, std::f64::consts::TAU * f_hz * farad) * INNER_OHM;
+    let (y1, y, y2) = (y(first_f, ends_s[0]), y(series_f, 0.0), y(second_f, ends_s[1]));
     let (y11, y22) = (y1 + y, y2 + y);
     let inverse = ((1.0 + y11) * (1.0 + y22) - y * y).inv();
     let through = 2.0 * y * inverse;
@@ -101,7 +101,7 @@ mod tests {
     #[test]
     fn lossless_blocks_are_unitary() {
         assert_unitary(&ladder_s([0.3e-9, 0.2e-12, 0.1e-9], 5e9), 2);
-        assert_unitary(&gap_s([0.05e-12, 0.02e-12, 0.01e-12], 5e9), 2);
+        assert_unitary(&gap_s([0.05e-12, 0.02e-12, 0.01e-12], [0.0; 2], 5e9), 2);
         assert!((ground_s(0.1e-9, 0.0, 5e9).norm() - 1.0).abs() < 1e-15);
         let mut s = vec![Complex64::ZERO; 9];
         junction_s(&[0.9, 0.95, 1.0], 0.003, &mut s);
@@ -111,9 +111,9 @@ mod tests {
     #[test]
     fn gap_blocks_and_a_closed_gap_passes() {
         // No series capacitance: both ends are open; a very great one: a thru.
-        let open = gap_s([0.0, 0.0, 0.0], 1e9);
+        let open = gap_s([0.0, 0.0, 0.0], [0.0; 2], 1e9);
         assert!((open[0] - 1.0).norm() < 1e-15 && open[1].norm() < 1e-15);
-        let closed = gap_s([0.0, 1.0, 0.0], 1e9);
+        let closed = gap_s([0.0, 1.0, 0.0], [0.0; 2], 1e9);
         assert!(closed[0].norm() < 1e-9 && (closed[1] - 1.0).norm() < 1e-9);
     }
 }

@@ -51,7 +51,7 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
     let mut without_geometry = 0;
     for degree in least..=most {
         if let Some(miss) = hopeless(order, &family.target(order, degree)) {
-            misses.push(Miss { degree, falls_short: true, why: miss });
+            misses.push(Miss { degree, falls_short: true, why: miss, mend: None });
             continue;
         }
         let tried = family.first_guess(order, degree).and_then(|(guess, _)| refine(family, &guess));
@@ -62,8 +62,9 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
                 if problems.iter().any(|p| p.code == "impedance-out-of-reach" || p.code == "band-not-of-the-family") {
                     return Err(problems);
                 }
-                let first = problems.first().map_or_else(String::new, |p| p.message.clone());
-                misses.push(Miss { degree, falls_short: false, why: first });
+                let first = problems.into_iter().next();
+                let (why, mend) = first.map_or_else(Default::default, |p| (p.message, Some(p.help)));
+                misses.push(Miss { degree, falls_short: false, why, mend });
                 without_geometry += 1;
                 if without_geometry == MOST_WITHOUT_GEOMETRY {
                     break;
@@ -77,7 +78,7 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
         }
         let worst = |falls_short: bool| {
             let of_kind = figures.verdicts.iter().filter(|v| !v.is_met() && rejects(&v.limit) == falls_short);
-            of_kind.min_by(|a, b| a.margin.total_cmp(&b.margin)).map(|v| Miss { degree, falls_short, why: v.describe() })
+            of_kind.min_by(|a, b| a.margin.total_cmp(&b.margin)).map(|v| Miss { degree, falls_short, why: v.describe(), mend: None })
         };
         misses.extend(worst(true));
         // Loss grows with the degree: once it fails, no greater degree can do better.
@@ -132,6 +133,8 @@ struct Miss {
     /// It rejects too little; otherwise it loses or reflects too much, or has no geometry.
     falls_short: bool,
     why: String,
+    /// What would make a geometry possible.
+    mend: Option<String>,
 }
 
 /// Names the greatest degree that rejects too little, and the first that fails otherwise.
@@ -139,10 +142,13 @@ fn out_of_reach(misses: &[Miss]) -> Problem {
     let short = misses.iter().rev().find(|m| m.falls_short);
     let otherwise = misses.iter().find(|m| !m.falls_short);
     let shown: Vec<String> = short.into_iter().chain(otherwise).map(|m| format!("degree {}: {}", m.degree, m.why)).collect();
+    let mend = otherwise.and_then(|miss| miss.mend.as_ref()).map_or_else(String::new, |mend| format!("; or {mend}"));
     Problem::error(
         "degree-out-of-reach",
         Place::Key("filter.degree".into()),
         format!("no degree meets the requirements (loss grows with the degree, rejection shrinks without). {}", shown.join("; ")),
-        "allow more insertion loss or less rejection, move the stopband away from the passband and from the spurious passbands near two and three times it, or choose a laminate with less loss",
+        format!(
+            "allow more insertion loss or less rejection, move the stopband away from the passband and from the spurious passbands near two and three times it, or choose a laminate with less loss{mend}"
+        ),
     )
 }

@@ -4,6 +4,7 @@ mod degree;
 mod least_squares;
 mod passband;
 mod probe;
+mod sensitivity;
 
 use crate::base::Nm;
 use crate::base::Place;
@@ -23,14 +24,18 @@ use least_squares::minimize;
 use num_complex::Complex64;
 pub use passband::{Miss, Passband};
 pub use probe::ProbeCurve;
+pub use sensitivity::{Sensitivities, Shift, sensitivities};
 
 /// Iterations of the first stage, which fits the characteristic function over the band to the prototype's.
 const FIT_ITERATIONS: usize = 25;
 /// Iterations of one round of the second stage, which levels the ripple.
 const LEVEL_ITERATIONS: usize = 8;
-/// Before the stages: the passband is looked for this far to either side of the centre, at so many points, and moved so many times.
+/// Before the stages: the passband is looked for this far to either side of the centre, at so many points (more, up to the greatest number,
+/// where a band is so narrow that it would slip between them), and moved so many times.
 const ALIGN_REACH: f64 = 0.25;
 const ALIGN_POINTS: usize = 201;
+const ALIGN_POINTS_PER_BAND: f64 = 4.0;
+const ALIGN_POINTS_AT_MOST: usize = 20_001;
 const ALIGN_STEPS: usize = 3;
 /// Rounds of both stages.
 const ROUNDS: usize = 4;
@@ -41,6 +46,8 @@ const SAMPLE_REACH: f64 = 0.125;
 const KNOB_STEP: f64 = 1e-3;
 /// A tenth of what is allowed: nothing that can be etched is gained by more.
 const ENOUGH: f64 = 0.1;
+/// Reflections of the two ports of a symmetric circuit differ by rounding only.
+const ALIKE: f64 = 1e-6;
 /// A neighbour on the grid is worth taking from this gain on, in parts of the allowed miss.
 const LEAST_GAIN: f64 = 2e-3;
 /// Passes over all dimensions that try their neighbours on the grid.
@@ -170,7 +177,7 @@ impl Search<'_> {
         self.align(&mut x);
         let aligned = x.clone();
         let ports = self.guess.order.filter.ports_ohm;
-        let mut measure = if ports[0] == ports[1] { Measure::Signed } else { Measure::Squared };
+        let mut measure = if ports[0] == ports[1] && self.is_symmetric(&x) { Measure::Signed } else { Measure::Squared };
         for round in 0..ROUNDS {
             if round == 0 || best.0 > 1.0 {
                 x.copy_from_slice(&aligned);
@@ -187,6 +194,12 @@ impl Search<'_> {
         best.1
     }
 
+    /// Whether both ports see the same, so that K has a sign.
+    fn is_symmetric(&self, x: &[f64]) -> bool {
+        let at_hz: Vec<f64> = self.goal.edges_hz.iter().map(|edge| edge * (1.0 + 1.0 / 64.0)).collect();
+        self.circuit(x).is_some_and(|circuit| circuit.sweep(&at_hz).s.iter().all(|[s11, .., s22]| (s11 - s22).norm() < ALIKE))
+    }
+
     fn keep(&self, x: &[f64], best: &mut (f64, Vec<f64>)) {
         let ratio = self.circuit(x).and_then(|c| Passband::of(&c, &self.goal)).map(|p| Miss::of(&p, &self.goal).worst_ratio);
         if let Some(ratio) = ratio.filter(|ratio| *ratio < best.0) {
@@ -194,18 +207,21 @@ impl Search<'_> {
         }
     }
 
-    /// Turns all resonators together until the passband lies about the ordered centre, so that the fit begins with its samples in the band.
+    /// Turns all resonators together until the passband (or the stopband between two) lies about the ordered centre, so that the fit begins
+    /// with its samples in the band.
     fn align(&self, x: &mut [f64]) {
         let [from_hz, to_hz] = match self.goal.edges_hz[..] {
-            [from_hz, to_hz] if self.goal.passes_hz.len() == 1 && to_hz - from_hz < ALIGN_REACH * (from_hz + to_hz) => [from_hz, to_hz],
+            [from_hz, to_hz] if to_hz - from_hz < ALIGN_REACH * (from_hz + to_hz) => [from_hz, to_hz],
             _ => return self.align_edges(x),
         };
+        let parameter = if self.goal.passes_hz.len() == 1 { 1 } else { 0 };
         let center_hz = 0.5 * (from_hz + to_hz);
-        let f: Vec<f64> =
-            (0..ALIGN_POINTS).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (ALIGN_POINTS - 1) as f64 - 1.0))).collect();
+        let wanted = 2.0 * ALIGN_REACH * center_hz / (to_hz - from_hz) * ALIGN_POINTS_PER_BAND;
+        let points = (wanted.ceil() as usize).clamp(ALIGN_POINTS, ALIGN_POINTS_AT_MOST);
+        let f: Vec<f64> = (0..points).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (points - 1) as f64 - 1.0))).collect();
         for _ in 0..ALIGN_STEPS {
             let Some(circuit) = self.circuit(x) else { return };
-            let weights: Vec<f64> = circuit.sweep(&f).s.iter().map(|s| s[1].norm_sqr().powi(2)).collect();
+            let weights: Vec<f64> = circuit.sweep(&f).s.iter().map(|s| s[parameter].norm_sqr().powi(2)).collect();
             let found_hz = f.iter().zip(&weights).map(|(f, w)| f * w).sum::<f64>() / weights.iter().sum::<f64>();
             if !found_hz.is_finite() {
                 return;
@@ -291,8 +307,6 @@ enum Measure {
 
 /// K = S11/S21 of a lossless reciprocal two-port over j: real, and with a sign, where the two-port is symmetric; elsewhere its magnitude counts.
 fn characteristic([s11, s21, _, s22]: &[Complex64; 4]) -> f64 {
-    /// Reflections of a symmetric circuit differ by rounding only.
-    const ALIKE: f64 = 1e-6;
     let k = if (s11 - s22).norm() < ALIKE { (s11 * s21.conj()).im } else { s11.norm() * s21.norm() };
     k / s21.norm_sqr().max(f64::MIN_POSITIVE)
 }

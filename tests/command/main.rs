@@ -1,6 +1,7 @@
 //! What a user meets: messages, exit codes, files.
 #![allow(clippy::unwrap_used, clippy::expect_used, clippy::panic, missing_docs)]
 
+mod advice;
 mod class_file;
 mod commands;
 mod dimension_file;
