@@ -6,6 +6,37 @@ use crate::{STARTER, changed, read_text};
 type Case = (&'static str, &'static str, &'static str, &'static str, &'static [&'static str]);
 
 const CASES: &[Case] = &[
+    // The hand-off.
+    (
+        "margin = \"8 mm\"",
+        "thickness = \"1.6 mm\"\nmargin = \"8 mm\"",
+        "\"1.6 mm\"",
+        "thickness-contradicts-stack",
+        &["board.thickness", "together are 0.848 mm", "thickness = \"0.848 mm\""],
+    ),
+    (
+        "margin = \"8 mm\"",
+        "ground = \"carrier\"\nmargin = \"8 mm\"",
+        "\"carrier\"",
+        "launch-without-ground",
+        &["edge-coax-pin-1.27mm", "launch = \"pads\""],
+    ),
+    ("margin = \"8 mm\"", "grain = \"sideways\"\nmargin = \"8 mm\"", "\"sideways\"", "word-unknown", &["board.grain", "along-ports"]),
+    ("revision = \"A\"", "revision = \"A\"\npaper = \"a3\"", "\"a3\"", "word-unknown", &["order.paper", "letter"]),
+    (
+        "# [housing]",
+        "[[board.slot]]\nfrom = [\"9 mm\", \"3 mm\"]\nto = [\"9 mm\", \"3 mm\"]\nwidth = \"1 mm\"\n# [housing]",
+        "[\"9 mm\", \"3 mm\"]\nwidth",
+        "edges-reversed",
+        &["the slot is a hole"],
+    ),
+    (
+        "# [housing]",
+        "[[board.below]]\nmaterial = \"core\"\npermittivity = 4.3\n# [housing]",
+        "[[board.below]]",
+        "key-missing",
+        &["has no key \"thickness\""],
+    ),
     // Keys.
     (
         "passband = [",
@@ -270,7 +301,7 @@ fn each_mistake_is_found_where_it_stands_with_a_help_that_would_mend_it() {
         }
     }
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
-    assert_eq!(CASES.len(), 89, "the number of kinds that ran");
+    assert_eq!(CASES.len(), 95, "the number of kinds that ran");
 }
 
 #[test]
