@@ -66,7 +66,7 @@ struct Now {
 /// Where arms meet.
 enum Junction {
     Tee(Tee),
-    Cross(Cross),
+    Cross(Box<Cross>),
 }
 
 /// A junction at a frequency: what each arm takes out of its strip's length, its transformer, the susceptance where they meet.
@@ -204,7 +204,13 @@ impl Circuit {
             Part::Cross => {
                 // Round the crossing: through, side, through, side.
                 let arms = [0, 2, 1, 3].map(|arm| book.strip(width(arm)));
-                return self.junction(book, layout, Junction::Cross(cross([&arms[0], &arms[1], &arms[2], &arms[3]])), nodes, joints);
+                return self.junction(
+                    book,
+                    layout,
+                    Junction::Cross(Box::new(cross([&arms[0], &arms[1], &arms[2], &arms[3]]))),
+                    nodes,
+                    joints,
+                );
             }
             Part::Via { diameter, count, pitch, .. } => {
                 let plating_m = book.built().hole_plating_m;
