@@ -315,8 +315,6 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         plating: plating_of(&laminate.finish),
         hole_plating_m: 25e-6,
         lid_m: arguments.lid,
-        walls_m: None,
-        coat: None,
         widening_m: 0.0,
         lossless: false,
         statics: StaticsModel::Numerical,

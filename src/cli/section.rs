@@ -271,8 +271,6 @@ impl Dispersive {
             plating: None,
             hole_plating_m: 25e-6,
             lid_m: section.housing.lid_m,
-            walls_m: None,
-            coat: None,
             widening_m: 0.0,
             lossless: true,
             statics: StaticsModel::Numerical,

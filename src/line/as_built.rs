@@ -1,6 +1,5 @@
 //! What the laminate and copper really are: the one place where nominal, toleranced and measured boards differ.
 
-use super::section::CoatOf;
 use super::section::Plating;
 use super::section::Roughness;
 use crate::order::Order;
@@ -46,10 +45,6 @@ pub struct AsBuilt {
     pub hole_plating_m: f64,
     /// Lid above the laminate surface.
     pub lid_m: Option<f64>,
-    /// Distance of the housing's side walls from each other, the strips midway; `None` also where they are too far away to matter.
-    pub walls_m: Option<f64>,
-    /// Solder mask over the strips.
-    pub coat: Option<CoatOf>,
     /// Added to every strip's drawn width (and taken from every gap): etch error of the batch.
     pub widening_m: f64,
     /// Without loss of any kind (conductor, dielectric, radiation); for synthesis against the lossless prototype.
@@ -75,8 +70,6 @@ impl AsBuilt {
             plating: plating_of(&laminate.finish),
             hole_plating_m: order.laminate.copper.plating_m,
             lid_m: order.housing.and_then(|housing| housing.lid_m),
-            walls_m: None,
-            coat: None,
             widening_m: 0.0,
             lossless: false,
             statics: StaticsModel::Numerical,
@@ -130,8 +123,6 @@ impl AsBuilt {
             plating: None,
             hole_plating_m: 25e-6,
             lid_m: None,
-            walls_m: None,
-            coat: None,
             widening_m: 0.0,
             lossless: false,
             statics: StaticsModel::ClosedForm,

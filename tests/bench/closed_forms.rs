@@ -20,8 +20,6 @@ fn board(permittivity: f64, thickness: f64, statics: StaticsModel) -> AsBuilt {
         conductivity_s_per_m: 5.8e7,
         plating: None,
         lid_m: None,
-        walls_m: None,
-        coat: None,
         widening_m: 0.0,
         lossless: true,
         statics,

@@ -29,8 +29,6 @@ fn board() -> AsBuilt {
         plating: None,
         hole_plating_m: 25e-6,
         lid_m: None,
-        walls_m: None,
-        coat: None,
         widening_m: 0.0,
         lossless: false,
         statics: StaticsModel::Numerical,

@@ -65,8 +65,6 @@ pub fn thick(er: f64, h_m: f64, t_m: f64) -> AsBuilt {
         conductivity_s_per_m: 5.8e7,
         plating: None,
         lid_m: None,
-        walls_m: None,
-        coat: None,
         widening_m: 0.0,
         lossless: true,
         statics: StaticsModel::ClosedForm,
