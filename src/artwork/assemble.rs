@@ -13,6 +13,7 @@ use crate::artwork::Role;
 use crate::artwork::Shape;
 use crate::artwork::Slot;
 use crate::artwork::callout::callouts;
+use crate::artwork::copper;
 use crate::artwork::frame::Seat;
 use crate::artwork::frame::Turn;
 use crate::artwork::frame::quarters;
@@ -27,7 +28,6 @@ use crate::artwork::outline;
 use crate::artwork::shape::Piece;
 use crate::artwork::shape::Region;
 use crate::artwork::shape::Ring;
-use crate::artwork::shape::between_mouths;
 use crate::artwork::shape::bounds;
 use crate::artwork::shape::disc;
 use crate::artwork::shape::rectangle;
@@ -52,6 +52,7 @@ pub(super) struct Placed {
     planes: [Node; 2],
     pub mouths: [Mouth; 2],
     pub shapes: [LaunchShape; 2],
+    holes: Vec<copper::PartHole>,
     turn: Turn,
     angle_deg: f64,
 }
@@ -99,6 +100,13 @@ pub fn board(order: &Order, layout: &Layout) -> Outcome<Board> {
     let signal = circuit.union(&Region::union_of(&joined));
 
     let mut holes: Vec<Hole> = launches.iter().flat_map(|launch| launch.holes.iter().cloned()).collect();
+    holes.extend(placed.holes.iter().map(|hole| Hole {
+        at: seat.point(hole.at),
+        diameter: hole.diameter,
+        pad: hole.pad,
+        purpose: HoleUse::Via,
+        net: nets::GROUND.to_string(),
+    }));
     holes.extend(mounting_holes(order, size, &mut problems));
     let slots = ground::slots(order);
     problems.extend(slots_off_the_board(order, &slots, size));
@@ -214,22 +222,13 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
         |what: String| vec![Problem::error("layout-incomplete", Place::Whole, what, "the layout must name its nodes and two ports")];
     let node = |i: usize| layout.nodes.get(i).copied().ok_or_else(|| incomplete(format!("a part names node {i}, and there is none")));
     let mut rings = Vec::new();
+    let mut holes = Vec::new();
     for placed in &layout.parts {
-        match &placed.part {
-            Part::Lines { widths, .. } => {
-                let n = widths.len();
-                if placed.nodes.len() != 2 * n {
-                    return Err(incomplete(format!("{n} coupled strips have {} nodes, not {}", placed.nodes.len(), 2 * n)));
-                }
-                let (near, far) = placed.nodes.split_at(n);
-                for (&a, &b) in near.iter().zip(far) {
-                    let (a, b) = (node(a)?, node(b)?);
-                    rings.push(between_mouths([a.left, a.right], [b.left, b.right]));
-                }
-            }
-            // No length of their own: their copper lies within the strips they join, or is the launch's.
-            Part::OpenEnd | Part::Step | Part::Launch { .. } => {}
-        }
+        let nodes = placed.nodes.iter().map(|&i| node(i)).collect::<Result<Vec<Node>, _>>()?;
+        let drawn = copper::rings(&placed.part, &nodes)
+            .ok_or_else(|| incomplete(format!("a part has {} nodes, which is not what it joins: {:?}", nodes.len(), placed.part)))?;
+        rings.extend(drawn);
+        holes.extend(copper::holes(&placed.part, &nodes));
     }
     let [first, second] = layout.ports[..] else {
         return Err(incomplete(format!("{} ports, not two", layout.ports.len())));
@@ -244,9 +243,19 @@ fn place(order: &Order, layout: &Layout) -> Result<Placed, Vec<Problem>> {
     let angle_deg = if layout.turn_deg == 0.0 && order.board.level { level_deg(nodes) } else { layout.turn_deg };
     let turn = Turn::by(angle_deg.to_radians());
     let circuit = if angle_deg == 0.0 { circuit } else { circuit.mapped(|p| turn.point(p)) };
+    let holes = holes.into_iter().map(|hole| copper::PartHole { at: turn.point(hole.at), ..hole }).collect();
     let planes = nodes.map(|node| turn.node(node));
     let (one, other) = (launch::square_mouth(planes[0], -1), launch::square_mouth(planes[1], 1));
-    Ok(Placed { circuit, bends: one.1.into_iter().chain(other.1).collect(), planes, mouths: [one.0, other.0], shapes, turn, angle_deg })
+    Ok(Placed {
+        circuit,
+        bends: one.1.into_iter().chain(other.1).collect(),
+        planes,
+        mouths: [one.0, other.0],
+        shapes,
+        holes,
+        turn,
+        angle_deg,
+    })
 }
 
 /// The turn that brings both ports to one height.

@@ -4,6 +4,7 @@ mod assemble;
 mod board;
 mod callout;
 mod compensate;
+mod copper;
 mod frame;
 mod ground;
 mod launch;

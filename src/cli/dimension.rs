@@ -8,7 +8,10 @@ use super::fresh_file;
 use super::read::Ordered;
 use super::results;
 use super::table;
+use crate::base::Problem;
 use crate::dimensions;
+use crate::line::Models;
+use crate::network;
 use crate::refine::Chosen;
 
 /// Synthesizes the dimension set of an order: each value with its first guess, the electrical target it serves and every correction
@@ -30,6 +33,10 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
         Ok(chosen) => chosen,
         Err(problems) => return ordered.refuse(&problems, voice),
     };
+    let models = match line_models(&chosen) {
+        Ok(models) => models,
+        Err(problems) => return ordered.refuse(&problems, voice),
+    };
     let text = dimensions::write(&chosen.refined.dimensions);
     let written = match &arguments.file {
         Some(path) => {
@@ -39,11 +46,19 @@ pub fn run(arguments: &Arguments, voice: Voice) -> Ending {
             voice.say(&format!("wrote {}", path.display()));
             Ending::Done
         }
-        None if voice.json => table::print_json(&json(&chosen)),
+        None if voice.json => table::print_json(&json(&chosen, &models)),
         None => results(&text),
     };
     say_reached(&chosen, voice);
+    voice.say(table::models_text(&models).trim());
     written
+}
+
+/// What gave the line constants of the chosen dimensions.
+fn line_models(chosen: &Chosen) -> Result<Models, Vec<Problem>> {
+    let set = &chosen.refined.dimensions;
+    let family = crate::family::of(&set.order).map_err(|problem| vec![problem])?;
+    network::models(&set.order, &family.layout(set)?)
 }
 
 /// One line each on the degree, on what refinement reached and on what the grid left.
@@ -51,17 +66,14 @@ pub fn say_reached(chosen: &Chosen, voice: Voice) {
     if let Some(reason) = &chosen.reason {
         voice.say(reason);
     }
-    let line = |miss: &crate::refine::Miss| {
-        // Rounded first: nobody wants to read -0.00.
-        let shown = |v: f64| (v * 100.0).round() / 100.0 + 0.0;
-        let [low, high] = miss.edges_hz.map(|e| shown(e / 1e6));
-        format!("edges {low:+.2} and {high:+.2} MHz, return loss {:+.2} dB from the prototype's", shown(miss.return_loss_db))
-    };
-    voice.say(&format!("refined: lossless {}", line(&chosen.refined.before_snapping)));
-    voice.say(&format!("on the shop grid: lossless {}", line(&chosen.refined.after_snapping)));
+    for curve in &chosen.refined.curves {
+        voice.say(&curve.describe());
+    }
+    voice.say(&format!("refined: lossless {}", chosen.refined.before_snapping.describe()));
+    voice.say(&format!("on the shop grid: lossless {}", chosen.refined.after_snapping.describe()));
 }
 
-fn json(chosen: &Chosen) -> serde_json::Value {
+fn json(chosen: &Chosen, models: &Models) -> serde_json::Value {
     let miss = |m: &crate::refine::Miss| serde_json::json!({ "edges_hz": m.edges_hz, "return_loss_db": m.return_loss_db });
     let set = &chosen.refined.dimensions;
     let list: Vec<_> = set
@@ -75,6 +87,16 @@ fn json(chosen: &Chosen) -> serde_json::Value {
         .collect();
     serde_json::json!({
         "name": set.order.name, "degree": set.degree, "reason": chosen.reason,
+        "measured": chosen.refined.curves.iter().map(curve_json).collect::<Vec<_>>(),
         "before_snapping": miss(&chosen.refined.before_snapping), "after_snapping": miss(&chosen.refined.after_snapping), "dimensions": list,
+        "line_models": table::models_json(models),
+    })
+}
+
+/// What was measured on a part of the circuit over one dimension.
+fn curve_json(curve: &crate::refine::ProbeCurve) -> serde_json::Value {
+    let points: Vec<_> = curve.points.iter().map(|(value_m, measured)| [*value_m, *measured]).collect();
+    serde_json::json!({
+        "about": curve.about, "dimension": curve.dimension, "aim": curve.aim, "found_m": curve.found_m, "value_m_and_measured": points,
     })
 }

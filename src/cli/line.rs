@@ -36,6 +36,8 @@ use crate::order::nearest;
 
 /// Where losses are given when no frequency is asked for; said in the output.
 const LOSS_FREQUENCY_HZ: f64 = 1e9;
+/// Couplings below this are nothing to compare with.
+const LEAST_COUPLING: f64 = 1e-6;
 /// Decibel per neper.
 pub(super) const DB_PER_NP: f64 = 20.0 * std::f64::consts::LOG10_E;
 
@@ -307,9 +309,14 @@ fn board(arguments: &Arguments) -> Result<AsBuilt, Vec<Problem>> {
         copper_thickness_m: arguments.copper.unwrap_or(laminate.copper.finished_m()),
         undercut_m: arguments.undercut,
         roughness_m: arguments.roughness.unwrap_or(laminate.copper.roughness_m),
+        // A roughness given as Rq asks for the law that takes it.
+        ten_point_height_m: if arguments.roughness.is_some() { None } else { laminate.copper.ten_point_height_m() },
         conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
         plating: plating_of(&laminate.finish),
+        hole_plating_m: 25e-6,
         lid_m: arguments.lid,
+        walls_m: None,
+        coat: None,
         widening_m: 0.0,
         lossless: false,
         statics: StaticsModel::Numerical,
@@ -424,7 +431,10 @@ pub(super) fn closed_form_lines(solved: &[(&str, [f64; 2])], closed: &[[f64; 2]]
         });
         of_modes.insert(name.to_owned(), of_mode);
     }
-    if let ([(_, [even, _]), (_, [odd, _])], [[closed_even, _], [closed_odd, _]]) = (solved, closed) {
+    // A coupling below the solver's rounding says nothing.
+    if let ([(_, [even, _]), (_, [odd, _])], [[closed_even, _], [closed_odd, _]]) = (solved, closed)
+        && coupling([*even, *odd]) > LEAST_COUPLING
+    {
         let by = coupling([*closed_even, *closed_odd]) / coupling([*even, *odd]) - 1.0;
         parts.push(format!("coupling {:+.2} %", 100.0 * by));
         of_modes.insert("coupling_relative_difference".to_owned(), json!(by));

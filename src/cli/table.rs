@@ -23,11 +23,12 @@ fn ghz(f_hz: f64) -> String {
     format!("{:.4} GHz", f_hz / 1e9)
 }
 
-fn band(edges: Option<[f64; 2]>) -> String {
-    edges.map_or_else(
-        || "not within the sweep".into(),
-        |[low, high]| format!("{} to {}  ({:.1} MHz)", ghz(low), ghz(high), (high - low) / 1e6),
-    )
+fn edges(edges_hz: &[f64]) -> String {
+    match edges_hz {
+        [low, high] => format!("{} to {}  ({:.1} MHz)", ghz(*low), ghz(*high), (high - low) / 1e6),
+        [edge] => ghz(*edge),
+        _ => "-".into(),
+    }
 }
 
 /// The figures and a verdict for each requirement, as text.
@@ -48,8 +49,8 @@ pub fn figures_text(order: &Order, figures: &Figures) -> String {
         ("loss at the centre", format!("{:.2} dB", figures.center_loss_db)),
         ("worst loss in the band", format!("{:.2} dB", figures.worst_loss_db)),
         ("least return loss in the band", format!("{:.2} dB", figures.return_loss_db)),
-        ("3 dB edges", band(figures.edges_3db_hz)),
-        ("return loss of the prototype", figures.ripple_edges_hz.map_or_else(|| "-".into(), |e| band(Some(e)))),
+        ("3 dB edges", edges(&figures.edges_3db_hz)),
+        ("return loss of the prototype", edges(&figures.ripple_edges_hz)),
         ("group delay at the centre", format!("{:.3} ns", figures.group_delay_s * 1e9)),
         ("nearest spurious passband", figures.spurious_hz.map_or_else(|| "none within the sweep".into(), ghz)),
     ];

@@ -13,6 +13,7 @@ use super::Knob;
 use super::Moves;
 use super::Structure;
 use super::feeds;
+use super::own;
 use crate::base::Dimensionality;
 use crate::base::Nm;
 use crate::base::Outcome;
@@ -21,10 +22,9 @@ use crate::base::Point;
 use crate::base::Problem;
 use crate::dimensions::Dimension;
 use crate::dimensions::Dimensions;
+use crate::layout::Draft;
 use crate::layout::Layout;
-use crate::layout::Node;
 use crate::layout::Part;
-use crate::layout::Placed;
 use crate::line::AsBuilt;
 use crate::line::C_M_PER_S;
 use crate::line::Pair;
@@ -35,7 +35,6 @@ use crate::order::Band;
 use crate::order::Key;
 use crate::order::Order;
 use crate::order::OwnKind;
-use crate::order::OwnValue;
 use crate::order::Passes;
 use crate::prototype::ladder;
 
@@ -80,7 +79,7 @@ impl Structure for EdgeCoupled {
 
     fn layout(&self, set: &Dimensions) -> Result<Layout, Vec<Problem>> {
         let value = |name: String| set.value(&name).map(Nm::from_m);
-        let mut build = Builder::default();
+        let mut draft = Draft::default();
         let sections = (1..=set.degree + 1)
             .map(|k| Ok([value(section(k, "width"))?, value(section(k, "gap"))?, value(section(k, "length"))?]))
             .collect::<Result<Vec<_>, Problem>>()
@@ -92,11 +91,11 @@ impl Structure for EdgeCoupled {
         // The feed's upper edge, which faces the first gap, is in line with the first strip's.
         let mut x = Nm::ZERO;
         let mut low = first_feed.width - first[0];
-        let start = build.mouth(x, Nm::ZERO, first_feed.width, false);
-        build.place(Part::Launch { port: 1, shape: first_feed.launch, run: Nm::ZERO }, vec![start], feeds::launch_names(&set.order, 1));
+        let start = mouth(&mut draft, x, (Nm::ZERO, first_feed.width), false);
+        draft.launch(1, start, first_feed.launch, feeds::launch_names(&set.order, 1));
         x = x + first_feed.length;
-        let mut arriving = build.mouth(x, Nm::ZERO, first_feed.width, true);
-        build.place(
+        let mut arriving = mouth(&mut draft, x, (Nm::ZERO, first_feed.width), true);
+        draft.place(
             Part::Lines { widths: vec![first_feed.width], gaps: vec![], length: first_feed.length },
             vec![start, arriving],
             feeds::line_names(1),
@@ -104,35 +103,34 @@ impl Structure for EdgeCoupled {
         for (index, [width, gap, length]) in sections.iter().copied().enumerate() {
             let k = index + 1;
             let (lower, upper) = ((low, low + width), (low + width + gap, low + width + gap + width));
-            let near = build.joined(arriving, x, lower);
+            let near = joined(&mut draft, arriving, x, lower);
             let far_x = x + length;
-            let open_near = build.mouth(x, upper.0, upper.1, false);
-            let open_far = build.mouth(far_x, lower.0, lower.1, true);
-            let leaving = build.mouth(far_x, upper.0, upper.1, true);
-            build.place(
+            let open_near = mouth(&mut draft, x, upper, false);
+            let open_far = mouth(&mut draft, far_x, lower, true);
+            let leaving = mouth(&mut draft, far_x, upper, true);
+            draft.place(
                 Part::Lines { widths: vec![width, width], gaps: vec![gap], length },
                 vec![near, open_near, open_far, leaving],
                 ["width", "gap", "length"].map(|what| section(k, what)).to_vec(),
             );
-            build.place(Part::OpenEnd, vec![open_near], vec![]);
-            build.place(Part::OpenEnd, vec![open_far], vec![]);
+            draft.open(open_near);
+            draft.open(open_far);
             // Through a step the next strip keeps in line the edge whose neighbour would otherwise be touched: a wider one grows
             // away from the open end below it, a narrower one leaves the upper edge where the next open end faces it.
             let next = sections.get(k).map_or(last_feed.width, |next| next[0]);
             low = if k == sections.len() || width <= next { upper.0 } else { upper.1 - next };
             (x, arriving) = (far_x, leaving);
         }
-        let near = build.joined(arriving, x, (low, low + last_feed.width));
-        let end = build.mouth(x + last_feed.length, low, low + last_feed.width, true);
-        build.place(
+        let near = joined(&mut draft, arriving, x, (low, low + last_feed.width));
+        let end = mouth(&mut draft, x + last_feed.length, (low, low + last_feed.width), true);
+        draft.place(
             Part::Lines { widths: vec![last_feed.width], gaps: vec![], length: last_feed.length },
             vec![near, end],
             feeds::line_names(2),
         );
-        build.place(Part::Launch { port: 2, shape: last_feed.launch, run: Nm::ZERO }, vec![end], feeds::launch_names(&set.order, 2));
+        draft.launch(2, end, last_feed.launch, feeds::launch_names(&set.order, 2));
 
-        let mut layout =
-            Layout { nodes: build.nodes, parts: build.parts, ports: vec![start, end], turn_deg: 0.0, expected_nets: set.degree + 2 };
+        let mut layout = draft.finish([start, end], set.degree + 2);
         if set.order.board.level {
             let (from, to) = (layout.nodes[start].middle(), layout.nodes[end].middle());
             layout.turn_deg = -(to.y - from.y).m().atan2((to.x - from.x).m()).to_degrees();
@@ -166,7 +164,7 @@ impl Family for EdgeCoupled {
         let built = AsBuilt::nominal(order).without_loss();
         let (center_hz, fraction) = (0.5 * (from_hz + to_hz), 2.0 * (to_hz - from_hz) / (from_hz + to_hz));
         let g = ladder(order.filter.response, degree);
-        let resonator_ohm = own_number(order, "resonator-impedance");
+        let resonator_ohm = own::number(order, KEYS, "resonator-impedance");
         let mut list = Vec::new();
         let mut problems = Vec::new();
         for k in 1..=degree + 1 {
@@ -184,7 +182,7 @@ impl Family for EdgeCoupled {
                 )),
             }
         }
-        match feeds::guess(order, &built, own_number(order, "feed-length"), center_hz) {
+        match feeds::guess(order, &built, own::number(order, KEYS, "feed-length"), center_hz) {
             Ok(ports) => list.extend(ports),
             Err(found) => problems.extend(found),
         }
@@ -265,7 +263,7 @@ fn coupling_rates(set: &Dimensions, built: &AsBuilt, k: usize) -> (f64, f64) {
     let Band::BandPass { from_hz, to_hz } = set.order.filter.band else { return GAP_ONLY };
     let target = set.list.iter().find(|d| d.name == section(k, "gap")).and_then(|d| d.serves.iter().find(|(what, _)| what == "J/Y"));
     let Some((_, inverter)) = target else { return GAP_ONLY };
-    let resonator_ohm = own_number(&set.order, "resonator-impedance");
+    let resonator_ohm = own::number(&set.order, KEYS, "resonator-impedance");
     let at = |scale: f64| {
         let (even_ohm, odd_ohm) = impedances(inverter * scale, resonator_ohm);
         pair_for_impedances(built, even_ohm, odd_ohm, 0.5 * (from_hz + to_hz)).ok()
@@ -287,48 +285,19 @@ fn mending(inverter: f64) -> String {
     }
 }
 
-/// A quantity of the family's own; the order room has already put in the default.
-fn own_number(order: &Order, key: &str) -> f64 {
-    match order.filter.own.get(key) {
-        Some(OwnValue::Number(value, _)) => *value,
-        _ => KEYS
-            .iter()
-            .find(|k| k.name == key)
-            .and_then(|k| match (k.kind, k.default) {
-                (OwnKind::Quantity(kind), Some(text)) => crate::base::parse_quantity(text, kind).ok(),
-                _ => None,
-            })
-            .unwrap_or(f64::NAN),
-    }
+/// A mouth at `x` from `low` to `high`, looking right or left out of the part that ends there.
+fn mouth(draft: &mut Draft, x: Nm, (low, high): (Nm, Nm), looks_right: bool) -> usize {
+    let (low, high) = (Point { x, y: low }, Point { x, y: high });
+    if looks_right { draft.between(high, low) } else { draft.between(low, high) }
 }
 
-/// Collects nodes and parts.
-#[derive(Default)]
-struct Builder {
-    nodes: Vec<Node>,
-    parts: Vec<Placed>,
-}
-
-impl Builder {
-    /// A mouth at `x` from `low` to `high`, looking right or left out of the part that ends there.
-    fn mouth(&mut self, x: Nm, low: Nm, high: Nm, looks_right: bool) -> usize {
-        let (low, high) = (Point { x, y: low }, Point { x, y: high });
-        self.nodes.push(if looks_right { Node { left: high, right: low } } else { Node { left: low, right: high } });
-        self.nodes.len() - 1
+/// The node at which a strip from `low` to `high` goes on from `arriving`: the same one, or a new one behind a step.
+fn joined(draft: &mut Draft, arriving: usize, x: Nm, (low, high): (Nm, Nm)) -> usize {
+    let node = draft.node(arriving);
+    if (node.left.y, node.right.y) == (high, low) {
+        return arriving;
     }
-
-    /// The node at which a strip from `lower` to `upper` goes on from `arriving`: the same one, or a new one behind a step.
-    fn joined(&mut self, arriving: usize, x: Nm, (low, high): (Nm, Nm)) -> usize {
-        let node = self.nodes[arriving];
-        if (node.left.y, node.right.y) == (high, low) {
-            return arriving;
-        }
-        let next = self.mouth(x, low, high, false);
-        self.place(Part::Step, vec![arriving, next], vec![]);
-        next
-    }
-
-    fn place(&mut self, part: Part, nodes: Vec<usize>, serves: Vec<String>) {
-        self.parts.push(Placed { part, nodes, serves });
-    }
+    let next = mouth(draft, x, (low, high), false);
+    draft.place(Part::Step, vec![arriving, next], vec![]);
+    next
 }

@@ -2,9 +2,12 @@
 
 use crate::base::Nm;
 use crate::base::Place;
+use crate::base::Point;
 use crate::base::Problem;
 use crate::dimensions::Dimension;
 use crate::dimensions::Dimensions;
+use crate::layout::Draft;
+use crate::layout::Way;
 use crate::line::AsBuilt;
 use crate::line::Coplanar;
 use crate::line::width_for_impedance;
@@ -89,4 +92,22 @@ pub fn read(set: &Dimensions, port: usize) -> Result<Feed, Problem> {
     }
     let value = |what| set.value(&name(port, what)).map(Nm::from_m);
     Ok(Feed { width: value("width")?, length: value("length")?, launch })
+}
+
+/// Draws the launch and feed of port 1, heading right from a point of the feed's axis; returns the port's node and the feed's far end.
+pub fn begin(draft: &mut Draft, set: &Dimensions, at: Point) -> Result<(usize, usize), Problem> {
+    let feed = read(set, 1)?;
+    let port = draft.mouth(at, feed.width, Way::Left);
+    draft.launch(1, port, feed.launch, launch_names(&set.order, 1));
+    Ok((port, draft.strip(port, feed.length, Way::Right, line_names(1))))
+}
+
+/// Draws the feed and launch of port 2 from the node where the circuit ends, heading right, a step included where the widths differ;
+/// returns the port's node.
+pub fn end(draft: &mut Draft, set: &Dimensions, arriving: usize) -> Result<usize, Problem> {
+    let feed = read(set, 2)?;
+    let from = draft.step(arriving, feed.width, Way::Right);
+    let port = draft.strip(from, feed.length, Way::Right, line_names(2));
+    draft.launch(2, port, feed.launch, launch_names(&set.order, 2));
+    Ok(port)
 }

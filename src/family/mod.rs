@@ -1,13 +1,26 @@
 //! Filter families, one file each: from the requirement to a first dimension set, and from a dimension set to a layout.
 
+mod comb;
+mod combline;
 mod edge_coupled;
 mod feeds;
+mod grounds;
+mod hairpin;
+mod interdigital;
+mod own;
+mod probe;
+mod row;
+mod target;
+
+pub use probe::{Aim, Drawing, Probe};
+pub use target::Target;
 
 use crate::base::Outcome;
 use crate::base::Place;
 use crate::base::Problem;
 use crate::dimensions::Dimensions;
 use crate::layout::Layout;
+use crate::order::Band;
 use crate::order::FamilyKeys;
 use crate::order::Key;
 use crate::order::Order;
@@ -51,6 +64,22 @@ pub trait Family: Structure {
     /// `coupling-out-of-reach`, `impedance-out-of-reach`: no geometry on this laminate gives the impedances.
     fn first_guess(&self, order: &Order, degree: usize) -> Outcome<Dimensions>;
 
+    /// The lossless response of a degree to which refinement brings the set; for a band-pass, unless the family knows better, the prototype's
+    /// run evenly from edge to edge.
+    fn target(&self, order: &Order, degree: usize) -> Target {
+        match order.filter.band {
+            Band::LowPass { cutoff_hz } => Target::low_pass(order, degree, cutoff_hz, move |f| f / cutoff_hz),
+            Band::HighPass { from_hz, to_hz } | Band::BandPass { from_hz, to_hz } | Band::BandStop { from_hz, to_hz } => {
+                Target::band_pass(order, degree, [from_hz, to_hz])
+            }
+        }
+    }
+
+    /// What is measured on parts of the circuit, in this order, before the whole is refined.
+    fn probes(&self, _set: &Dimensions) -> Vec<Probe> {
+        Vec::new()
+    }
+
     /// The directions in which refinement moves the set, symmetric partners together.
     fn knobs(&self, set: &Dimensions) -> Vec<Knob>;
 }
@@ -78,7 +107,7 @@ pub enum Moves {
 }
 
 /// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
-pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled];
+pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled, &interdigital::Interdigital, &hairpin::Hairpin, &combline::Combline];
 
 /// The family an order names.
 ///

@@ -1,5 +1,9 @@
 //! The dimension set assembled into parts joined at nodes; neighbours share coordinates.
 
+mod draft;
+
+pub use draft::{Draft, Turn, Way};
+
 use crate::base::Nm;
 use crate::base::Point;
 use crate::order::LaunchShape;
@@ -43,6 +47,29 @@ pub enum Part {
     OpenEnd,
     /// A step in width; no length. Two nodes, one mouth within the other's.
     Step,
+    /// A gap across a strip: two nodes, the ends of two strips that face each other.
+    Gap {
+        /// Between the two ends.
+        width: Nm,
+    },
+    /// A right-angled corner of one strip. Two nodes, the mouths where its arms begin.
+    Bend(Corner),
+    /// A strip that leaves another at a right angle; no length. Three nodes: the arms of the through strip, cut where the side strip's
+    /// axis crosses it, and the side strip, which begins on the through strip's axis.
+    Tee,
+    /// Two strips that leave another on opposite sides; no length. Four nodes: the two through arms, then the two side strips.
+    Cross,
+    /// A strip's end grounded by plated holes side by side across it. One node, the line through the holes' centres.
+    Via {
+        /// Finished hole.
+        diameter: Nm,
+        /// Pad around each hole; the strip ends half a pad beyond the centres.
+        pad: Nm,
+        /// How many.
+        count: usize,
+        /// From hole to hole; zero for a single one.
+        pitch: Nm,
+    },
     /// A launch at the board's edge. One node: the reference plane where the feed begins.
     Launch {
         /// 1 or 2.
@@ -51,6 +78,23 @@ pub enum Part {
         shape: LaunchShape,
         /// Feed between the plane and the launch that a board longer than the circuit adds; zero until the board is known.
         run: Nm,
+    },
+}
+
+/// The outside of a corner.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Corner {
+    /// Left square; the mouths meet at the inner corner.
+    Square,
+    /// Cut off at 45 degrees by a triangle with legs of this length.
+    Mitred {
+        /// Leg of the triangle.
+        cut: Nm,
+    },
+    /// An arc about the inner side.
+    Rounded {
+        /// Of the strip's axis.
+        radius: Nm,
     },
 }
 
@@ -87,5 +131,16 @@ impl Layout {
             Part::Launch { port: number, shape, .. } if *number == port => Some(shape),
             _ => None,
         })
+    }
+}
+
+impl Corner {
+    /// How far the mouths lie out from the inner corner, so that a long cut does not reach into the arms.
+    pub fn shoulder(self, width: Nm) -> Nm {
+        match self {
+            Corner::Square => Nm::ZERO,
+            Corner::Mitred { cut } => (cut - width).max(Nm::ZERO),
+            Corner::Rounded { radius } => radius - Nm(width.0.div_euclid(2)),
+        }
     }
 }

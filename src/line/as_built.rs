@@ -1,6 +1,8 @@
 //! What the laminate and copper really are: the one place where nominal, toleranced and measured boards differ.
 
+use super::section::CoatOf;
 use super::section::Plating;
+use super::section::Roughness;
 use crate::order::Order;
 
 /// Nickel of an electroless-nickel finish on top and sides of the strips. Thickness: middle of the 3 to 6 um of IPC-4552. Conductivity and permeability: what
@@ -34,12 +36,20 @@ pub struct AsBuilt {
     pub undercut_m: f64,
     /// Rq of the laminate side of the foil.
     pub roughness_m: f64,
+    /// Rz of it, where the law of stacked spheres is asked for instead of Hammerstad and Jensen's.
+    pub ten_point_height_m: Option<f64>,
     /// Copper conductivity, S/m.
     pub conductivity_s_per_m: f64,
     /// Metal over the copper that the current feels: the nickel of a finish.
     pub plating: Option<Plating>,
+    /// Copper on the wall of plated holes.
+    pub hole_plating_m: f64,
     /// Lid above the laminate surface.
     pub lid_m: Option<f64>,
+    /// Distance of the housing's side walls from each other, the strips midway; `None` also where they are too far away to matter.
+    pub walls_m: Option<f64>,
+    /// Solder mask over the strips.
+    pub coat: Option<CoatOf>,
     /// Added to every strip's drawn width (and taken from every gap): etch error of the batch.
     pub widening_m: f64,
     /// Without loss of any kind (conductor, dielectric, radiation); for synthesis against the lossless prototype.
@@ -60,9 +70,13 @@ impl AsBuilt {
             copper_thickness_m: laminate.copper.finished_m(),
             undercut_m: order.shop.undercut_m,
             roughness_m: laminate.copper.roughness_m,
+            ten_point_height_m: laminate.copper.ten_point_height_m(),
             conductivity_s_per_m: laminate.copper.conductivity_s_per_m,
             plating: plating_of(&laminate.finish),
+            hole_plating_m: order.laminate.copper.plating_m,
             lid_m: order.housing.and_then(|housing| housing.lid_m),
+            walls_m: None,
+            coat: None,
             widening_m: 0.0,
             lossless: false,
             statics: StaticsModel::Numerical,
@@ -72,6 +86,14 @@ impl AsBuilt {
     /// Frequency times dielectric thickness in GHz mm, the measure of dispersion in the published laws.
     pub fn normalised_frequency_ghz_mm(&self, f_hz: f64) -> f64 {
         f_hz * self.thickness_m * 1e-6
+    }
+
+    /// Roughness of the laminate side by the law that is asked for.
+    pub fn roughness(&self) -> Roughness {
+        match self.ten_point_height_m {
+            Some(rz_m) => Roughness::Cannonball { rz_m },
+            None => Roughness::HammerstadJensen { rq_m: self.roughness_m },
+        }
     }
 
     /// The same board without loss.
@@ -103,9 +125,13 @@ impl AsBuilt {
             copper_thickness_m,
             undercut_m: 0.0,
             roughness_m: 0.0,
+            ten_point_height_m: None,
             conductivity_s_per_m: 5.8e7,
             plating: None,
+            hole_plating_m: 25e-6,
             lid_m: None,
+            walls_m: None,
+            coat: None,
             widening_m: 0.0,
             lossless: false,
             statics: StaticsModel::ClosedForm,

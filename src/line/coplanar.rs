@@ -2,7 +2,7 @@
 
 use super::AsBuilt;
 use super::C_M_PER_S;
-use super::hammerstad_roughness_factor;
+use super::skin_depth_m;
 use super::surface_resistance_ohm;
 use crate::base::bisect;
 
@@ -55,7 +55,7 @@ impl Coplanar {
             return 0.0;
         }
         let conductor = surface_resistance_ohm(f_hz, built.conductivity_s_per_m)
-            * hammerstad_roughness_factor(f_hz, built.conductivity_s_per_m, built.roughness_m)
+            * built.roughness().factor(skin_depth_m(f_hz, built.conductivity_s_per_m))
             / (self.z0_ohm * self.width_m);
         let filling = built.permittivity * (self.eps_eff - 1.0) / (self.eps_eff.sqrt() * (built.permittivity - 1.0).max(1e-9));
         conductor + std::f64::consts::PI * f_hz / C_M_PER_S * filling * built.loss_tangent

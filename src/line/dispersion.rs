@@ -22,8 +22,8 @@ const IMPEDANCE_FULL: f64 = 1.2;
 /// M. Kirschning, "Arguments and an accurate model for the power-current formulation of microstrip characteristic impedance", AEU 37, 1983, pp. 108-112
 /// (from memory).
 ///
-/// With solved statics the laws start from static values that hold thickness, taper and lid. Under a lid they are applied as they stand: no published law with a
-/// lid was at hand, and a lid, which draws field into the air, weakens dispersion, so the rise is on the high side; trust it where the rise itself is small.
+/// With solved statics the laws start from static values that hold thickness, taper and lid. Under a lid P is multiplied by `statics::lid_factor`, so that the
+/// permittivity runs from the lidded static value into that of the open line; not checked against full-wave values.
 ///
 /// The even and odd impedances take the factor of a single strip of the same width: so the coupling stays the static one and a wide gap becomes the single
 /// line. The 1984 laws for them are not used: no independent value for them was at hand, and the coupling follows from a small difference of the two.
@@ -61,6 +61,15 @@ struct CoupledLaw {
     p11_slope: f64,
     p12_fall: f64,
     odd_gap: f64,
+}
+
+/// How far a strip's effective permittivity has risen towards the laminate's, and what the neighbour does to that.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub(super) struct Rise {
+    /// P of the single strip.
+    pub(super) single: f64,
+    /// Factor on P when the neighbour has the same voltage, and the opposite one.
+    pub(super) by_neighbour: EvenOdd<f64>,
 }
 
 impl Dispersion {
@@ -114,31 +123,39 @@ impl Dispersion {
         [p1 * self.p2, self.p3_low * -(-(f_n / 38.7).powf(4.97)).exp_m1() * self.p4]
     }
 
-    /// Effective permittivity of the single strip at `fn` from its static value.
-    pub(super) fn single_eps_eff(&self, f_n: f64, eps_eff_static: f64) -> f64 {
+    /// Effective permittivity of the single strip at `fn` from its static value; `lid` multiplies P.
+    pub(super) fn single_eps_eff(&self, f_n: f64, eps_eff_static: f64, lid: f64) -> f64 {
         let [p12, p34] = self.common(f_n);
-        self.raised(eps_eff_static, p12 * ((p34 + 0.1844) * f_n).powf(1.5763))
+        self.raised(eps_eff_static, lid * p12 * ((p34 + 0.1844) * f_n).powf(1.5763))
     }
 
-    /// Even and odd effective permittivity at `fn` from their static values.
-    pub(super) fn pair_eps_eff(&self, f_n: f64, eps_eff_static: EvenOdd<f64>) -> EvenOdd<f64> {
-        let Some(law) = &self.coupled else {
-            return EvenOdd { even: self.single_eps_eff(f_n, eps_eff_static.even), odd: self.single_eps_eff(f_n, eps_eff_static.odd) };
-        };
+    /// Even and odd effective permittivity at `fn` from their static values; `lid` multiplies P.
+    pub(super) fn pair_eps_eff(&self, f_n: f64, eps_eff_static: EvenOdd<f64>, lid: EvenOdd<f64>) -> EvenOdd<f64> {
+        let Rise { single, by_neighbour } = self.rise(f_n);
+        EvenOdd {
+            even: self.raised(eps_eff_static.even, lid.even * single * by_neighbour.even),
+            odd: self.raised(eps_eff_static.odd, lid.odd * single * by_neighbour.odd),
+        }
+    }
+
+    /// P of the laws at `fn`, taken apart: that of the single strip and what a neighbour makes of it in either mode.
+    pub(super) fn rise(&self, f_n: f64) -> Rise {
         let [p12, p34] = self.common(f_n);
+        let single = p12 * ((p34 + 0.1844) * f_n).powf(1.5763);
+        let Some(law) = &self.coupled else { return Rise { single, by_neighbour: EvenOdd { even: 1.0, odd: 1.0 } } };
         let p6 = law.p5 * (-(f_n / 18.0).powf(0.368)).exp();
         let p7 = 1.0 + p6 * law.even_gap;
-        let even = p12 * ((p34 + 0.1844 * p7) * f_n).powf(1.5763);
         let p9 = law.p8 + law.p9_slope * (-(f_n / 20.0).powf(1.424)).exp_m1();
         let p11 = law.p11_slope * (-0.3401 * f_n).exp_m1();
         let p12_odd = p9 + (1.0 - p9) / law.p12_fall;
         let p14 = 0.8928 - 0.1072 * (-0.42 * (f_n / 20.0).powf(3.215)).exp_m1();
         let p15 = (1.0 - 0.8928 * (1.0 + p11) * p12_odd * law.odd_gap / p14).abs();
-        let odd = p12 * ((p34 + 0.1844) * f_n * p15).powf(1.5763);
-        EvenOdd { even: self.raised(eps_eff_static.even, even), odd: self.raised(eps_eff_static.odd, odd) }
+        let even = ((p34 + 0.1844 * p7) / (p34 + 0.1844)).powf(1.5763);
+        Rise { single, by_neighbour: EvenOdd { even, odd: p15.powf(1.5763) } }
     }
 
-    fn raised(&self, eps_eff_static: f64, p: f64) -> f64 {
+    /// Effective permittivity from its static value and P.
+    pub(super) fn raised(&self, eps_eff_static: f64, p: f64) -> f64 {
         self.er - (self.er - eps_eff_static) / (1.0 + p)
     }
 

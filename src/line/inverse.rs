@@ -15,9 +15,9 @@ use crate::base::Problem;
 use crate::base::bisect;
 
 /// Widths looked at, over the dielectric thickness: beyond the ends no formula is trusted and no filter is drawn.
-const WIDTHS: [f64; 2] = [0.01, 60.0];
+pub(super) const WIDTHS: [f64; 2] = [0.01, 60.0];
 /// Gaps looked at, over the dielectric thickness.
-const GAPS: [f64; 2] = [0.005, 20.0];
+pub(super) const GAPS: [f64; 2] = [0.005, 20.0];
 /// Bracket in ln(size) at which a root is taken as found: below any grid.
 const CLOSE: f64 = 1e-11;
 /// Newton steps before the slow, sure way is taken; it needs four or five.
@@ -73,7 +73,7 @@ pub struct Unreachable {
 }
 
 impl Unreachable {
-    fn not_a_line(wanted: f64, message: String, help: &str) -> Unreachable {
+    pub(super) fn not_a_line(wanted: f64, message: String, help: &str) -> Unreachable {
         Unreachable { what: OutOfReach::NotALine, limit_m: 0.0, wanted, reached: 0.0, message, help: help.into() }
     }
 

@@ -8,8 +8,9 @@
 //!
 //! # Frequency
 //! Solved or closed, static values are carried up by M. Kirschning and R. H. Jansen's dispersion laws (1982 single, 1984 coupled): trusted to 39 GHz mm of laminate
-//! for one strip and 25 GHz mm for a pair (`trusted_up_to_hz`), outside their sizes with a warning where they move anything. Under a lid the open line's law is
-//! taken as it stands, from static values that hold the lid.
+//! for one strip and 25 GHz mm for a pair (`trusted_up_to_hz`), outside their sizes with a warning where they move anything. Under a lid the law
+//! starts from the lidded static value and runs into the open line's (`statics::lid_factor`), trusted below the first higher mode between ground and lid,
+//! c / (2 (lid + h sqrt(er))), where that is lower.
 //!
 //! # Where the closed forms are off
 //! By more than 1 % (`1`) or 3 % (`3`), else `.`; `cargo bench --bench closed_forms` prints both tables from the solver. One strip: impedance, effective
@@ -77,18 +78,26 @@
 //! | 10.2 | 0.1 | 2.5 | .33 +10 | .33 +6 | ... +1 | ..1 -2 | ..3 -3 | ..3 -9 | ..3 -24 |
 //! | 10.2 | 0.1 | 8 | .13 +4 | ..1 +1 | .13 -3 | ..3 -5 | ..3 -5 | ..3 -6 | ..3 -10 |
 
+mod array;
+mod array_inverse;
 mod as_built;
+pub mod bend;
 mod book;
 mod coplanar;
 mod coupled;
+mod covered;
+mod cross;
 mod dispersion;
 pub mod gap;
 mod inverse;
+mod junction_statics;
+mod many;
 mod mode;
 mod models;
 mod numerical;
 pub mod open_end;
 mod pair;
+mod radial_stub;
 mod range;
 pub mod section;
 mod single;
@@ -97,18 +106,29 @@ mod step;
 mod strip;
 pub mod stripline;
 mod surface;
+mod taper;
+mod tee;
+mod via;
 
+pub use array::{Array, ArrayModes};
+pub use array_inverse::{ArrayTarget, array_for};
 pub use as_built::{AsBuilt, StaticsModel, plating_of};
+pub use bend::{Bend, Corner, Curve, Mitre, bend, curve, optimum_cut, rounded_bend};
 pub use book::Book;
 pub use coplanar::Coplanar;
 pub use coupled::EvenOdd;
+pub use cross::{Cross, CrossAt, cross};
 pub use inverse::{OutOfReach, Unreachable, pair_for_impedances, width_for_impedance};
 pub use mode::Mode;
 pub use models::Models;
 pub use pair::Pair;
-pub use step::{Step, step};
+pub use radial_stub::{RadialStub, radial_line_reactance_ohm, radial_stub};
+pub use step::{Step, offset_step, step};
 pub use strip::Strip;
 pub use surface::{hammerstad_roughness_factor, skin_depth_m, sphere_roughness_factor, surface_resistance_ohm};
+pub use taper::{Piece, taper};
+pub use tee::{Tee, TeeAt, tee};
+pub use via::{VIA_MODEL_ERROR_H, Via, ViaHoles, post_inductance_h, via};
 
 /// Speed of light, m/s (exact).
 pub const C_M_PER_S: f64 = 299_792_458.0;

@@ -7,9 +7,10 @@ use super::C_M_PER_S;
 use super::ETA0_OHM;
 use super::numerical;
 use super::section::ModeLoss;
+use super::section::Roughness;
 use super::section::Surfaces;
 use super::statics::StaticMode;
-use super::surface::hammerstad_roughness_factor;
+use super::surface::skin_depth_m;
 use super::surface::surface_resistance_ohm;
 
 /// A mode at one frequency.
@@ -47,7 +48,7 @@ impl Mode {
 pub(super) struct Losses {
     lossless: bool,
     conductivity_s_per_m: f64,
-    roughness_m: f64,
+    roughness: Roughness,
     er: f64,
     loss_tangent: f64,
     surfaces: Surfaces,
@@ -58,7 +59,7 @@ impl Losses {
         Losses {
             lossless: board.lossless,
             conductivity_s_per_m: board.conductivity_s_per_m,
-            roughness_m: board.roughness_m,
+            roughness: board.roughness(),
             er: board.permittivity,
             loss_tangent: board.loss_tangent,
             surfaces: numerical::surfaces(board),
@@ -91,8 +92,8 @@ impl Losses {
                 dielectric_np_per_m: growth * loss.dielectric_np_per_m(f_hz, eps_eff),
             };
         }
-        let resistance_ohm = surface_resistance_ohm(f_hz, self.conductivity_s_per_m)
-            * hammerstad_roughness_factor(f_hz, self.conductivity_s_per_m, self.roughness_m);
+        let resistance_ohm =
+            surface_resistance_ohm(f_hz, self.conductivity_s_per_m) * self.roughness.factor(skin_depth_m(f_hz, self.conductivity_s_per_m));
         let k0 = 2.0 * PI * f_hz / C_M_PER_S;
         // The share of the energy in the laminate; at er = 1 the ratio has a limit that no laminate asks for.
         let share = if self.er > 1.0 { self.er * (eps_eff - 1.0) / (self.er - 1.0) } else { 0.0 };

@@ -1,8 +1,13 @@
-//! Which model gave the constants of a circuit's strips and pairs, and how far from them are the closed forms?
+//! Which model gave the constants of a circuit's strips, pairs and arrays, and how far from them are the closed forms?
 
+use super::Array;
+use super::C_M_PER_S;
 use super::Pair;
 use super::StaticsModel;
 use super::Strip;
+
+/// Couplings below this are the solver's rounding and nothing to compare with.
+const LEAST_COUPLING: f64 = 1e-6;
 
 /// The models behind a set of strips and pairs. Differences are of the closed form from the values used, static, relative, the largest in magnitude.
 #[derive(Clone, Debug, Default, PartialEq)]
@@ -17,7 +22,7 @@ pub struct Models {
     pub impedance_difference: f64,
     /// Of an effective permittivity.
     pub permittivity_difference: f64,
-    /// Of a pair's coupling (Z0e - Z0o)/(Z0e + Z0o).
+    /// Of a pair's coupling (Z0e - Z0o)/(Z0e + Z0o); in an array, of the mutual capacitance over both strips' own.
     pub coupling_difference: f64,
 }
 
@@ -43,9 +48,28 @@ impl Models {
                 keep(&mut models.permittivity_difference, closed / used - 1.0);
             }
             let coupling = |even: f64, odd: f64| (even - odd) / (even + odd);
-            keep(&mut models.coupling_difference, coupling(closed_z.even, closed_z.odd) / coupling(z.even, z.odd) - 1.0);
+            if coupling(z.even, z.odd) > LEAST_COUPLING {
+                keep(&mut models.coupling_difference, coupling(closed_z.even, closed_z.odd) / coupling(z.even, z.odd) - 1.0);
+            }
         }
         models
+    }
+
+    /// And of these arrays; their closed forms are put together from single strips and pairs.
+    pub fn with_arrays<'a>(mut self, arrays: impl Iterator<Item = &'a Array>) -> Models {
+        for array in arrays {
+            self.count(array.error_estimate());
+            let closed = Array::new(&array.board().with_statics(StaticsModel::ClosedForm), array.widths_m(), array.gaps_m());
+            let (used, closed) = (Matrices::of(array), Matrices::of(&closed));
+            for i in 0..array.count() {
+                keep(&mut self.impedance_difference, closed.z0_ohm(i) / used.z0_ohm(i) - 1.0);
+                keep(&mut self.permittivity_difference, closed.eps_eff(i) / used.eps_eff(i) - 1.0);
+                if i > 0 && used.coupling(i - 1, i) > LEAST_COUPLING {
+                    keep(&mut self.coupling_difference, closed.coupling(i - 1, i) / used.coupling(i - 1, i) - 1.0);
+                }
+            }
+        }
+        self
     }
 
     fn count(&mut self, error_estimate: Option<f64>) {
@@ -71,6 +95,38 @@ impl Models {
             100.0 * self.permittivity_difference,
             100.0 * self.coupling_difference
         )
+    }
+}
+
+/// Constants of single strips of an array with all others grounded, and of neighbours.
+struct Matrices<'a> {
+    laminate: &'a [f64],
+    air: &'a [f64],
+    count: usize,
+}
+
+impl Matrices<'_> {
+    fn of(array: &Array) -> Matrices<'_> {
+        Matrices { laminate: array.capacitance_f_per_m(), air: array.air_capacitance_f_per_m(), count: array.count() }
+    }
+
+    fn own(&self, i: usize) -> [f64; 2] {
+        [self.laminate, self.air].map(|matrix| matrix.get(i * (self.count + 1)).copied().unwrap_or(f64::NAN))
+    }
+
+    fn z0_ohm(&self, i: usize) -> f64 {
+        let [c, c0] = self.own(i);
+        1.0 / (C_M_PER_S * (c * c0).sqrt())
+    }
+
+    fn eps_eff(&self, i: usize) -> f64 {
+        let [c, c0] = self.own(i);
+        c / c0
+    }
+
+    fn coupling(&self, i: usize, j: usize) -> f64 {
+        let [[one, _], [other, _]] = [self.own(i), self.own(j)];
+        -self.laminate.get(i * self.count + j).copied().unwrap_or(f64::NAN) / (one * other).sqrt()
     }
 }
 

@@ -8,9 +8,11 @@ use super::AsBuilt;
 use super::coupled::EvenOdd;
 use super::section::CopperOf;
 use super::section::LayerOf;
+use super::section::MatrixLoss;
 use super::section::ModeLoss;
-use super::section::Roughness;
+use super::section::Solved;
 use super::section::Stackup;
+use super::section::StripOf;
 use super::section::Surface;
 use super::section::Surfaces;
 use super::section::{Line, Pair};
@@ -21,6 +23,9 @@ use crate::base::Problem;
 /// Boards whose tables are kept; the one longest not asked for goes. A nominal board, the same with a receded copper and a few toleranced ones.
 const STACKUPS_AT_MOST: usize = 8;
 
+/// Arrays kept per board; then they are dropped. A refinement of one filter needs some hundred.
+const ARRAYS_AT_MOST: usize = 500;
+
 /// Losses kept per board; then they are dropped. A sweep over one filter needs a dozen.
 const LOSSES_AT_MOST: usize = 2000;
 
@@ -29,6 +34,8 @@ struct Kept {
     stackup: Stackup,
     strips: RefCell<BTreeMap<u64, ModeLoss>>,
     pairs: RefCell<BTreeMap<(u64, u64), EvenOdd<ModeLoss>>>,
+    arrays: RefCell<BTreeMap<Vec<u64>, Rc<Solved>>>,
+    array_losses: RefCell<BTreeMap<Vec<u64>, Rc<MatrixLoss>>>,
 }
 
 /// The exact bits of all that a stackup depends on.
@@ -68,7 +75,13 @@ fn kept(board: &AsBuilt, copper_thickness_m: f64) -> Result<Rc<Kept>, Problem> {
         };
         let copper = CopperOf { thickness_m: copper_thickness_m, undercut_m: board.undercut_m };
         let stackup = Stackup::new(&[layer], copper, lid_m).map_err(first)?;
-        let made = Rc::new(Kept { stackup, strips: RefCell::default(), pairs: RefCell::default() });
+        let made = Rc::new(Kept {
+            stackup,
+            strips: RefCell::default(),
+            pairs: RefCell::default(),
+            arrays: RefCell::default(),
+            array_losses: RefCell::default(),
+        });
         if all.len() >= STACKUPS_AT_MOST {
             all.remove(0);
         }
@@ -97,25 +110,53 @@ pub(super) fn pair(board: &AsBuilt, width_m: f64, gap_m: f64) -> Result<Pair, Pr
 pub(super) fn strip_loss(board: &AsBuilt, width_m: f64) -> Result<ModeLoss, Problem> {
     let kept = kept(board, lossy_thickness_m(board))?;
     let width_m = statics::foot_m(board, width_m);
-    remembered(&kept.strips, width_m.to_bits(), || kept.stackup.single_loss(width_m))
+    remembered(&kept.strips, LOSSES_AT_MOST, width_m.to_bits(), || kept.stackup.single_loss(width_m))
 }
 
 /// Loss of two strips.
 pub(super) fn pair_loss(board: &AsBuilt, width_m: f64, gap_m: f64) -> Result<EvenOdd<ModeLoss>, Problem> {
     let kept = kept(board, lossy_thickness_m(board))?;
     let (width_m, gap_m) = (statics::foot_m(board, width_m), statics::foot_gap_m(board, gap_m));
-    remembered(&kept.pairs, (width_m.to_bits(), gap_m.to_bits()), || {
+    remembered(&kept.pairs, LOSSES_AT_MOST, (width_m.to_bits(), gap_m.to_bits()), || {
         kept.stackup.pair_loss(width_m, gap_m).map(|[even, odd]| EvenOdd { even, odd })
     })
 }
 
-fn remembered<K: Ord, V: Clone>(cache: &RefCell<BTreeMap<K, V>>, key: K, solve: impl FnOnce() -> Result<V, Problem>) -> Result<V, Problem> {
+/// Three strips or more, or two unequal ones: strips of these drawn widths, these gaps between them.
+pub(super) fn array(board: &AsBuilt, widths_m: &[f64], gaps_m: &[f64]) -> Result<Rc<Solved>, Problem> {
+    let kept = kept(board, board.copper_thickness_m)?;
+    let strips = strips(board, widths_m, gaps_m);
+    remembered(&kept.arrays, ARRAYS_AT_MOST, bits(&strips), || kept.stackup.array(&strips).map(Rc::new))
+}
+
+/// Loss of many strips.
+pub(super) fn array_loss(board: &AsBuilt, widths_m: &[f64], gaps_m: &[f64]) -> Result<Rc<MatrixLoss>, Problem> {
+    let kept = kept(board, lossy_thickness_m(board))?;
+    let strips = strips(board, widths_m, gaps_m);
+    remembered(&kept.array_losses, ARRAYS_AT_MOST, bits(&strips), || kept.stackup.array_loss(&strips).map(Rc::new))
+}
+
+fn strips(board: &AsBuilt, widths_m: &[f64], gaps_m: &[f64]) -> Vec<StripOf> {
+    let gaps = std::iter::once(0.0).chain(gaps_m.iter().map(|gap_m| statics::foot_gap_m(board, *gap_m)));
+    widths_m.iter().zip(gaps).map(|(width_m, gap_before_m)| StripOf { width_m: statics::foot_m(board, *width_m), gap_before_m }).collect()
+}
+
+fn bits(strips: &[StripOf]) -> Vec<u64> {
+    strips.iter().flat_map(|strip| [strip.width_m.to_bits(), strip.gap_before_m.to_bits()]).collect()
+}
+
+fn remembered<K: Ord, V: Clone>(
+    cache: &RefCell<BTreeMap<K, V>>,
+    at_most: usize,
+    key: K,
+    solve: impl FnOnce() -> Result<V, Problem>,
+) -> Result<V, Problem> {
     if let Some(found) = cache.borrow().get(&key) {
         return Ok(found.clone());
     }
     let value = solve()?;
     let mut cache = cache.borrow_mut();
-    if cache.len() >= LOSSES_AT_MOST {
+    if cache.len() >= at_most {
         cache.clear();
     }
     cache.insert(key, value.clone());
@@ -129,7 +170,7 @@ fn lossy_thickness_m(board: &AsBuilt) -> f64 {
 /// Rough is the foil's laminate side: foot and ground. Plated are top and sides. The housing is taken as smooth metal of the copper's conductivity.
 pub(super) fn surfaces(board: &AsBuilt) -> Surfaces {
     let smooth = Surface::smooth(board.conductivity_s_per_m);
-    let laminate_side = Surface { roughness: Roughness::HammerstadJensen { rq_m: board.roughness_m }, ..smooth };
+    let laminate_side = Surface { roughness: board.roughness(), ..smooth };
     let outside = Surface { plating: board.plating, ..smooth };
     Surfaces { foot: laminate_side, top: outside, sides: outside, ground: laminate_side, housing: smooth }
 }

@@ -24,6 +24,8 @@ pub struct Pair {
     pub(super) built_gap_m: f64,
     statics: Statics<EvenOdd<StaticMode>>,
     single_eps_eff: f64,
+    single_lid_factor: f64,
+    lid_factors: EvenOdd<f64>,
     dispersion: Dispersion,
     losses: Losses,
     /// Asked for once, and only where there is loss: it costs more than all the rest.
@@ -42,9 +44,20 @@ impl Pair {
     pub fn new(board: &AsBuilt, width_m: f64, gap_m: f64) -> Pair {
         let (built_width_m, built_gap_m) = (statics::built_width_m(board, width_m), statics::built_gap_m(board, gap_m));
         let h = board.thickness_m;
+        let statics = statics::pair(board, width_m, gap_m);
+        let single_eps_eff = statics::strip(board, width_m).modes.eps_eff;
+        let (mut single_lid_factor, mut lid_factors) = (1.0, EvenOdd { even: 1.0, odd: 1.0 });
+        if let Some(open) = statics::opened(board, &statics) {
+            let (with_lid, without) = (&statics.modes, statics::pair(&open, width_m, gap_m).modes);
+            single_lid_factor = statics::lid_factor(board, single_eps_eff, statics::strip(&open, width_m).modes.eps_eff);
+            lid_factors.even = statics::lid_factor(board, with_lid.even.eps_eff, without.even.eps_eff);
+            lid_factors.odd = statics::lid_factor(board, with_lid.odd.eps_eff, without.odd.eps_eff);
+        }
         Pair {
-            statics: statics::pair(board, width_m, gap_m),
-            single_eps_eff: statics::strip(board, width_m).modes.eps_eff,
+            statics,
+            single_eps_eff,
+            single_lid_factor,
+            lid_factors,
             dispersion: Dispersion::pair(built_width_m / h, built_gap_m / h, board.permittivity),
             losses: Losses::new(board),
             solved_loss: OnceLock::new(),
@@ -84,7 +97,7 @@ impl Pair {
     /// Both quasi-TEM modes at a frequency (zero allowed); cheaper than asking for each.
     pub fn at(&self, f_hz: f64) -> EvenOdd<Mode> {
         let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
-        let eps = self.dispersion.pair_eps_eff(f_n, self.static_eps_eff());
+        let eps = self.dispersion.pair_eps_eff(f_n, self.static_eps_eff(), self.lid_factors);
         let factor = self.impedance_factor(f_n);
         let solved = self.solved_loss().and_then(|loss| loss.as_ref().ok());
         EvenOdd {
@@ -126,7 +139,7 @@ impl Pair {
     }
 
     fn impedance_factor(&self, f_n: f64) -> f64 {
-        let eps_eff = self.dispersion.single_eps_eff(f_n, self.single_eps_eff);
+        let eps_eff = self.dispersion.single_eps_eff(f_n, self.single_eps_eff, self.single_lid_factor);
         self.dispersion.impedance_factor(f_n, self.single_eps_eff, eps_eff)
     }
 }

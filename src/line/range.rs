@@ -1,8 +1,9 @@
-//! Is a strip or pair inside what the sources of its formulas cover?
+//! Is a strip, pair or array inside what the sources of its formulas cover?
 //!
 //! Static values from the numerical cross-section have no range: the solver refuses what it cannot do (`section-not-solved`). What is left is the dispersion
 //! law, and that only where it moves anything.
 
+use super::Array;
 use super::AsBuilt;
 use super::C_M_PER_S;
 use super::Pair;
@@ -31,7 +32,7 @@ const DISPERSION_MATTERS: f64 = 2e-3;
 impl Strip {
     /// Frequency (Hz) up to which its dispersion is claimed by the source.
     pub fn trusted_up_to_hz(&self) -> f64 {
-        SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m
+        under_lid(&self.board, SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S / self.board.thickness_m)
     }
 
     /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
@@ -60,7 +61,7 @@ impl Strip {
 impl Pair {
     /// Frequency (Hz) up to which its dispersion is claimed by the source.
     pub fn trusted_up_to_hz(&self) -> f64 {
-        PAIR_GHZ_MM * 1e6 / self.board.thickness_m
+        under_lid(&self.board, PAIR_GHZ_MM * 1e6 / self.board.thickness_m)
     }
 
     /// Warnings (`line-model-range`, `section-not-solved`, `lid-not-modelled`, `strip-top-vanishes`) for use up to a frequency; none inside the range.
@@ -90,6 +91,63 @@ impl Pair {
         range.board(self.width_m);
         range.problems
     }
+}
+
+impl Array {
+    /// Frequency (Hz) up to which the laws its dispersion is put together from are claimed by their sources.
+    pub fn trusted_up_to_hz(&self) -> f64 {
+        let open = if self.count() > 1 { PAIR_GHZ_MM * 1e6 } else { SINGLE_HEIGHT_IN_WAVELENGTHS * C_M_PER_S };
+        under_lid(&self.board, open / self.board.thickness_m)
+    }
+
+    /// Warnings as those of [`Pair::problems`], and the errors `array-gaps` and `array-size`; none inside the range.
+    pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
+        let mut range = Range::new(&self.board, if self.count() > 1 { PAIR_SOURCE } else { SINGLE_SOURCE });
+        range.problems.extend(self.mismatch().cloned());
+        range.not_solved(&self.not_solved(), self.error_estimate().is_some());
+        let h = self.board.thickness_m;
+        let solved = self.error_estimate().is_some();
+        let mut sizes_matter = true;
+        if solved {
+            range.source = if self.count() > 1 { PAIR_DISPERSION_SOURCE } else { SINGLE_DISPERSION_SOURCE };
+            let statics = &self.static_modes().eps_eff;
+            sizes_matter =
+                self.at(up_to_hz).index.iter().zip(statics).any(|(index, eps_eff)| index * index > (1.0 + DISPERSION_MATTERS) * eps_eff);
+        }
+        if sizes_matter {
+            let (narrowest, widest) = ends(&self.built_widths_m);
+            let widest_allowed = if self.count() > 1 { 10.0 } else { 100.0 };
+            range.inside("width over thickness of the laminate", narrowest / h, 0.1, widest_allowed);
+            if widest > narrowest {
+                range.inside("width over thickness of the laminate", widest / h, 0.1, widest_allowed);
+            }
+            if let [_, ..] = self.built_gaps_m.as_slice() {
+                let (least, most) = ends(&self.built_gaps_m);
+                range.inside("gap over thickness of the laminate", least / h, 0.1, 10.0);
+                if most > least {
+                    range.inside("gap over thickness of the laminate", most / h, 0.1, 10.0);
+                }
+            }
+            range.inside("permittivity", self.board.permittivity, 1.0, if self.count() > 1 { 18.0 } else { 20.0 });
+        }
+        range.up_to(up_to_hz, self.trusted_up_to_hz());
+        if !solved {
+            let allowed = if self.count() > 1 { PAIR_THICKNESS } else { SINGLE_THICKNESS };
+            range.inside("copper thickness over thickness of the laminate", self.board.copper_thickness_m / h, 0.0, allowed);
+            range.board(ends(&self.widths_m).0);
+        }
+        range.problems
+    }
+}
+
+/// A lid adds the first higher mode between ground and lid, above which nothing here holds.
+fn under_lid(board: &AsBuilt, open_hz: f64) -> f64 {
+    board.lid_m.map_or(open_hz, |lid_m| open_hz.min(C_M_PER_S / (2.0 * (lid_m + board.thickness_m * board.permittivity.sqrt()))))
+}
+
+/// Least and greatest.
+fn ends(sizes: &[f64]) -> (f64, f64) {
+    sizes.iter().fold((f64::INFINITY, f64::NEG_INFINITY), |(low, high), size| (low.min(*size), high.max(*size)))
 }
 
 struct Range<'a> {

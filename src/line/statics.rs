@@ -8,6 +8,8 @@ use super::StaticsModel;
 use super::coupled::EvenOdd;
 use super::coupled::air_impedances_ohm;
 use super::coupled::effective_permittivities;
+use super::many;
+use super::many::Capacitances;
 use super::numerical;
 use super::section;
 use super::single::air_impedance_ohm;
@@ -21,6 +23,8 @@ const SMALLEST_SIZE_M: f64 = 1e-9;
 pub(super) const THINNEST_LOSSY_COPPER_M: f64 = 1e-6;
 /// Up to this share of the gap, thickness narrows it by the full widening of the strips; beyond it the gap tends to zero without reaching it.
 const PLAIN_GAP_SHARE: f64 = 0.6;
+/// Far beyond any lid that leaves room for copper.
+const LID_FACTOR_AT_MOST: f64 = 10.0;
 /// Recession step over the smallest size of the section; a central difference, so its error is the square of this.
 const RECESSION_STEP: f64 = 1e-3;
 
@@ -161,6 +165,43 @@ pub(super) fn pair(board: &AsBuilt, width_m: f64, gap_m: f64) -> Statics<EvenOdd
             Ok(pair) => Statics {
                 modes: EvenOdd { even: guess.even.with(&pair.even), odd: guess.odd.with(&pair.odd) },
                 error_estimate: Some(pair.error_estimate),
+                not_solved: None,
+            },
+            Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },
+        },
+    }
+}
+
+/// How much faster than the open line's law a mode's permittivity rises under a lid: static values with the lid and without it, and the laminate's.
+///
+/// No published law with a lid was at hand. At high frequency the field draws into the laminate and no longer sees the lid, so the permittivity must run into
+/// that of the open line, er - (er - eps)/P: P is to grow as er less the static value does. The static value is the lidded one by itself. (W. J. Getsinger's
+/// inflection frequency, IEEE Trans. MTT-21, 1973, falls with the impedance, the same way.)
+pub(super) fn lid_factor(board: &AsBuilt, with_lid: f64, open: f64) -> f64 {
+    let er = board.permittivity;
+    let factor = (er - with_lid) / (er - open);
+    // In-plane permittivity or no laminate can leave nothing to rise to.
+    if open < er && factor.is_finite() { factor.clamp(1.0, LID_FACTOR_AT_MOST) } else { 1.0 }
+}
+
+/// The same board without its lid, where the values under it are solved.
+pub(super) fn opened<T>(board: &AsBuilt, statics: &Statics<T>) -> Option<AsBuilt> {
+    (board.lid_m.is_some() && statics.error_estimate.is_some()).then(|| AsBuilt { lid_m: None, ..board.clone() })
+}
+
+/// Static capacitances of N strips; sizes as drawn. The receding walls' part is the closed form's.
+pub(super) fn array(board: &AsBuilt, widths_m: &[f64], gaps_m: &[f64]) -> Statics<Capacitances> {
+    let guess = many::closed_form(board, widths_m, gaps_m);
+    match board.statics {
+        StaticsModel::ClosedForm => Statics::closed_form(guess),
+        StaticsModel::Numerical => match numerical::array(board, widths_m, gaps_m) {
+            Ok(solved) => Statics {
+                modes: Capacitances {
+                    laminate: solved.capacitance_f_per_m.concat(),
+                    air: solved.air_capacitance_f_per_m.concat(),
+                    air_recession: guess.air_recession,
+                },
+                error_estimate: Some(solved.error_estimate),
                 not_solved: None,
             },
             Err(problem) => Statics { not_solved: Some(problem), ..Statics::closed_form(guess) },

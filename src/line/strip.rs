@@ -20,8 +20,8 @@ use crate::base::Problem;
 /// use stripwright::line::{AsBuilt, StaticsModel, Strip};
 /// let board = AsBuilt {
 ///     permittivity: 3.0, in_plane_permittivity: 3.0, loss_tangent: 0.0013, thickness_m: 0.762e-3, copper_thickness_m: 0.0, undercut_m: 0.0,
-///     roughness_m: 0.0, conductivity_s_per_m: 5.8e7, plating: None, lid_m: None, widening_m: 0.0, lossless: true,
-///     statics: StaticsModel::Numerical,
+///     roughness_m: 0.0, ten_point_height_m: None, conductivity_s_per_m: 5.8e7, plating: None, lid_m: None, walls_m: None, coat: None, widening_m: 0.0,
+///     lossless: true, statics: StaticsModel::Numerical,
 /// };
 /// let strip = Strip::new(&board, 2.5 * 0.762e-3);
 /// assert!((strip.static_z0_ohm() / 50.162 - 1.0).abs() < 1e-4); // exact value of the thin strip
@@ -33,6 +33,7 @@ pub struct Strip {
     pub(super) built_width_m: f64,
     statics: Statics<StaticMode>,
     dispersion: Dispersion,
+    lid_factor: f64,
     losses: Losses,
     /// Asked for once, and only where there is loss: it costs more than all the rest.
     solved_loss: OnceLock<Result<ModeLoss, Problem>>,
@@ -49,8 +50,12 @@ impl Strip {
     /// A strip drawn `width_m` wide. Any width gives finite numbers; [`Strip::problems`] says which can be trusted.
     pub fn new(board: &AsBuilt, width_m: f64) -> Strip {
         let built_width_m = statics::built_width_m(board, width_m);
+        let statics = statics::strip(board, width_m);
+        let with_lid = statics.modes.eps_eff;
+        let open = statics::opened(board, &statics).map(|open| statics::strip(&open, width_m).modes.eps_eff);
         Strip {
-            statics: statics::strip(board, width_m),
+            lid_factor: open.map_or(1.0, |open| statics::lid_factor(board, with_lid, open)),
+            statics,
             dispersion: Dispersion::single(built_width_m / board.thickness_m, board.permittivity),
             losses: Losses::new(board),
             solved_loss: OnceLock::new(),
@@ -83,7 +88,7 @@ impl Strip {
     /// The quasi-TEM mode at a frequency (zero allowed).
     pub fn at(&self, f_hz: f64) -> Mode {
         let f_n = self.board.normalised_frequency_ghz_mm(f_hz);
-        let eps_eff = self.dispersion.single_eps_eff(f_n, self.statics.modes.eps_eff);
+        let eps_eff = self.dispersion.single_eps_eff(f_n, self.statics.modes.eps_eff, self.lid_factor);
         let factor = self.dispersion.impedance_factor(f_n, self.statics.modes.eps_eff, eps_eff);
         let solved = self.solved_loss().and_then(|loss| loss.as_ref().ok());
         self.losses.mode(f_hz, &self.statics.modes, eps_eff, factor, solved)

@@ -4,6 +4,14 @@ use std::rc::Rc;
 
 use num_complex::Complex64;
 
+use super::block::Block;
+use super::block::INNER_OHM;
+use super::block::gap_s;
+use super::block::ground_s;
+use super::block::junction_s;
+use super::block::ladder_s;
+use super::block::line_s;
+use super::coupled::array_s;
 use super::curve::Curves;
 use super::join::JoinPlan;
 use super::join::Scratch;
@@ -12,45 +20,91 @@ use super::response::Response;
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Problem;
+use crate::layout::Corner;
 use crate::layout::Layout;
 use crate::layout::Part;
+use crate::line;
+use crate::line::Array;
+use crate::line::ArrayModes;
 use crate::line::Book;
 use crate::line::Coplanar;
+use crate::line::Cross;
 use crate::line::Models;
 use crate::line::Pair;
 use crate::line::Strip;
+use crate::line::Tee;
+use crate::line::ViaHoles;
+
+use crate::line::cross;
+use crate::line::gap::unequal_gap;
 use crate::line::open_end;
 use crate::line::step;
+use crate::line::tee;
+use crate::line::via;
 use crate::order::LaunchShape;
 
-/// Reference impedance of every inner joint; any real value gives the same result.
-const INNER_OHM: f64 = 50.0;
 /// Straight pieces that stand for a taper; more changes |S11| by less than 1e-4 on the launches of the embedded classes.
 const TAPER_PIECES: usize = 6;
 /// With fewer frequencies than this the constants are computed at each of them instead of being interpolated.
 const INTERPOLATE_FROM: usize = 48;
 
-/// What one scattering block of the circuit is.
-#[derive(Clone, Debug)]
-enum Block {
-    /// A single strip: index into the strips, length.
-    Line { strip: usize, length_m: f64 },
-    /// A pad between grounds.
-    Coplanar { line: usize, length_m: f64 },
-    /// Two coupled strips, nodes near 1, near 2, far 1, far 2.
-    Pair { pair: usize, length_m: f64 },
-    /// Open end of a strip.
-    OpenEnd { strip: usize },
-    /// Step in width: series inductance either side of a shunt capacitance.
-    Step { first_h: f64, shunt_f: f64, second_h: f64 },
-    /// From the reference impedance of a port to the inner one.
-    Reference { gamma: f64 },
-}
-
 /// Constants of one strip at one frequency: index, impedance, attenuation, conductance and extension of its open end.
 type StripConstants = [f64; 5];
 /// Constants of a pair: even index, impedance, attenuation, then odd.
 type PairConstants = [f64; 6];
+
+/// All constants at the frequency that is being computed.
+struct Now {
+    strips: Vec<StripConstants>,
+    pairs: Vec<PairConstants>,
+    /// Reflection of each strip's open end.
+    ends: Vec<Complex64>,
+    arrays: Vec<ArrayModes>,
+    junctions: Vec<JunctionAt>,
+}
+
+/// Where arms meet.
+enum Junction {
+    Tee(Tee),
+    Cross(Cross),
+}
+
+/// A junction at a frequency: what each arm takes out of its strip's length, its transformer, the susceptance where they meet.
+struct JunctionAt {
+    arms: usize,
+    shifts_m: [f64; 4],
+    turns: [f64; 4],
+    shunt_s: f64,
+}
+
+impl Junction {
+    /// Arms in the order of the part's nodes.
+    fn at(&self, f_hz: f64) -> JunctionAt {
+        match self {
+            Junction::Tee(tee) => {
+                let at = tee.at(f_hz);
+                JunctionAt {
+                    arms: 3,
+                    shifts_m: [at.shift_1_m, at.shift_2_m, at.shift_side_m, 0.0],
+                    turns: [at.turns_1, at.turns_2, 1.0, 1.0],
+                    shunt_s: at.shunt_s,
+                }
+            }
+            Junction::Cross(cross) => {
+                let at = cross.at(f_hz);
+                let [one, side, two, other] = at.shifts_m;
+                JunctionAt { arms: 4, shifts_m: [one, two, side, other], turns: [1.0; 4], shunt_s: at.shunt_s }
+            }
+        }
+    }
+
+    fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
+        match self {
+            Junction::Tee(tee) => tee.problems(up_to_hz),
+            Junction::Cross(cross) => cross.problems(up_to_hz),
+        }
+    }
+}
 
 /// The circuit of a layout, ready to be evaluated at any frequency.
 pub struct Circuit {
@@ -58,6 +112,10 @@ pub struct Circuit {
     blocks: Vec<Block>,
     strips: Vec<(Nm, Rc<Strip>)>,
     pairs: Vec<((Nm, Nm), Rc<Pair>)>,
+    arrays: Vec<(Vec<Nm>, Vec<Nm>, Rc<Array>)>,
+    junctions: Vec<Junction>,
+    /// Warnings of models whose range does not depend on frequency.
+    range: Vec<Problem>,
     coplanar: Vec<Coplanar>,
     ports_ohm: [f64; 2],
     lossless: bool,
@@ -83,61 +141,130 @@ impl Circuit {
             blocks: Vec::new(),
             strips: Vec::new(),
             pairs: Vec::new(),
+            arrays: Vec::new(),
+            junctions: Vec::new(),
+            range: Vec::new(),
             coplanar: Vec::new(),
             ports_ohm,
             lossless: book.built().lossless,
         };
-        let mut nodes: Vec<Vec<usize>> = Vec::new();
-        let mut fresh = layout.nodes.len();
+        let mut joints = Joints { blocks: Vec::new(), nodes: Vec::new(), fresh: layout.nodes.len() };
         let mut external = layout.ports.clone();
-        let width = |node: usize| layout.nodes[node].width();
         for placed in &layout.parts {
-            let block = match &placed.part {
-                Part::Lines { widths, length, .. } if widths.len() == 1 => {
-                    Block::Line { strip: circuit.strip(book, widths[0]), length_m: length.m() }
-                }
-                Part::Lines { widths, gaps, length } if widths.len() == 2 && widths[0] == widths[1] => {
-                    Block::Pair { pair: circuit.pair(book, widths[0], gaps[0]), length_m: length.m() }
-                }
-                Part::Lines { widths, .. } => {
-                    return Err(Problem::error(
-                        "strips-not-modelled",
-                        Place::Whole,
-                        format!("{} coupled strips of unequal width have no line model here", widths.len()),
-                        "use sections of two equal strips",
-                    ));
-                }
-                Part::OpenEnd => Block::OpenEnd { strip: circuit.strip(book, width(placed.nodes[0])) },
-                Part::Step => step_block(&book.strip(width(placed.nodes[0])), &book.strip(width(placed.nodes[1]))),
+            match &placed.part {
                 Part::Launch { port, shape, run } => {
                     if planes == Planes::Edge {
                         let mut end = placed.nodes[0];
-                        for piece in circuit.launch(book, shape, *run, width(end)) {
-                            circuit.blocks.push(piece);
-                            nodes.push(vec![end, fresh]);
-                            end = fresh;
-                            fresh += 1;
+                        for piece in circuit.launch(book, shape, *run, layout.nodes[end].width()) {
+                            end = joints.onward(end, piece);
                         }
                         if let Some(place) = external.get_mut(port - 1) {
                             *place = end;
                         }
                     }
-                    continue;
                 }
-            };
-            circuit.blocks.push(block);
-            nodes.push(placed.nodes.clone());
+                part => circuit.part(book, layout, part, &placed.nodes, &mut joints)?,
+            }
         }
         for (place, z0_ohm) in external.iter_mut().zip(ports_ohm) {
             if z0_ohm != INNER_OHM {
-                circuit.blocks.push(Block::Reference { gamma: (INNER_OHM - z0_ohm) / (INNER_OHM + z0_ohm) });
-                nodes.push(vec![fresh, *place]);
-                *place = fresh;
-                fresh += 1;
+                let outer = joints.node();
+                joints.push(Block::Reference { gamma: (INNER_OHM - z0_ohm) / (INNER_OHM + z0_ohm) }, vec![outer, *place]);
+                *place = outer;
             }
         }
-        circuit.plan = JoinPlan::new(&nodes, &external).ok_or_else(not_joined)?;
+        circuit.blocks = joints.blocks;
+        circuit.plan = JoinPlan::new(&joints.nodes, &external).ok_or_else(not_joined)?;
         Ok(circuit)
+    }
+
+    /// The blocks of a part other than a launch.
+    fn part(&mut self, book: &Book, layout: &Layout, part: &Part, nodes: &[usize], joints: &mut Joints) -> Result<(), Problem> {
+        let width = |arm: usize| layout.nodes[nodes[arm]].width();
+        let block = match part {
+            Part::Lines { widths, length, .. } if widths.len() == 1 => {
+                Block::Line { strip: self.strip(book, widths[0]), length_m: length.m() }
+            }
+            Part::Lines { widths, gaps, length } if widths.len() == 2 && widths[0] == widths[1] => {
+                Block::Pair { pair: self.pair(book, widths[0], gaps[0]), length_m: length.m() }
+            }
+            Part::Lines { widths, gaps, length } => Block::Array { array: self.array(book, widths, gaps)?, length_m: length.m() },
+            Part::OpenEnd => Block::OpenEnd { strip: self.strip(book, width(0)) },
+            Part::Step => step_block(&book.strip(width(0)), &book.strip(width(1))),
+            Part::Gap { width: across } => {
+                let model = unequal_gap(&book.strip(width(0)), &book.strip(width(1)), across.m());
+                Block::Gap { first_f: model.shunt_one_f, series_f: model.series_f, second_f: model.shunt_other_f }
+            }
+            Part::Bend(corner) => return self.bend(book, *corner, width(0), nodes, joints),
+            Part::Tee => {
+                let arms = [0, 1, 2].map(|arm| book.strip(width(arm)));
+                return self.junction(book, layout, Junction::Tee(tee(&arms[0], &arms[1], &arms[2])), nodes, joints);
+            }
+            Part::Cross => {
+                // Round the crossing: through, side, through, side.
+                let arms = [0, 2, 1, 3].map(|arm| book.strip(width(arm)));
+                return self.junction(book, layout, Junction::Cross(cross([&arms[0], &arms[1], &arms[2], &arms[3]])), nodes, joints);
+            }
+            Part::Via { diameter, count, pitch, .. } => {
+                let plating_m = book.built().hole_plating_m;
+                let holes = ViaHoles::row(diameter.m() + 2.0 * plating_m, plating_m, *count, pitch.m());
+                Block::Ground { via: via(book.built(), &holes) }
+            }
+            Part::Launch { .. } => return Ok(()),
+        };
+        joints.push(block, nodes.to_vec());
+        Ok(())
+    }
+
+    /// A corner: the model between its mouths, and what lies between these and the inner corner of a long cut; an arc is a line.
+    fn bend(&mut self, book: &Book, corner: Corner, width: Nm, nodes: &[usize], joints: &mut Joints) -> Result<(), Problem> {
+        let strip = self.strip(book, width);
+        let shape = match corner {
+            Corner::Rounded { radius } => {
+                // The little that an arc's impedance differs from the straight strip's is left out; `problems` warns of tight arcs.
+                let curve = line::rounded_bend(&book.strip(width), radius.m());
+                self.range.extend(curve.problems());
+                joints.push(Block::Line { strip, length_m: curve.length_m }, nodes.to_vec());
+                return Ok(());
+            }
+            Corner::Square => line::Corner::Square,
+            Corner::Mitred { cut } => line::Corner::Mitred(line::Mitre::Cut(cut.m() / (2.0 * width.m()))),
+        };
+        let model = line::bend(&book.strip(width), shape);
+        self.range.extend(model.problems());
+        let (mut near, mut far) = (nodes[0], nodes[1]);
+        let shoulder = corner.shoulder(width);
+        if shoulder > Nm::ZERO {
+            near = joints.onward(near, Block::Line { strip, length_m: shoulder.m() });
+            far = joints.onward(far, Block::Line { strip, length_m: shoulder.m() });
+        }
+        joints.push(Block::Ladder { first_h: model.series_h, shunt_f: model.shunt_f, second_h: model.series_h }, vec![near, far]);
+        Ok(())
+    }
+
+    /// A tee or a cross: each arm's shift, and the point where they meet.
+    fn junction(&mut self, book: &Book, layout: &Layout, model: Junction, nodes: &[usize], joints: &mut Joints) -> Result<(), Problem> {
+        let junction = self.junctions.len();
+        self.junctions.push(model);
+        let inner = nodes
+            .iter()
+            .enumerate()
+            .map(|(arm, node)| {
+                let strip = self.strip(book, layout.nodes[*node].width());
+                joints.onward(*node, Block::Arm { junction, arm, strip })
+            })
+            .collect();
+        joints.push(Block::Junction { junction }, inner);
+        Ok(())
+    }
+
+    fn array(&mut self, book: &Book, widths: &[Nm], gaps: &[Nm]) -> Result<usize, Problem> {
+        if let Some(known) = self.arrays.iter().position(|(w, g, _)| w == widths && g == gaps) {
+            return Ok(known);
+        }
+        let array = book.array(widths, gaps);
+        self.arrays.push((widths.to_vec(), gaps.to_vec(), array));
+        Ok(self.arrays.len() - 1)
     }
 
     fn strip(&mut self, book: &Book, width: Nm) -> usize {
@@ -181,12 +308,17 @@ impl Circuit {
     /// Which models gave the constants of its strips and pairs.
     pub fn models(&self) -> Models {
         Models::of(self.strips.iter().map(|(_, strip)| &**strip), self.pairs.iter().map(|(_, pair)| &**pair))
+            .with_arrays(self.arrays.iter().map(|(_, _, array)| &**array))
     }
 
     /// Warnings of the line models where the circuit leaves their ranges up to a frequency, one of each kind.
     pub fn problems(&self, up_to_hz: f64) -> Vec<Problem> {
-        let all =
+        let lines =
             self.strips.iter().flat_map(|(_, s)| s.problems(up_to_hz)).chain(self.pairs.iter().flat_map(|(_, p)| p.problems(up_to_hz)));
+        let arrays = self.arrays.iter().flat_map(|(_, _, array)| array.problems(up_to_hz));
+        let junctions = self.junctions.iter().flat_map(|junction| junction.problems(up_to_hz));
+        let vias = self.blocks.iter().flat_map(|block| if let Block::Ground { via } = block { via.problems() } else { Vec::new() });
+        let all = lines.chain(arrays).chain(junctions).chain(vias).chain(self.range.iter().cloned());
         let mut kept: Vec<Problem> = Vec::new();
         for problem in all {
             // One size out of range in several strips is said once.
@@ -203,9 +335,13 @@ impl Circuit {
         let mut scratch = self.plan.scratch();
         let mut result = [Complex64::ZERO; 4];
         let mut s = Vec::with_capacity(f_hz.len());
-        let mut strips = vec![[0.0; 5]; self.strips.len()];
-        let mut pairs = vec![[0.0; 6]; self.pairs.len()];
-        let mut ends = vec![Complex64::ZERO; self.strips.len()];
+        let mut now = Now {
+            strips: vec![[0.0; 5]; self.strips.len()],
+            pairs: vec![[0.0; 6]; self.pairs.len()],
+            ends: vec![Complex64::ZERO; self.strips.len()],
+            arrays: Vec::new(),
+            junctions: Vec::new(),
+        };
         let curves = match (f_hz.first(), f_hz.last()) {
             (Some(first), Some(last)) if f_hz.len() >= INTERPOLATE_FROM => Some(self.curves(*first, *last)),
             _ => None,
@@ -213,15 +349,17 @@ impl Circuit {
         for f in f_hz {
             match &curves {
                 Some((strip_curves, pair_curves)) => {
-                    strips.iter_mut().zip(strip_curves).for_each(|(c, curve)| *c = curve.at(*f));
-                    pairs.iter_mut().zip(pair_curves).for_each(|(c, curve)| *c = curve.at(*f));
+                    now.strips.iter_mut().zip(strip_curves).for_each(|(c, curve)| *c = curve.at(*f));
+                    now.pairs.iter_mut().zip(pair_curves).for_each(|(c, curve)| *c = curve.at(*f));
                 }
                 None => {
-                    strips.iter_mut().zip(&self.strips).for_each(|(c, (_, strip))| *c = strip_constants(strip, *f));
-                    pairs.iter_mut().zip(&self.pairs).for_each(|(c, (_, pair))| *c = pair_constants(pair, *f));
+                    now.strips.iter_mut().zip(&self.strips).for_each(|(c, (_, strip))| *c = strip_constants(strip, *f));
+                    now.pairs.iter_mut().zip(&self.pairs).for_each(|(c, (_, pair))| *c = pair_constants(pair, *f));
                 }
             }
-            self.fill(*f, &strips, &pairs, &mut ends, &mut scratch);
+            now.arrays = self.arrays.iter().map(|(_, _, array)| array.at(*f)).collect();
+            now.junctions = self.junctions.iter().map(|junction| junction.at(*f)).collect();
+            self.fill(*f, &mut now, &mut scratch);
             self.plan.run(&mut scratch, &mut result);
             s.push([result[0], result[2], result[1], result[3]]);
         }
@@ -237,16 +375,16 @@ impl Circuit {
     }
 
     /// Writes the block matrices at one frequency into the first slots of the scratch.
-    fn fill(&self, f_hz: f64, strips: &[StripConstants], pairs: &[PairConstants], ends: &mut [Complex64], scratch: &mut Scratch) {
+    fn fill(&self, f_hz: f64, now: &mut Now, scratch: &mut Scratch) {
         let wave = std::f64::consts::TAU * f_hz / crate::line::C_M_PER_S;
-        for (end, [index, z0_ohm, _, conductance_s, extension_m]) in ends.iter_mut().zip(strips) {
+        for (end, [index, z0_ohm, _, conductance_s, extension_m]) in now.ends.iter_mut().zip(&now.strips) {
             let y = Complex64::new(*conductance_s, (wave * index * extension_m).tan() / z0_ohm) * INNER_OHM;
             *end = (1.0 - y) / (1.0 + y);
         }
         for (block, out) in self.blocks.iter().zip(&mut scratch.blocks) {
             match block {
                 Block::Line { strip, length_m } => {
-                    let [index, z0_ohm, alpha, ..] = strips[*strip];
+                    let [index, z0_ohm, alpha, ..] = now.strips[*strip];
                     let (s11, s21) = line_s(wave * index, alpha, z0_ohm, *length_m);
                     out.copy_from_slice(&[s11, s21, s21, s11]);
                 }
@@ -257,7 +395,7 @@ impl Circuit {
                     out.copy_from_slice(&[s11, s21, s21, s11]);
                 }
                 Block::Pair { pair, length_m } => {
-                    let [even_index, even_ohm, even_alpha, odd_index, odd_ohm, odd_alpha] = pairs[*pair];
+                    let [even_index, even_ohm, even_alpha, odd_index, odd_ohm, odd_alpha] = now.pairs[*pair];
                     let (e11, e21) = line_s(wave * even_index, even_alpha, even_ohm, *length_m);
                     let (o11, o21) = line_s(wave * odd_index, odd_alpha, odd_ohm, *length_m);
                     let (own, near, through, across) = (0.5 * (e11 + o11), 0.5 * (e11 - o11), 0.5 * (e21 + o21), 0.5 * (e21 - o21));
@@ -268,8 +406,20 @@ impl Circuit {
                         across, through, near, own,
                     ]);
                 }
-                Block::OpenEnd { strip } => out[0] = ends[*strip],
-                Block::Step { first_h, shunt_f, second_h } => out.copy_from_slice(&step_s([*first_h, *shunt_f, *second_h], f_hz)),
+                Block::OpenEnd { strip } => out[0] = now.ends[*strip],
+                Block::Ladder { first_h, shunt_f, second_h } => out.copy_from_slice(&ladder_s([*first_h, *shunt_f, *second_h], f_hz)),
+                Block::Gap { first_f, series_f, second_f } => out.copy_from_slice(&gap_s([*first_f, *series_f, *second_f], f_hz)),
+                Block::Array { array, length_m } => array_s(&now.arrays[*array], wave, *length_m, out),
+                Block::Junction { junction } => {
+                    let at = &now.junctions[*junction];
+                    junction_s(&at.turns[..at.arms], at.shunt_s, out);
+                }
+                Block::Arm { junction, arm, strip } => {
+                    let [index, z0_ohm, ..] = now.strips[*strip];
+                    let (s11, s21) = line_s(wave * index, 0.0, z0_ohm, -now.junctions[*junction].shifts_m[*arm]);
+                    out.copy_from_slice(&[s11, s21, s21, s11]);
+                }
+                Block::Ground { via } => out[0] = ground_s(via.inductance_h, via.resistance_ohm(f_hz), f_hz),
                 Block::Reference { gamma } => {
                     let through = Complex64::from((1.0 - gamma * gamma).sqrt());
                     out.copy_from_slice(&[Complex64::from(*gamma), through, through, Complex64::from(-gamma)]);
@@ -298,12 +448,30 @@ fn pair_constants(pair: &Pair, f_hz: f64) -> PairConstants {
     [even.eps_eff.sqrt(), even.z0_ohm, even.alpha_np_per_m(), odd.eps_eff.sqrt(), odd.z0_ohm, odd.alpha_np_per_m()]
 }
 
-/// S11 and S21 of a line between the inner reference impedance.
-fn line_s(beta_rad_per_m: f64, alpha_np_per_m: f64, z0_ohm: f64, length_m: f64) -> (Complex64, Complex64) {
-    let t = Complex64::from_polar((-alpha_np_per_m * length_m).exp(), -beta_rad_per_m * length_m);
-    let gamma = (z0_ohm - INNER_OHM) / (z0_ohm + INNER_OHM);
-    let inverse = (1.0 - gamma * gamma * t * t).inv();
-    (gamma * (1.0 - t * t) * inverse, (1.0 - gamma * gamma) * t * inverse)
+/// The blocks so far with the nodes each joins, and the next node that is free.
+struct Joints {
+    blocks: Vec<Block>,
+    nodes: Vec<Vec<usize>>,
+    fresh: usize,
+}
+
+impl Joints {
+    fn node(&mut self) -> usize {
+        self.fresh += 1;
+        self.fresh - 1
+    }
+
+    fn push(&mut self, block: Block, nodes: Vec<usize>) {
+        self.blocks.push(block);
+        self.nodes.push(nodes);
+    }
+
+    /// A two-port from a node to a new one, which is returned.
+    fn onward(&mut self, from: usize, block: Block) -> usize {
+        let to = self.node();
+        self.push(block, vec![from, to]);
+        to
+    }
 }
 
 /// The step from one strip to the next, whichever is wider.
@@ -311,17 +479,5 @@ fn step_block(from: &Strip, to: &Strip) -> Block {
     let model = step(from, to);
     let (wide, narrow) = (model.wide_inductance_h, model.narrow_inductance_h);
     let (first_h, second_h) = if from.width_m() >= to.width_m() { (wide, narrow) } else { (narrow, wide) };
-    Block::Step { first_h, shunt_f: model.capacitance_f, second_h }
-}
-
-/// The step as series inductance, shunt capacitance, series inductance.
-fn step_s([first_h, shunt_f, second_h]: [f64; 3], f_hz: f64) -> [Complex64; 4] {
-    let w = std::f64::consts::TAU * f_hz;
-    let (l1, l2) = (Complex64::new(0.0, w * first_h), Complex64::new(0.0, w * second_h));
-    let y = Complex64::new(0.0, w * shunt_f);
-    let (a, b, c, d) = (1.0 + l1 * y, l1 + l2 + l1 * l2 * y, y, 1.0 + l2 * y);
-    let (b, c) = (b / INNER_OHM, c * INNER_OHM);
-    let inverse = (a + b + c + d).inv();
-    let through = 2.0 * inverse;
-    [(a + b - c - d) * inverse, through, through, (d + b - c - a) * inverse]
+    Block::Ladder { first_h, shunt_f: model.capacitance_f, second_h }
 }

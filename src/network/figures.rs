@@ -10,22 +10,23 @@ use crate::order::ResponseShape;
 /// Figures of a predicted (or solved) response.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Figures {
-    /// Centre of the passband, hertz: middle of the 3 dB edges.
+    /// Where the loss is read, hertz: the middle of the 3 dB edges of a passband, half the cutoff of a low-pass, half the lower edge of a
+    /// stopband.
     pub center_hz: f64,
     /// -|S21| at the centre, dB.
     pub center_loss_db: f64,
-    /// Edges 3 dB below the loss at the centre, hertz; `None` when not within the sweep.
-    pub edges_3db_hz: Option<[f64; 2]>,
-    /// Equal-ripple edges, hertz (equal ripple only): going in from the 3 dB edges, where the return loss first reaches the prototype's.
-    /// Read off the return loss, since dissipation rounds the edges of |S21|.
-    pub ripple_edges_hz: Option<[f64; 2]>,
-    /// Greatest -|S21| between the ordered band edges, dB.
+    /// Edges 3 dB below the loss at the centre, hertz: two, one of a low-pass, none when not within the sweep.
+    pub edges_3db_hz: Vec<f64>,
+    /// Equal-ripple edges, hertz (passbands of equal ripple only): going in from the 3 dB edges, where the return loss first reaches the
+    /// prototype's. Read off the return loss, since dissipation rounds the edges of |S21|.
+    pub ripple_edges_hz: Vec<f64>,
+    /// Greatest -|S21| in the ordered passband, dB; below the stopband of a band-stop.
     pub worst_loss_db: f64,
-    /// Least return loss of either port between the ordered band edges, dB.
+    /// Least return loss of either port there, dB.
     pub return_loss_db: f64,
     /// Group delay at the centre, seconds.
     pub group_delay_s: f64,
-    /// Nearest spurious passband above: where -|S21| next falls below 10 dB over the centre loss, hertz.
+    /// Nearest spurious passband above: where -|S21| next falls below 10 dB over the centre loss, hertz; none for a band-stop.
     pub spurious_hz: Option<f64>,
     /// One per limit of each requirement.
     pub verdicts: Vec<Verdict>,
@@ -84,18 +85,35 @@ impl Figures {
     /// # Accuracy
     /// Values between the response's points are interpolated linearly in dB; [`sweep_hz`] spaces the points so that this is below 0.01 dB.
     pub fn of(order: &Order, response: &Response) -> Figures {
-        let [from_hz, to_hz] = passband_hz(order);
         let reader = Reader { response };
-        let ordered_center_hz = 0.5 * (from_hz + to_hz);
-        let edges_3db_hz = reader.edges(ordered_center_hz, reader.loss_db(ordered_center_hz) + HALF_POWER_DB);
-        let center_hz = edges_3db_hz.map_or(ordered_center_hz, |[low, high]| 0.5 * (low + high));
-        let center_loss_db = reader.loss_db(center_hz);
-        let ripple_edges_hz = match order.filter.response {
-            shape @ ResponseShape::EqualRipple { .. } => {
-                edges_3db_hz.and_then(|edges| reader.return_loss_edges(edges, shape.return_loss_db()))
+        let [from_hz, to_hz] = passes_hz(order)[0];
+        let level_over = |f_hz: f64| reader.loss_db(f_hz) + HALF_POWER_DB;
+        let edges_3db_hz = match order.filter.band {
+            Band::LowPass { cutoff_hz } => Vec::from_iter(reader.rises(0.5 * cutoff_hz, level_over(0.5 * cutoff_hz))),
+            Band::BandStop { from_hz, to_hz } => {
+                let level_db = level_over(0.5 * from_hz);
+                reader.falls(0.5 * (from_hz + to_hz), level_db).map_or_else(Vec::new, Vec::from)
             }
-            ResponseShape::MaximallyFlat => None,
+            Band::HighPass { from_hz, to_hz } | Band::BandPass { from_hz, to_hz } => {
+                let center_hz = 0.5 * (from_hz + to_hz);
+                reader.edges(center_hz, level_over(center_hz)).map_or_else(Vec::new, Vec::from)
+            }
         };
+        let center_hz = match (order.filter.band, &edges_3db_hz[..]) {
+            (Band::LowPass { cutoff_hz }, _) => 0.5 * cutoff_hz,
+            (Band::BandStop { from_hz, .. }, _) => 0.5 * from_hz,
+            (_, [low, high]) => 0.5 * (low + high),
+            _ => 0.5 * (from_hz + to_hz),
+        };
+        let center_loss_db = reader.loss_db(center_hz);
+        let is_pass = matches!(order.filter.band, Band::HighPass { .. } | Band::BandPass { .. });
+        let ripple_edges_hz = match (order.filter.response, &edges_3db_hz[..]) {
+            (shape @ ResponseShape::EqualRipple { .. }, &[low, high]) if is_pass => {
+                reader.return_loss_edges([low, high], shape.return_loss_db()).map_or_else(Vec::new, Vec::from)
+            }
+            _ => Vec::new(),
+        };
+        let above_hz = edges_3db_hz.last().copied().filter(|_| !matches!(order.filter.band, Band::BandStop { .. }));
         let verdicts = order.requirements.iter().enumerate().flat_map(|(index, requirement)| {
             let reader = &reader;
             requirement.limits.iter().map(move |limit| reader.verdict(index, requirement, *limit, center_loss_db))
@@ -103,12 +121,12 @@ impl Figures {
         Figures {
             center_hz,
             center_loss_db,
-            edges_3db_hz,
             ripple_edges_hz,
             worst_loss_db: reader.over(from_hz, to_hz).map(|f| reader.loss_db(f)).fold(0.0, f64::max),
             return_loss_db: reader.over(from_hz, to_hz).map(|f| reader.return_loss_db(f)).fold(f64::INFINITY, f64::min),
             group_delay_s: reader.delay_s(center_hz),
-            spurious_hz: edges_3db_hz.and_then(|[_, high]| reader.spurious_hz(high, center_loss_db + SPURIOUS_DB)),
+            spurious_hz: above_hz.and_then(|above_hz| reader.spurious_hz(above_hz, center_loss_db + SPURIOUS_DB)),
+            edges_3db_hz,
             verdicts: verdicts.collect(),
         }
     }
@@ -127,6 +145,15 @@ pub fn passband_hz(order: &Order) -> [f64; 2] {
     match order.filter.band {
         Band::BandPass { from_hz, to_hz } | Band::HighPass { from_hz, to_hz } | Band::BandStop { from_hz, to_hz } => [from_hz, to_hz],
         Band::LowPass { cutoff_hz } => [0.0, cutoff_hz],
+    }
+}
+
+/// What the filter passes, as ordered: one interval, two of a band-stop, of which the upper is as wide as the stopband.
+pub fn passes_hz(order: &Order) -> Vec<[f64; 2]> {
+    match order.filter.band {
+        Band::BandPass { from_hz, to_hz } | Band::HighPass { from_hz, to_hz } => vec![[from_hz, to_hz]],
+        Band::LowPass { cutoff_hz } => vec![[0.0, cutoff_hz]],
+        Band::BandStop { from_hz, to_hz } => vec![[0.0, from_hz], [to_hz, to_hz + (to_hz - from_hz)]],
     }
 }
 
@@ -213,6 +240,30 @@ impl Reader<'_> {
         };
         let low = (0..middle).rev().find(|i| loss(*i) > level_db).map(|i| cross(i + 1, i))?;
         let high = (middle + 1..f.len()).find(|i| loss(*i) > level_db).map(|i| cross(i - 1, i))?;
+        Some([low, high])
+    }
+
+    /// Going up from `start_hz`, where the loss first exceeds `level_db`.
+    fn rises(&self, start_hz: f64, level_db: f64) -> Option<f64> {
+        let f = self.f();
+        let loss = |i: usize| self.response.insertion_loss_db(i);
+        let start = f.partition_point(|x| *x < start_hz).max(1);
+        let outside = (start..f.len()).find(|i| loss(*i) > level_db)?;
+        let part = (level_db - loss(outside - 1)) / (loss(outside) - loss(outside - 1));
+        Some(f[outside - 1] + part.clamp(0.0, 1.0) * (f[outside] - f[outside - 1]))
+    }
+
+    /// Going out from the middle of a stopband, where the loss first falls below `level_db` on each side.
+    fn falls(&self, middle_hz: f64, level_db: f64) -> Option<[f64; 2]> {
+        let f = self.f();
+        let loss = |i: usize| self.response.insertion_loss_db(i);
+        let middle = f.partition_point(|x| *x < middle_hz).min(f.len().checked_sub(1)?);
+        let cross = |stopped: usize, passed: usize| {
+            let part = (loss(stopped) - level_db) / (loss(stopped) - loss(passed));
+            f[stopped] + part.clamp(0.0, 1.0) * (f[passed] - f[stopped])
+        };
+        let low = (0..middle).rev().find(|i| loss(*i) < level_db).map(|i| cross(i + 1, i))?;
+        let high = (middle + 1..f.len()).find(|i| loss(*i) < level_db).map(|i| cross(i - 1, i))?;
         Some([low, high])
     }
 

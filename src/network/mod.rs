@@ -1,6 +1,8 @@
 //! Layout and as-built lines to S-parameters, response figures and Touchstone.
 
+mod block;
 mod circuit;
+mod coupled;
 mod curve;
 mod figures;
 mod join;
@@ -8,7 +10,7 @@ mod response;
 pub mod touchstone;
 
 pub use circuit::{Circuit, Planes};
-pub use figures::{Figures, Verdict, passband_hz, sweep_hz};
+pub use figures::{Figures, Verdict, passband_hz, passes_hz, sweep_hz};
 pub use response::{Method, Response, level_db};
 
 use crate::base::Outcome;

@@ -1,7 +1,7 @@
 //! The keys of a laminate, in the order and in a class file.
 
 use super::table::{Size, Table};
-use super::types::{Copper, FINISHES, Laminate, LaminateKind};
+use super::types::{Copper, FINISHES, Laminate, LaminateKind, RoughnessLaw};
 use crate::base::Dimensionality;
 
 /// Thickness of the dielectric.
@@ -11,6 +11,11 @@ const FOIL: Size = Size { kind: Dimensionality::CopperThickness, unit: "um", lea
 const PLATING: Size = Size { least: 0.0, usual: "25 um", ..FOIL };
 const ROUGHNESS: Size = Size { least: 0.0, greatest: 20e-6, usual: "1.5 um", ..FOIL };
 const CONDUCTIVITY: Size = Size { kind: Dimensionality::Conductivity, unit: "MS/m", least: 1e6, greatest: 65e6, usual: "58 MS/m" };
+
+const TEN_POINT_HEIGHT: Size = Size { greatest: 100e-6, usual: "6 um", ..ROUGHNESS };
+
+/// The words of `roughness-law`.
+pub const ROUGHNESS_LAWS: &[&str] = &["hammerstad-jensen", "stacked-spheres"];
 
 /// Kinds of laminate with their words.
 pub const KINDS: &[(&str, LaminateKind)] = &[
@@ -99,6 +104,37 @@ fn copper(t: &Table<'_>, class: Option<&Copper>) -> Option<Copper> {
     let plating_m = c.size("plating", &PLATING, class.map(|c| c.plating_m));
     let roughness_m = c.size("roughness", &ROUGHNESS, class.map(|c| c.roughness_m));
     let conductivity = c.size("conductivity", &CONDUCTIVITY, class.map(|c| c.conductivity_s_per_m));
+    let roughness_law = roughness_law(&c, class.map(|c| c.roughness_law));
     c.finish();
-    Some(Copper { base_m: base_m?, plating_m: plating_m?, roughness_m: roughness_m?, conductivity_s_per_m: conductivity? })
+    Some(Copper {
+        base_m: base_m?,
+        plating_m: plating_m?,
+        roughness_m: roughness_m?,
+        roughness_law: roughness_law?,
+        conductivity_s_per_m: conductivity?,
+    })
+}
+
+/// The law, and the height that the second one needs. Without the key it is the class's, else the first.
+fn roughness_law(c: &Table<'_>, class: Option<RoughnessLaw>) -> Option<RoughnessLaw> {
+    const HEIGHT: &str = "ten-point-height";
+    let class = class.unwrap_or(RoughnessLaw::HammerstadJensen);
+    let word = usize::from(class != RoughnessLaw::HammerstadJensen);
+    let chosen = c.resolve("roughness-law", "\"hammerstad-jensen\"", Some(word), |t, k| t.word(k, ROUGHNESS_LAWS))?;
+    if chosen == 0 {
+        if c.has(HEIGHT) {
+            c.error(
+                "key-unused",
+                HEIGHT,
+                "ten-point-height is given, and the roughness law that is to be used does not know it",
+                "add roughness-law = \"stacked-spheres\", or take ten-point-height out",
+            );
+        }
+        return Some(RoughnessLaw::HammerstadJensen);
+    }
+    let of_class = match class {
+        RoughnessLaw::StackedSpheres { ten_point_height_m } => Some(ten_point_height_m),
+        RoughnessLaw::HammerstadJensen => None,
+    };
+    c.size(HEIGHT, &TEN_POINT_HEIGHT, of_class).map(|ten_point_height_m| RoughnessLaw::StackedSpheres { ten_point_height_m })
 }

@@ -256,6 +256,18 @@ pub struct Laminate {
 /// Surface finishes an order may name.
 pub const FINISHES: &[&str] = &["bare", "osp", "immersion-silver", "immersion-tin", "enig", "enepig", "hot-air-solder"];
 
+/// How the roughness of the foil raises the loss; the laws are in `line::section`.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum RoughnessLaw {
+    /// Of Hammerstad and Jensen, from Rq.
+    HammerstadJensen,
+    /// Stacked spheres, from the foil's own ten-point height.
+    StackedSpheres {
+        /// Rz of the laminate side.
+        ten_point_height_m: f64,
+    },
+}
+
 /// The copper as ordered.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Copper {
@@ -265,11 +277,21 @@ pub struct Copper {
     pub plating_m: f64,
     /// Rq of the foil's laminate side.
     pub roughness_m: f64,
+    /// By which law it costs.
+    pub roughness_law: RoughnessLaw,
     /// Conductivity, S/m.
     pub conductivity_s_per_m: f64,
 }
 
 impl Copper {
+    /// Rz of the foil's laminate side, where the law asks for it.
+    pub fn ten_point_height_m(&self) -> Option<f64> {
+        match self.roughness_law {
+            RoughnessLaw::HammerstadJensen => None,
+            RoughnessLaw::StackedSpheres { ten_point_height_m } => Some(ten_point_height_m),
+        }
+    }
+
     /// Finished thickness: base and plating.
     pub fn finished_m(&self) -> f64 {
         self.base_m + self.plating_m

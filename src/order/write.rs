@@ -3,13 +3,13 @@
 use std::fmt::Write;
 
 use super::board::{GRAINS, GROUNDS, MASKS, OUTLINES, SIDES, TEXTS};
-use super::laminate::KINDS;
+use super::laminate::{KINDS, ROUGHNESS_LAWS};
 use super::launch::SHAPES;
 use super::read::PAPERS;
 use super::shop::COMPENSATIONS;
 use super::types::{
     Band, BoardRequest, BoardSize, Compensation, Filter, Housing, Laminate, Launch, LaunchShape, Limit, Mask, Order, OwnValue, Requirement,
-    ResponseShape, Shop, Side, TextOn,
+    ResponseShape, RoughnessLaw, Shop, Side, TextOn,
 };
 use crate::base::Dimensionality;
 use crate::base::format_quantity;
@@ -211,10 +211,16 @@ fn laminate(out: &mut Text, laminate: &Laminate) {
     let copper = &laminate.copper;
     let um = |value| quantity(value, Dimensionality::CopperThickness, "um");
     let conductivity = quantity(copper.conductivity_s_per_m, Dimensionality::Conductivity, "MS/m");
+    let law = match copper.roughness_law {
+        RoughnessLaw::HammerstadJensen => quoted(ROUGHNESS_LAWS[0]),
+        RoughnessLaw::StackedSpheres { ten_point_height_m } => {
+            format!("{}, ten-point-height = {}", quoted(ROUGHNESS_LAWS[1]), um(ten_point_height_m))
+        }
+    };
     out.key(
         "copper",
         format!(
-            "{{ base = {}, plating = {}, roughness = {}, conductivity = {conductivity} }}",
+            "{{ base = {}, plating = {}, roughness = {}, roughness-law = {law}, conductivity = {conductivity} }}",
             um(copper.base_m),
             um(copper.plating_m),
             um(copper.roughness_m)

@@ -8,6 +8,7 @@ use crate::artwork::Fits;
 use crate::artwork::Hole;
 use crate::base::Nm;
 use crate::base::spelt_out;
+use crate::network::models;
 use crate::order::Compensation;
 use crate::order::LaminateKind;
 use crate::order::Mask;
@@ -44,6 +45,7 @@ pub fn write(job: &Job, out: &mut dyn Write) -> io::Result<()> {
     finish(&mut note, order);
     acceptance(&mut note, order);
     controlled(&mut note, order, board);
+    line_model(&mut note, job);
     compensation(&mut note, order);
     forbidden(&mut note, board);
     holes(&mut note, order, board);
@@ -329,6 +331,13 @@ fn controlled(note: &mut Note, order: &Order, board: &Board) {
         um(order.shop.undercut_m)
     ));
     note.bullet("A gap is held by its own tolerance, not by a share of the line width: gaps set the filter's bandwidth.");
+}
+
+/// What the widths and gaps rest on.
+fn line_model(note: &mut Note, job: &Job) {
+    let given = models(job.order(), job.bundle.layout);
+    let text = given.map_or_else(|_| "not known".to_string(), |models| models.describe());
+    note.text(&format!("Widths and gaps rest on the laminate and copper above by this line model: {text}."));
 }
 
 fn compensation(note: &mut Note, order: &Order) {

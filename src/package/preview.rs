@@ -468,7 +468,14 @@ fn figures(svg: &mut Svg, job: &Job, y: f64, right: f64) -> f64 {
     let none = || "\u{2013}".to_string();
     let cells = [
         ("centre", ghz(figures.center_hz)),
-        ("3 dB bandwidth", figures.edges_3db_hz.map_or_else(none, |[a, b]| format!("{} MHz", number((b - a) * 1e-6, 1)))),
+        (
+            if figures.edges_3db_hz.len() == 1 { "3 dB edge" } else { "3 dB bandwidth" },
+            match figures.edges_3db_hz[..] {
+                [a, b] => format!("{} MHz", number((b - a) * 1e-6, 1)),
+                [a] => ghz(a),
+                _ => none(),
+            },
+        ),
         ("loss at centre", format!("{:.2} dB", figures.center_loss_db)),
         ("worst in band", format!("{:.2} dB", figures.worst_loss_db)),
         ("return loss", format!("{:.1} dB", figures.return_loss_db)),

@@ -5,15 +5,18 @@ use super::refine;
 use crate::base::Place;
 use crate::base::Problem;
 use crate::family::Family;
+use crate::family::Target;
 use crate::network::Figures;
 use crate::network::predict;
 use crate::order::Limit;
 use crate::order::Order;
-use crate::prototype::attenuation_db;
 
 /// A degree whose lossless prototype falls short of a rejection by more than this is not tried: the distributed circuit and its losses
 /// add less than this at the frequencies of a requirement below the second passband.
 const HOPELESS_DB: f64 = 6.0;
+
+/// Degrees that find no geometry before the search ends: a greater one asks for weaker couplings and is as out of reach.
+const MOST_WITHOUT_GEOMETRY: usize = 2;
 
 /// A refined set with the reason for its degree.
 #[derive(Clone, Debug, PartialEq)]
@@ -45,8 +48,9 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
     }
     let (least, most) = family.degrees();
     let mut misses: Vec<Miss> = Vec::new();
+    let mut without_geometry = 0;
     for degree in least..=most {
-        if let Some(miss) = hopeless(order, degree) {
+        if let Some(miss) = hopeless(order, &family.target(order, degree)) {
             misses.push(Miss { degree, falls_short: true, why: miss });
             continue;
         }
@@ -60,6 +64,10 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
                 }
                 let first = problems.first().map_or_else(String::new, |p| p.message.clone());
                 misses.push(Miss { degree, falls_short: false, why: first });
+                without_geometry += 1;
+                if without_geometry == MOST_WITHOUT_GEOMETRY {
+                    break;
+                }
                 continue;
             }
         };
@@ -91,14 +99,11 @@ fn figures(family: &dyn Family, refined: &Refined) -> Result<Figures, Vec<Proble
 }
 
 /// Which rejection the lossless prototype of a degree already misses beyond hope.
-fn hopeless(order: &Order, degree: usize) -> Option<String> {
-    let [from_hz, to_hz] = crate::network::passband_hz(order);
-    let x = |f: f64| (2.0 * f - from_hz - to_hz) / (to_hz - from_hz);
+fn hopeless(order: &Order, target: &Target) -> Option<String> {
     order.requirements.iter().find_map(|requirement| {
         requirement.limits.iter().find_map(|limit| {
             let Limit::RejectionAtLeast { db, .. } = limit else { return None };
-            let nearest = x(requirement.from_hz).abs().min(x(requirement.to_hz).abs());
-            let found_db = attenuation_db(order.filter.response, degree, nearest);
+            let found_db = target.attenuation_db(requirement.from_hz).min(target.attenuation_db(requirement.to_hz));
             (found_db < db - HOPELESS_DB).then(|| {
                 format!(
                     "rejection about {found_db:.1} dB without loss where at least {db} dB is asked, {}",

@@ -3,6 +3,7 @@
 mod degree;
 mod least_squares;
 mod passband;
+mod probe;
 
 use crate::base::Nm;
 use crate::base::Place;
@@ -11,16 +12,17 @@ use crate::dimensions::Dimensions;
 use crate::family::Family;
 use crate::family::Knob;
 use crate::family::Moves;
+use crate::family::Target;
 use crate::line::AsBuilt;
 use crate::line::Book;
 use crate::network::Circuit;
 use crate::network::Planes;
-use crate::order::Band;
 use crate::order::ResponseShape;
 pub use degree::{Chosen, synthesize};
 use least_squares::minimize;
 use num_complex::Complex64;
-pub use passband::{Goal, Miss, Passband};
+pub use passband::{Miss, Passband};
+pub use probe::ProbeCurve;
 
 /// Iterations of the first stage, which fits the characteristic function over the band to the prototype's.
 const FIT_ITERATIONS: usize = 25;
@@ -32,9 +34,9 @@ const ALIGN_POINTS: usize = 201;
 const ALIGN_STEPS: usize = 3;
 /// Rounds of both stages.
 const ROUNDS: usize = 4;
-/// Sample points of the first stage per degree, over a quarter of the bandwidth more than the band on each side.
+/// Sample points of the first stage per degree, over an eighth of the bandwidth more than the band on each side.
 const SAMPLES_PER_DEGREE: usize = 7;
-const SAMPLE_REACH: f64 = 1.25;
+const SAMPLE_REACH: f64 = 0.125;
 /// Finite-difference step of a knob: large against the rounding of the layout to 1 nm, small against the curvature.
 const KNOB_STEP: f64 = 1e-3;
 /// A tenth of what is allowed: nothing that can be etched is gained by more.
@@ -53,22 +55,8 @@ pub struct Refined {
     pub before_snapping: Miss,
     /// And after.
     pub after_snapping: Miss,
-}
-
-/// The passband an order asks for at a degree.
-///
-/// # Errors
-/// `band-not-refined` for orders without a passband between two edges.
-pub fn goal(set: &Dimensions) -> Result<Goal, Problem> {
-    match set.order.filter.band {
-        Band::BandPass { from_hz, to_hz } => Ok(Goal { edges_hz: [from_hz, to_hz], degree: set.degree, shape: set.order.filter.response }),
-        _ => Err(Problem::error(
-            "band-not-refined",
-            Place::Key("filter.passband".into()),
-            "only passbands between two edges are refined",
-            "give passband = [from, to]",
-        )),
-    }
+    /// What the family's probes measured.
+    pub curves: Vec<ProbeCurve>,
 }
 
 /// Distance of a set's lossless passband from the prototype's.
@@ -77,10 +65,10 @@ pub fn goal(set: &Dimensions) -> Result<Goal, Problem> {
 /// `passband-lost` when the response has no passband near the ordered one; problems of the layout.
 pub fn miss(family: &dyn Family, set: &Dimensions) -> Result<Miss, Vec<Problem>> {
     let book = Book::new(AsBuilt::nominal(&set.order).without_loss());
-    miss_with(family, set, &goal(set).map_err(|p| vec![p])?, &book)
+    miss_with(family, set, &family.target(&set.order, set.degree), &book)
 }
 
-fn miss_with(family: &dyn Family, set: &Dimensions, goal: &Goal, book: &Book) -> Result<Miss, Vec<Problem>> {
+fn miss_with(family: &dyn Family, set: &Dimensions, goal: &Target, book: &Book) -> Result<Miss, Vec<Problem>> {
     let circuit = circuit(family, set, book)?;
     Passband::of(&circuit, goal).map(|passband| Miss::of(&passband, goal)).ok_or_else(|| vec![passband_lost()])
 }
@@ -104,10 +92,12 @@ fn circuit(family: &dyn Family, set: &Dimensions, book: &Book) -> Result<Circuit
 /// # Errors
 /// `passband-not-reached` when the goal is missed before snapping: the message says by how much; problems of the layout.
 pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Problem>> {
-    let goal = goal(guess).map_err(|p| vec![p])?;
+    let goal = family.target(&guess.order, guess.degree);
     let book = Book::new(AsBuilt::nominal(&guess.order).without_loss());
+    let (guess, curves) = probe::spaced(family, guess, &book);
+    let guess = &guess;
     let knobs = family.knobs(guess);
-    let mut search = Search { family, guess, goal, book: &book, knobs: &knobs };
+    let mut search = Search { family, guess, goal: goal.clone(), book: &book, knobs: &knobs };
     let x = search.run();
     let mut refined = guess.clone();
     apply(&knobs, &x, &mut refined);
@@ -119,23 +109,25 @@ pub fn refine(family: &dyn Family, guess: &Dimensions) -> Result<Refined, Vec<Pr
     }
     let before_snapping = miss_with(family, &refined, &goal, &book)?;
     if !before_snapping.is_met() {
-        return Err(vec![not_reached(&before_snapping, &goal)]);
+        return Err(vec![not_reached(&before_snapping, &goal, &curves)]);
     }
     let dimensions = snap(family, &refined, &goal, &book);
     let after_snapping = miss_with(family, &dimensions, &goal, &book)?;
-    Ok(Refined { dimensions, before_snapping, after_snapping })
+    Ok(Refined { dimensions, before_snapping, after_snapping, curves })
 }
 
-fn not_reached(miss: &Miss, goal: &Goal) -> Problem {
+fn not_reached(miss: &Miss, goal: &Target, curves: &[ProbeCurve]) -> Problem {
+    // What could not be had by itself is most likely the reason.
+    let lacking: Vec<String> =
+        curves.iter().filter(|curve| curve.found_m.is_none()).map(|curve| format!("; {}", curve.describe())).collect();
     Problem::error(
         "passband-not-reached",
         Place::Key("filter.passband".into()),
         format!(
-            "the best these dimensions do is edges off by {:+.2} and {:+.2} MHz and a return loss {:+.2} dB from the prototype's; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB",
-            miss.edges_hz[0] / 1e6,
-            miss.edges_hz[1] / 1e6,
-            miss.return_loss_db,
-            (0.01 * goal.width_hz()).min(0.003 * goal.edges_hz[0]) / 1e6,
+            "the best these dimensions do is {}; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB{}",
+            miss.describe(),
+            goal.edges_hz.first().map_or(0.0, |edge| passband::allowed_hz(goal, *edge)) / 1e6,
+            lacking.concat(),
         ),
         "make the band narrower, the degree lower or the laminate thinner",
     )
@@ -156,7 +148,7 @@ fn apply(knobs: &[Knob], x: &[f64], set: &mut Dimensions) {
 struct Search<'a> {
     family: &'a dyn Family,
     guess: &'a Dimensions,
-    goal: Goal,
+    goal: Target,
     book: &'a Book,
     knobs: &'a [Knob],
 }
@@ -204,7 +196,11 @@ impl Search<'_> {
 
     /// Turns all resonators together until the passband lies about the ordered centre, so that the fit begins with its samples in the band.
     fn align(&self, x: &mut [f64]) {
-        let center_hz = self.goal.frequency_hz(0.0);
+        let [from_hz, to_hz] = match self.goal.edges_hz[..] {
+            [from_hz, to_hz] if self.goal.passes_hz.len() == 1 && to_hz - from_hz < ALIGN_REACH * (from_hz + to_hz) => [from_hz, to_hz],
+            _ => return self.align_edges(x),
+        };
+        let center_hz = 0.5 * (from_hz + to_hz);
         let f: Vec<f64> =
             (0..ALIGN_POINTS).map(|i| center_hz * (1.0 + ALIGN_REACH * (2.0 * i as f64 / (ALIGN_POINTS - 1) as f64 - 1.0))).collect();
         for _ in 0..ALIGN_STEPS {
@@ -220,17 +216,36 @@ impl Search<'_> {
         }
     }
 
+    /// The same for a target with one edge, or far apart ones: turned by the mean miss of the edges.
+    fn align_edges(&self, x: &mut [f64]) {
+        for _ in 0..ALIGN_STEPS {
+            let Some(passband) = self.circuit(x).and_then(|circuit| Passband::of(&circuit, &self.goal)) else { return };
+            let ratios: Vec<f64> =
+                passband.edges_hz.iter().zip(&self.goal.edges_hz).map(|(found, ordered)| found / ordered - 1.0).collect();
+            let mean = ratios.iter().sum::<f64>() / ratios.len().max(1) as f64;
+            for (x, _) in x.iter_mut().zip(self.knobs).filter(|(_, knob)| knob.is_resonator) {
+                *x += mean;
+            }
+        }
+    }
+
     /// First stage: the characteristic function K against the prototype's over the band and a little outside, both compressed by an asinh
     /// that is even-handed within the ripple and counts dB outside.
     fn fit(&self, x: &[f64], measure: Measure) -> Option<Vec<f64>> {
         let points = SAMPLES_PER_DEGREE * self.goal.degree + 11;
-        let at: Vec<f64> = (0..points).map(|i| SAMPLE_REACH * (2.0 * i as f64 / (points - 1) as f64 - 1.0)).collect();
-        let f: Vec<f64> = at.iter().map(|x| self.goal.frequency_hz(*x)).collect();
+        let f: Vec<f64> = self
+            .goal
+            .passes_hz
+            .iter()
+            .map(|pass| self.goal.grown(*pass, SAMPLE_REACH))
+            .flat_map(|[low, high]| (0..points).map(move |i| low + (high - low) * i as f64 / (points - 1) as f64))
+            .collect();
         let ripple = self.goal.edge_characteristic();
         let found: Vec<f64> = self.circuit(x)?.sweep(&f).s.iter().map(|s| characteristic(s) / ripple).collect();
-        let wanted: Vec<f64> = at.iter().map(|x| self.goal.characteristic(*x) / ripple).collect();
-        // The sign of the whole is free; outside the band, where there is no zero, the two must agree.
-        let sign = if found.first()? * wanted.first()? < 0.0 { -1.0 } else { 1.0 };
+        let wanted: Vec<f64> = f.iter().map(|f| self.goal.characteristic(*f)).collect();
+        // The sign of the whole is free; where K is greatest, outside the band, the two must agree.
+        let greatest = (0..f.len()).max_by(|a, b| wanted[*a].abs().total_cmp(&wanted[*b].abs()))?;
+        let sign = if found[greatest] * wanted[greatest] < 0.0 { -1.0 } else { 1.0 };
         Some(
             found
                 .iter()
@@ -248,19 +263,20 @@ impl Search<'_> {
     fn level(&self, x: &[f64]) -> Option<Vec<f64>> {
         let circuit = self.circuit(x)?;
         let passband = Passband::of(&circuit, &self.goal)?;
-        let edges = [0, 1].map(|i| (passband.edges_hz[i] - self.goal.edges_hz[i]) / (0.01 * self.goal.width_hz()));
+        let edges =
+            passband.edges_hz.iter().zip(&self.goal.edges_hz).map(|(found, ordered)| (found - ordered) / (0.01 * self.goal.width_hz));
         if self.goal.shape == ResponseShape::MaximallyFlat {
             // Flatness is held by the fit; here only the edges are brought in, the rest of the band keeping its weight.
-            return Some(edges.into_iter().chain(self.fit(x, Measure::Squared)?).collect());
+            return Some(edges.chain(self.fit(x, Measure::Squared)?).collect());
         }
-        if passband.minima.len() != self.goal.degree || passband.maxima.len() + 1 != self.goal.degree {
+        if passband.minima.len() != self.goal.minima || passband.maxima.len() != self.goal.maxima {
             return None;
         }
         let level = self.goal.edge_reflection();
         let heights = passband.maxima.iter().map(|(_, r)| 10.0 * (r / level).ln());
         let zeros: Vec<f64> = passband.minima.iter().map(|(f, _)| *f).collect();
         let depths: Vec<f64> = circuit.sweep(&zeros).s.iter().flat_map(|s| [s[0].re, s[0].im]).map(|v| 3.0 * v / level.sqrt()).collect();
-        Some(edges.into_iter().chain(heights).chain(depths).collect())
+        Some(edges.chain(heights).chain(depths).collect())
     }
 }
 
@@ -282,7 +298,7 @@ fn characteristic([s11, s21, _, s22]: &[Complex64; 4]) -> f64 {
 }
 
 /// Snaps to the shop grid once, then tries each dimension's neighbours on the grid and keeps what lessens the miss.
-fn snap(family: &dyn Family, refined: &Dimensions, goal: &Goal, book: &Book) -> Dimensions {
+fn snap(family: &dyn Family, refined: &Dimensions, goal: &Target, book: &Book) -> Dimensions {
     let ratio = |set: &Dimensions| miss_with(family, set, goal, book).map_or(f64::INFINITY, |miss| miss.worst_ratio);
     let mut snapped = refined.on_grid();
     let mut best = ratio(&snapped);

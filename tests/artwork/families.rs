@@ -62,7 +62,7 @@ fn random_orders_give_sound_boards() {
         }
         let least = layout.parts.iter().filter_map(|placed| match &placed.part {
             Part::Lines { gaps, .. } => gaps.iter().min(),
-            Part::OpenEnd | Part::Step | Part::Launch { .. } => None,
+            _ => None,
         });
         let least_m = least.min().unwrap().m();
         let strips: Vec<Region> =

@@ -23,8 +23,8 @@ pub fn found_in(order: &Order, layout: &Layout, board: &Board) -> Vec<Problem> {
     let figures = Figures {
         center_hz: 3e9,
         center_loss_db: 1.0,
-        edges_3db_hz: None,
-        ripple_edges_hz: None,
+        edges_3db_hz: Vec::new(),
+        ripple_edges_hz: Vec::new(),
         worst_loss_db: 1.0,
         return_loss_db: 16.0,
         group_delay_s: 1e-9,

@@ -157,7 +157,13 @@ pub fn order() -> Order {
             loss_tangent: 0.0013,
             thickness_m: 0.762e-3,
             thickness_tolerance_m: 0.038e-3,
-            copper: Copper { base_m: 18e-6, plating_m: 25e-6, roughness_m: 1.8e-6, conductivity_s_per_m: 5.8e7 },
+            copper: Copper {
+                base_m: 18e-6,
+                plating_m: 25e-6,
+                roughness_m: 1.8e-6,
+                roughness_law: RoughnessLaw::HammerstadJensen,
+                conductivity_s_per_m: 5.8e7,
+            },
             finish: "immersion-silver".into(),
         },
         shop: Shop {

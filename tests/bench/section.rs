@@ -10,9 +10,32 @@ use std::hint::black_box;
 use std::time::Instant;
 
 use stripwright::line::section::{CopperOf, CrossSection, HousingOf, LayerOf, Stackup, StripOf, solve};
+use stripwright::line::{Array, ArrayTarget, AsBuilt, StaticsModel, array_for};
 
 const H: f64 = 0.508e-3;
 const COPPER: CopperOf = CopperOf { thickness_m: 35e-6, undercut_m: 0.0 };
+
+fn board() -> AsBuilt {
+    AsBuilt {
+        permittivity: 3.0,
+        in_plane_permittivity: 3.0,
+        loss_tangent: 0.001,
+        thickness_m: H,
+        copper_thickness_m: COPPER.thickness_m,
+        undercut_m: COPPER.undercut_m,
+        roughness_m: 0.0,
+        ten_point_height_m: None,
+        conductivity_s_per_m: 5.8e7,
+        plating: None,
+        hole_plating_m: 25e-6,
+        lid_m: None,
+        walls_m: None,
+        coat: None,
+        widening_m: 0.0,
+        lossless: false,
+        statics: StaticsModel::Numerical,
+    }
+}
 
 fn best<T>(count: usize, mut run: impl FnMut(usize) -> T) -> f64 {
     let mut best = f64::INFINITY;
@@ -67,6 +90,26 @@ fn main() {
     print("Z0 to w", best(50, |i| stackup.width_for(50.0 * vary(i), None).unwrap()), None);
     let strips: Vec<StripOf> = (0..9).map(|i| StripOf { width_m: (1.0 + 0.1 * i as f64) * 1e-3, gap_before_m: 0.5e-3 }).collect();
     print("array of 9 unequal strips", best(60, |_| stackup.array(&strips).unwrap()), Some(30e-3));
+    let built = board();
+    let (widths, gaps): (Vec<f64>, Vec<f64>) = strips.iter().map(|strip| (strip.width_m, strip.gap_before_m)).unzip();
+    let fresh = |i: usize| Array::new(&built.without_loss(), &widths.iter().map(|w| w * vary(i)).collect::<Vec<_>>(), &gaps[1..]);
+    print("modes of 9 unequal strips, cold but for the tables", best(60, |i| fresh(i).at(2e9)), Some(30e-3));
+    let array = fresh(0);
+    print("modes of 9 unequal strips at another frequency", best(1000, |i| array.at(2e9 * vary(i))), None);
+    print(
+        "loss of 9 unequal strips, once a geometry",
+        best(6, |i| Array::new(&built, &widths.iter().map(|w| w * vary(i + 100)).collect::<Vec<_>>(), &gaps[1..]).at(2e9)),
+        None,
+    );
+    let target = ArrayTarget::of(&array);
+    print(
+        "N = 9: impedances and couplings to widths and gaps",
+        best(5, |i| {
+            let own_ohm = target.own_ohm.iter().map(|ohm| ohm * vary(i + 1)).collect();
+            array_for(&built, &ArrayTarget { own_ohm, couplings: target.couplings.clone() }).unwrap()
+        }),
+        None,
+    );
     print("loss of a pair", best(20, |i| stackup.pair_loss(1.2e-3 * vary(i), 0.2e-3).unwrap()), None);
 
     let section = CrossSection::pair(layers, COPPER, 1.2e-3, 0.2e-3, HousingOf::default());

@@ -8,6 +8,7 @@ mod files;
 mod line;
 mod mistakes;
 mod packages;
+mod roughness_law;
 mod section_file;
 
 use std::path::Path;

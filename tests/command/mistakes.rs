@@ -250,6 +250,20 @@ const CASES: &[Case] = &[
         &["board.mounting-hole[1].diameter"],
     ),
     ("# [housing]    ", "[housing]    ", "[housing]", "housing-empty", &["neither a lid nor an inside"]),
+    (
+        "# permittivity = 3.00 ",
+        "copper = { roughness-law = \"stacked-spheres\" }\n# permittivity = 3.00 ",
+        "{ roughness-law",
+        "key-missing",
+        &["laminate.copper.ten-point-height", "6 um"],
+    ),
+    (
+        "# permittivity = 3.00 ",
+        "copper = { ten-point-height = \"6 um\" }\n# permittivity = 3.00 ",
+        "\"6 um\"",
+        "key-unused",
+        &["laminate.copper.ten-point-height", "roughness-law = \"stacked-spheres\""],
+    ),
     // Notation.
     ("response = \"equal-ripple\"", "response = ", "response", "not-toml", &[]),
     ("[board]", "[board", "[board", "not-toml", &[]),
@@ -287,7 +301,7 @@ fn each_mistake_is_found_where_it_stands_with_a_help_that_would_mend_it() {
         }
     }
     assert!(wrong.is_empty(), "{}", wrong.join("\n"));
-    assert_eq!(CASES.len(), 93, "the number of kinds that ran");
+    assert_eq!(CASES.len(), 95, "the number of kinds that ran");
 }
 
 #[test]

@@ -103,6 +103,33 @@ fn file_and_short_form_agree_on_a_pair() {
     assert!((number(&file, "/capacitance_f_per_m/0/1") / number(&short, "/capacitance_f_per_m/0/1") - 1.0).abs() < 5e-3);
 }
 
+#[test]
+fn modes_of_unequal_strips_have_losses_and_meet_the_equal_pair() {
+    let pair =
+        |second: &str| format!("{BOARD}\n[[strip]]\nwidth = \"1.5 mm\"\n\n[[strip]]\nwidth = \"{second} mm\"\ngap-before = \"0.15 mm\"\n");
+    let (equal, unequal) = (json(&pair("1.5"), &["--at", "5 GHz"]), json(&pair("1.500001"), &["--at", "5 GHz"]));
+    assert_eq!(unequal["modes"].as_array().unwrap().len(), 2);
+    for (mode, name) in ["even", "odd"].iter().enumerate() {
+        // A width changed by 1e-6 moves nothing by more than a few times that; the loss's own estimate is 1e-3.
+        for (key, tolerance) in [("eps_eff", 1e-5), ("conductor_loss_db_per_m", 1e-3), ("dielectric_loss_db_per_m", 1e-3)] {
+            let (a, b) = (number(&equal, &format!("/{name}/{key}")), number(&unequal, &format!("/modes/{mode}/{key}")));
+            assert!((a / b - 1.0).abs() < tolerance, "{name} {key}: {a} {b}");
+        }
+    }
+    // Three strips: the middle one rests in the odd mode; the table names every mode.
+    let three = format!("{}\n[[strip]]\nwidth = \"1.5 mm\"\ngap-before = \"0.15 mm\"\n", pair("0.9"));
+    let answer = json(&three, &[]);
+    assert_eq!(answer["modes"].as_array().unwrap().len(), 3);
+    assert_eq!(number(&answer, "/modes/1/voltages/1"), 0.0);
+    assert_eq!(number(&answer, "/modes/1/voltages/0"), -number(&answer, "/modes/1/voltages/2"));
+    for mode in 0..3 {
+        assert!(number(&answer, &format!("/modes/{mode}/conductor_loss_db_per_m")) > 0.0);
+    }
+    let table = run(&three, &[]).success();
+    let table = String::from_utf8_lossy(&table.get_output().stdout).into_owned();
+    assert!(table.contains("mode 3 loss") && table.contains("mode 2 voltages") && table.contains("closed form differs by"), "{table}");
+}
+
 /// Complete elliptic integral ratio K(k')/K(k) by arithmetic-geometric means (C. F. Gauss; any handbook, for instance Abramowitz & Stegun 17.6).
 fn elliptic_ratio(k: f64) -> f64 {
     let mean = |mut a: f64, mut b: f64| {

@@ -6,8 +6,8 @@ use stripwright::base::{Dimensionality, Nm};
 use stripwright::dimensions::{self, Dimension, Dimensions};
 use stripwright::order::{
     self, Band, Below, BoardSize, Classes, Compensation, FamilyKeys, Filter, Grain, GroundOn, Housing, KeepOut, Key, LaunchShape, Limit,
-    Mask, MountingHole, Order, OwnKind, OwnValue, Paper, Passes, PlatedEdgeRequest, Requirement, ResponseShape, Side, SlotRequest, Source,
-    StackLayer, TextOn,
+    Mask, MountingHole, Order, OwnKind, OwnValue, Paper, Passes, PlatedEdgeRequest, Requirement, ResponseShape, RoughnessLaw, Side,
+    SlotRequest, Source, StackLayer, TextOn,
 };
 
 /// Families of all kinds of band, one with keys of each kind.
@@ -79,6 +79,9 @@ prop_compose! {
         (laminate_class.thickness_tolerance_m, laminate_class.in_plane_permittivity) = (laminate.3 * laminate.4, laminate.5);
         let c = &mut laminate_class.copper;
         (c.base_m, c.plating_m, c.roughness_m, c.conductivity_s_per_m) = copper;
+        if board.2 {
+            c.roughness_law = RoughnessLaw::StackedSpheres { ten_point_height_m: 5.0 * copper.2 };
+        }
         let mut shop = known.shops[classes.1].clone();
         shop.compensation = per_edge.map_or(Compensation::ByTheShop, |per_edge_m| Compensation::InTheArtwork { per_edge_m });
         let (from_hz, to_hz) = match filter.band {

@@ -3,6 +3,7 @@
 
 mod orders;
 mod published_designs;
+mod published_rows;
 mod random_orders;
 mod response_laws;
 mod second_circuit;

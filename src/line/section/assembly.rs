@@ -19,7 +19,7 @@ impl Square {
         Square { size, values: vec![0.0; size * size] }
     }
 
-    #[inline]
+    #[inline(always)]
     pub(super) fn row_mut(&mut self, row: usize, from: usize, count: usize) -> &mut [f64] {
         let start = row * self.size + from;
         &mut self.values[start..start + count]
@@ -49,7 +49,29 @@ impl Block {
 }
 
 /// Adds mean ln r (`direct`) and mean ln r of the image in the surface (`image`), both over 2 pi and negative, per unit charge of each panel.
-pub(super) fn add_logarithms(field: &Contour, source: &Contour, block: Block, direct: &mut Square, mut image: Option<&mut Square>) {
+pub(super) fn add_logarithms(field: &Contour, source: &Contour, block: Block, direct: &mut Square, image: Option<&mut Square>) {
+    pulp::Arch::new().dispatch(Logarithms { field, source, block, direct, image });
+}
+
+struct Logarithms<'a> {
+    field: &'a Contour,
+    source: &'a Contour,
+    block: Block,
+    direct: &'a mut Square,
+    image: Option<&'a mut Square>,
+}
+
+impl pulp::NullaryFnOnce for Logarithms<'_> {
+    type Output = ();
+
+    #[inline(always)]
+    fn call(self) {
+        add_logarithms_here(self.field, self.source, self.block, self.direct, self.image);
+    }
+}
+
+#[inline(always)]
+fn add_logarithms_here(field: &Contour, source: &Contour, block: Block, direct: &mut Square, mut image: Option<&mut Square>) {
     let factor = -block.sign / (2.0 * std::f64::consts::PI);
     let mut buffer = [0.0; NODES_AT_MOST];
     for (row, (&x, &z)) in field.x.iter().zip(&field.z).enumerate() {
@@ -76,7 +98,7 @@ pub(super) fn add_logarithms(field: &Contour, source: &Contour, block: Block, di
     }
 }
 
-#[inline]
+#[inline(always)]
 fn add_differences(values: &[f64], inverse: &[f64], factor: f64, out: &mut [f64]) {
     for (((out, inverse), left), right) in out.iter_mut().zip(inverse).zip(values).zip(&values[1..]) {
         *out += factor * (right - left) * inverse;

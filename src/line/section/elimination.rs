@@ -13,6 +13,25 @@ const AT_ONCE: usize = 4;
 
 /// Solves for several right sides at once (each a vector of `size`), overwriting matrix and right sides. False when a pivot was not positive.
 pub(super) fn solve_in_place(matrix: &mut Square, right: &mut [Vec<f64>]) -> bool {
+    pulp::Arch::new().dispatch(Elimination { matrix, right })
+}
+
+struct Elimination<'a> {
+    matrix: &'a mut Square,
+    right: &'a mut [Vec<f64>],
+}
+
+impl pulp::NullaryFnOnce for Elimination<'_> {
+    type Output = bool;
+
+    #[inline(always)]
+    fn call(self) -> bool {
+        eliminate(self.matrix, self.right)
+    }
+}
+
+#[inline(always)]
+fn eliminate(matrix: &mut Square, right: &mut [Vec<f64>]) -> bool {
     let size = matrix.size;
     let mut first = 0;
     while first < size {
@@ -49,7 +68,7 @@ pub(super) fn solve_in_place(matrix: &mut Square, right: &mut [Vec<f64>]) -> boo
 }
 
 /// Takes eight pivot rows off one row.
-#[inline]
+#[inline(always)]
 fn take_off(target: &mut [f64], pivots: &[f64], inverse: &[f64; TOGETHER], first: usize, size: usize) {
     let mut factors = [0.0; TOGETHER];
     for step in 0..TOGETHER {
@@ -75,6 +94,7 @@ fn take_off(target: &mut [f64], pivots: &[f64], inverse: &[f64; TOGETHER], first
 }
 
 /// Forward and back, all right sides row by row.
+#[inline(always)]
 fn substitute(matrix: &Square, right: &mut [Vec<f64>]) {
     let size = matrix.size;
     for row in 1..size {

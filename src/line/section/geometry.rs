@@ -5,7 +5,7 @@ use crate::base::{Place, Problem};
 /// Strips that one cross-section may have: an interdigital array of degree ten with its two feed lines.
 pub const STRIPS_AT_MOST: usize = 12;
 /// A strip or gap this many top-layer thicknesses across needs a table and panels that no printed board needs.
-const SPAN_RATIO_AT_MOST: f64 = 2000.0;
+pub(super) const SPAN_RATIO_AT_MOST: f64 = 2000.0;
 /// Deepest layer or highest lid in the same units: the spectrum's samples grow with it.
 const DEPTH_RATIO_AT_MOST: f64 = 1000.0;
 /// Thickest copper in units of the nearest distance to an interface: beyond, the remainder's table would need more than 16 heights.

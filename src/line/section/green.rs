@@ -63,7 +63,7 @@ impl Medium {
     }
 
     /// The nearest image that stays in the remainder is twice this far away.
-    fn scale_m(&self) -> f64 {
+    pub(super) fn scale_m(&self) -> f64 {
         let top = self.layers.last().map_or(f64::INFINITY, |layer| layer.1);
         let room = self.lid_m.map_or(f64::INFINITY, |lid| lid - self.copper_thickness_m);
         // The nearest repetition between walls is a whole distance of the walls away.
@@ -393,6 +393,7 @@ fn sample_cosines(numbers: &[(f64, f64)], spectra: &[Vec<f64>], start: f64, step
 }
 
 /// Dot product in four lanes, always added in the same order.
+#[inline(always)]
 pub(super) fn dot(one: &[f64], other: &[f64]) -> f64 {
     let mut lanes = [0.0; 4];
     let head = one.chunks_exact(4);

@@ -2,8 +2,9 @@
 
 use crate::base::Problem;
 
+use super::fast::{pair_roughly, single_roughly};
 use super::geometry::fault;
-use super::solve::{Mode, Pair, pair_roughly, single_roughly};
+use super::results::{Mode, Pair};
 use super::stackup::Stackup;
 
 /// Steps on the coarse grid at most; from a fair start four are usual.

@@ -54,20 +54,25 @@
 mod assembly;
 mod coat;
 mod elimination;
+mod fast;
 mod geometry;
 mod green;
 mod inverse;
 mod logarithm;
 mod loss;
+mod modal;
 mod panels;
+mod results;
 mod solve;
 mod stackup;
 mod surface;
 mod walls;
 
 pub use geometry::{CoatOf, CopperOf, CrossSection, HousingOf, LayerOf, STRIPS_AT_MOST, StripOf};
-pub use loss::{ModeLoss, loss};
-pub use solve::{Line, Mode, Pair, Solved, solve};
+pub use loss::{MatrixLoss, ModeLoss, loss, matrix_loss};
+pub use modal::Modes;
+pub use results::{Line, Mode, Pair, Solved};
+pub use solve::solve;
 pub use stackup::Stackup;
 pub use surface::{Plating, Roughness, Surface, Surfaces, skin_depth_m};
 pub use walls::WallShares;

@@ -17,6 +17,11 @@ impl Grid {
         Grid { width, thickness: width / 2 }
     }
 
+    /// Twice as fine.
+    pub(super) const fn doubled(self) -> Grid {
+        Grid { width: 2 * self.width, thickness: 2 * self.thickness }
+    }
+
     /// Panels of one strip.
     pub(super) fn panels(self, has_thickness: bool) -> usize {
         if has_thickness { 2 * (self.width + self.thickness) } else { self.width }

@@ -9,7 +9,8 @@ use super::geometry::fault;
 use super::geometry::mm;
 use super::green::{Kernel, Medium};
 use super::panels::{Contour, Grid, Interpolation};
-use super::stackup::{COARSE, Kernels, Stackup};
+use super::results::Solved;
+use super::stackup::{COARSE, COARSE_SHEET, Kernels, Stackup};
 
 /// Permittivity of free space, F/m (CODATA 2018).
 pub(super) const EPSILON_0: f64 = 8.854_187_812_8e-12;
@@ -21,113 +22,20 @@ const RICHARDSON: f64 = 0.164;
 const LEFT_OVER: f64 = 0.4;
 /// The same on the coarsest grids, whose difference is not yet all of that order.
 const LEFT_OVER_COARSEST: f64 = 0.8;
+/// Panels per width from which the difference of the grids is of the order that [`RICHARDSON`] takes.
+const FAIR_WIDTH: usize = 8;
 /// Rounding and table errors that no grid removes.
 const FLOOR: f64 = 2e-6;
 /// Grids tried in turn for an accuracy asked for, as panels per width.
 const GRIDS: [usize; 7] = [6, 8, 12, 16, 24, 32, 48];
 /// Panels of all strips together at most: five matrices of that size take 100 MB.
 const UNKNOWNS_AT_MOST: usize = 1600;
-/// Coarser of the two grids for arrays: C within 0.1 %, and N = 9 in time.
+/// Coarser of the two grids for more than [`FEW`] strips: C within 0.1 %, and N = 9 in time.
 const ARRAY: Grid = Grid::new(6);
+/// Strips up to which an array has the panels of the fast pair.
+const FEW: usize = 4;
 /// An estimate above this says that the panels do not resolve the cross-section at all.
 const HOPELESS: f64 = 0.05;
-
-/// Capacitance per unit length of one mode, with the dielectric and without.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Mode {
-    /// Per line.
-    pub capacitance_f_per_m: f64,
-    /// Per line, all dielectric taken out.
-    pub air_capacitance_f_per_m: f64,
-}
-
-impl Mode {
-    /// Static characteristic impedance of the mode, per line.
-    pub fn z0_ohm(&self) -> f64 {
-        1.0 / (LIGHT * (self.capacitance_f_per_m * self.air_capacitance_f_per_m).sqrt())
-    }
-
-    /// Static effective permittivity.
-    pub fn eps_eff(&self) -> f64 {
-        self.capacitance_f_per_m / self.air_capacitance_f_per_m
-    }
-
-    /// Inductance per unit length.
-    pub fn inductance_h_per_m(&self) -> f64 {
-        1.0 / (LIGHT * LIGHT * self.air_capacitance_f_per_m)
-    }
-}
-
-/// One strip.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Line {
-    /// Its only mode.
-    pub mode: Mode,
-    /// Relative error of C that the two grids let expect.
-    pub error_estimate: f64,
-}
-
-/// Two equal strips.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub struct Pair {
-    /// Both lines at the same potential.
-    pub even: Mode,
-    /// Opposite potentials.
-    pub odd: Mode,
-    /// Relative error of the worst of the four capacitances that the two grids let expect.
-    pub error_estimate: f64,
-}
-
-impl Pair {
-    /// (Z0e - Z0o) / (Z0e + Z0o).
-    pub fn coupling(&self) -> f64 {
-        let (even, odd) = (self.even.z0_ohm(), self.odd.z0_ohm());
-        (even - odd) / (even + odd)
-    }
-}
-
-/// N strips.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Solved {
-    /// Maxwell capacitance matrix: charge of line i for 1 V on line j, the others at 0.
-    pub capacitance_f_per_m: Vec<Vec<f64>>,
-    /// The same with all dielectric taken out.
-    pub air_capacitance_f_per_m: Vec<Vec<f64>>,
-    /// mu0 eps0 times the inverse of the matrix without dielectric.
-    pub inductance_h_per_m: Vec<Vec<f64>>,
-    /// Error that the two grids let expect, relative to the largest element of the row.
-    pub error_estimate: f64,
-    /// Panels along each width on the finer grid.
-    pub panels_per_width: usize,
-}
-
-impl Solved {
-    /// For one strip: its mode.
-    pub fn single(&self) -> Option<Mode> {
-        match (self.capacitance_f_per_m.as_slice(), self.air_capacitance_f_per_m.as_slice()) {
-            ([c], [c0]) => Some(Mode { capacitance_f_per_m: *c.first()?, air_capacitance_f_per_m: *c0.first()? }),
-            _ => None,
-        }
-    }
-
-    /// For two equal strips: even and odd mode.
-    pub fn pair(&self) -> Option<Pair> {
-        let modes = |matrix: &[Vec<f64>]| match matrix {
-            [one, other] => match (one.as_slice(), other.as_slice()) {
-                ([a, b], [c, d]) if (a - d).abs() <= 1e-6 * a.abs() => Some((0.5 * (a + d + b + c), 0.5 * (a + d - b - c))),
-                _ => None,
-            },
-            _ => None,
-        };
-        let (even, odd) = modes(&self.capacitance_f_per_m)?;
-        let (even_air, odd_air) = modes(&self.air_capacitance_f_per_m)?;
-        Some(Pair {
-            even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
-            odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
-            error_estimate: self.error_estimate,
-        })
-    }
-}
 
 /// Capacitance and inductance matrices, to the relative accuracy asked for.
 ///
@@ -191,6 +99,11 @@ pub(super) fn solve_bare(section: &CrossSection, accuracy: f64) -> Result<Solved
         Some(solved) => Err(not_converged(solved.error_estimate, accuracy)),
         None => Err(not_converged(f64::INFINITY, accuracy)),
     }
+}
+
+/// An estimate that says anything at all.
+pub(super) fn usable(estimate: f64) -> Result<f64, Problem> {
+    if estimate.is_finite() && estimate < HOPELESS { Ok(estimate) } else { Err(not_converged(estimate, HOPELESS)) }
 }
 
 fn not_converged(estimate: f64, accuracy: f64) -> Problem {
@@ -326,7 +239,7 @@ pub(super) fn charges(section: &CrossSection, shared: &Shared<'_>, grid: Grid) -
     Ok(Charges { contours, dielectric: dielectric_charges, air: air_charges })
 }
 
-fn not_solvable() -> Problem {
+pub(super) fn not_solvable() -> Problem {
     fault(
         "section-not-converged",
         "",
@@ -335,7 +248,7 @@ fn not_solvable() -> Problem {
     )
 }
 
-fn total(charges: &Charges, vectors: &[Vec<f64>]) -> Vec<Vec<f64>> {
+pub(super) fn total(charges: &Charges, vectors: &[Vec<f64>]) -> Vec<Vec<f64>> {
     let count = charges.contours.len();
     let mut matrix = vec![vec![0.0; count]; count];
     for (j, vector) in vectors.iter().enumerate() {
@@ -367,10 +280,10 @@ fn extrapolate(coarse: &[Vec<f64>], fine: &[Vec<f64>], left_over: f64) -> (Vec<V
 }
 
 fn solve_on(section: &CrossSection, shared: &Shared<'_>, coarse: Grid) -> Result<Solved, Problem> {
-    let fine = Grid::new(2 * coarse.width);
+    let fine = coarse.doubled();
     let low = charges(section, shared, coarse)?;
     let high = charges(section, shared, fine)?;
-    let left_over = if coarse.width < COARSE.width { LEFT_OVER_COARSEST } else { LEFT_OVER };
+    let left_over = if coarse.width < FAIR_WIDTH { LEFT_OVER_COARSEST } else { LEFT_OVER };
     let (capacitance, estimate) = extrapolate(&total(&low, &low.dielectric), &total(&high, &high.dielectric), left_over);
     let (air_capacitance, air_estimate) = extrapolate(&total(&low, &low.air), &total(&high, &high.air), left_over);
     let inductance = invert(&air_capacitance).ok_or_else(not_solvable)?;
@@ -384,8 +297,15 @@ fn solve_on(section: &CrossSection, shared: &Shared<'_>, coarse: Grid) -> Result
     })
 }
 
+/// Extrapolated value in F/m, and the relative error to expect.
+pub(super) fn richardson(coarse: f64, fine: f64) -> (f64, f64) {
+    let step = RICHARDSON * (fine - coarse);
+    let value = fine + step;
+    (value * EPSILON_0, LEFT_OVER * (step / value).abs() + FLOOR)
+}
+
 /// Inverse of a small symmetric positive definite matrix.
-fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
+pub(super) fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
     let size = matrix.len();
     // In units that keep the pivots near one.
     let scale = matrix.first()?.first()?;
@@ -402,164 +322,20 @@ fn invert(matrix: &[Vec<f64>]) -> Option<Vec<Vec<f64>>> {
     Some((0..size).map(|i| (0..size).map(|j| 0.5 * (columns[j][i] + columns[i][j])).collect()).collect())
 }
 
-fn check_sizes(stackup: &Stackup, width_m: f64, gap_m: Option<f64>) -> Result<(), Problem> {
-    if !(width_m.is_finite() && width_m > 0.0) {
-        return Err(fault(
-            "strip-width",
-            "strip.width",
-            format!("the strip is {} wide; more than zero is due", mm(width_m)),
-            "give the width at the foot",
-        ));
-    }
-    if let Some(gap_m) = gap_m
-        && !(gap_m.is_finite() && gap_m > 0.0)
-    {
-        return Err(fault(
-            "strip-overlap",
-            "strip.gap-before",
-            format!("the gap is {}; the strips overlap or touch", mm(gap_m)),
-            "give a gap of more than zero",
-        ));
-    }
-    if stackup.copper.thickness_m > 0.0 && 2.0 * stackup.copper.undercut_m >= width_m {
-        return Err(fault(
-            "undercut-exceeds-strip",
-            "strip.width",
-            format!("an undercut of {} per side leaves no top on a strip of {}", mm(stackup.copper.undercut_m), mm(width_m)),
-            "make the strip wider than twice the undercut",
-        ));
-    }
-    Ok(())
-}
-
-/// Both modes on one grid: C even, C odd, C0 even, C0 odd, in units of eps0.
-fn pair_on(stackup: &Stackup, kernels: &Kernels, sides: &Interpolation, width_m: f64, gap_m: f64, grid: Grid) -> Result<[f64; 4], Problem> {
-    let copper = stackup.copper;
-    let strip = Contour::new(0.5 * gap_m, width_m, copper.thickness_m, copper.undercut_m, grid);
-    let size = strip.len();
-    let own = Block { row: 0, column: 0, mirror: None, same: true, sign: 1.0 };
-    let other = Block { mirror: Some(0.0), same: false, ..own };
-    let thick = copper.thickness_m > 0.0 && kernels.dielectric.image_weight != 0.0;
-    let parts = |block: Block| {
-        let mut direct = Square::zero(size);
-        let mut image = thick.then(|| Square::zero(size));
-        add_logarithms(&strip, &strip, block, &mut direct, image.as_mut());
-        let remainder = |kernel: &Kernel| {
-            let mut out = Square::zero(size);
-            add_remainder(&strip, &strip, block, &kernel.table, &stackup.heights, sides, &mut out);
-            out
-        };
-        let (dielectric, air) = (remainder(&kernels.dielectric), remainder(&kernels.air));
-        let weighted = image.as_ref().unwrap_or(&direct);
-        [combine(&direct, Some(weighted), &kernels.dielectric, dielectric), combine(&direct, None, &kernels.air, air)]
-    };
-    let (own, other) = (parts(own), parts(other));
-    let mut out = [0.0; 4];
-    for (medium, (own, other)) in own.iter().zip(&other).enumerate() {
-        for (mode, sign) in [1.0, -1.0].into_iter().enumerate() {
-            let mut matrix = own.clone();
-            for (value, other) in matrix.values.iter_mut().zip(&other.values) {
-                *value += sign * other;
-            }
-            let mut vectors = [vec![1.0; size]];
-            if !solve_in_place(&mut matrix, &mut vectors) {
-                return Err(not_solvable());
-            }
-            out[2 * medium + mode] = vectors[0].iter().sum();
-        }
-    }
-    Ok(out)
-}
-
-fn richardson(coarse: f64, fine: f64) -> (f64, f64) {
-    let step = RICHARDSON * (fine - coarse);
-    let value = fine + step;
-    (value * EPSILON_0, LEFT_OVER * (step / value).abs() + FLOOR)
-}
-
-fn usable(estimate: f64) -> Result<f64, Problem> {
-    if estimate.is_finite() && estimate < HOPELESS { Ok(estimate) } else { Err(not_converged(estimate, HOPELESS)) }
-}
-
-pub(super) fn solve_pair(stackup: &Stackup, width_m: f64, gap_m: f64) -> Result<Pair, Problem> {
-    check_sizes(stackup, width_m, Some(gap_m))?;
-    let kernels = stackup.kernels(2.0 * width_m + gap_m)?;
-    let [coarse, fine] = stackup.grids();
-    let coarse = pair_on(stackup, kernels, &stackup.coarse, width_m, gap_m, coarse)?;
-    let fine = pair_on(stackup, kernels, &stackup.fine, width_m, gap_m, fine)?;
-    let mut estimate: f64 = 0.0;
-    let mut values = [0.0; 4];
-    for ((value, coarse), fine) in values.iter_mut().zip(coarse).zip(fine) {
-        let (best, left) = richardson(coarse, fine);
-        *value = best;
-        estimate = estimate.max(left);
-    }
-    let [even, odd, even_air, odd_air] = values;
-    Ok(Pair {
-        even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
-        odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
-        error_estimate: usable(estimate)?,
-    })
-}
-
-/// The coarse grid alone: good to about one per cent, for slopes.
-pub(super) fn pair_roughly(stackup: &Stackup, width_m: f64, gap_m: f64) -> Result<Pair, Problem> {
-    check_sizes(stackup, width_m, Some(gap_m))?;
-    let kernels = stackup.kernels(2.0 * width_m + gap_m)?;
-    let [even, odd, even_air, odd_air] = pair_on(stackup, kernels, &stackup.coarse, width_m, gap_m, COARSE)?.map(|value| value * EPSILON_0);
-    Ok(Pair {
-        even: Mode { capacitance_f_per_m: even, air_capacitance_f_per_m: even_air },
-        odd: Mode { capacitance_f_per_m: odd, air_capacitance_f_per_m: odd_air },
-        error_estimate: 0.02,
-    })
-}
-
-fn single_on(stackup: &Stackup, kernels: &Kernels, sides: &Interpolation, width_m: f64, grid: Grid) -> Result<[f64; 2], Problem> {
-    let copper = stackup.copper;
-    let strip = Contour::new(-0.5 * width_m, width_m, copper.thickness_m, copper.undercut_m, grid);
-    let size = strip.len();
-    let block = Block { row: 0, column: 0, mirror: None, same: true, sign: 1.0 };
-    let mut direct = Square::zero(size);
-    let mut image = (copper.thickness_m > 0.0 && kernels.dielectric.image_weight != 0.0).then(|| Square::zero(size));
-    add_logarithms(&strip, &strip, block, &mut direct, image.as_mut());
-    let image = image.as_ref().unwrap_or(&direct);
-    let mut out = [0.0; 2];
-    for (value, kernel) in out.iter_mut().zip([&kernels.dielectric, &kernels.air]) {
-        let mut remainder = Square::zero(size);
-        add_remainder(&strip, &strip, block, &kernel.table, &stackup.heights, sides, &mut remainder);
-        let mut matrix = combine(&direct, Some(image), kernel, remainder);
-        let mut vectors = [vec![1.0; size]];
-        if !solve_in_place(&mut matrix, &mut vectors) {
-            return Err(not_solvable());
-        }
-        *value = vectors[0].iter().sum();
-    }
-    Ok(out)
-}
-
-pub(super) fn solve_single(stackup: &Stackup, width_m: f64) -> Result<Line, Problem> {
-    check_sizes(stackup, width_m, None)?;
-    let kernels = stackup.kernels(width_m)?;
-    let [coarse, fine] = stackup.grids();
-    let coarse = single_on(stackup, kernels, &stackup.coarse, width_m, coarse)?;
-    let fine = single_on(stackup, kernels, &stackup.fine, width_m, fine)?;
-    let (capacitance, left) = richardson(coarse[0], fine[0]);
-    let (air, left_air) = richardson(coarse[1], fine[1]);
-    Ok(Line { mode: Mode { capacitance_f_per_m: capacitance, air_capacitance_f_per_m: air }, error_estimate: usable(left.max(left_air))? })
-}
-
-/// The coarse grid alone, for one strip.
-pub(super) fn single_roughly(stackup: &Stackup, width_m: f64) -> Result<Mode, Problem> {
-    check_sizes(stackup, width_m, None)?;
-    let kernels = stackup.kernels(width_m)?;
-    let [capacitance, air] = single_on(stackup, kernels, &stackup.coarse, width_m, COARSE)?.map(|value| value * EPSILON_0);
-    Ok(Mode { capacitance_f_per_m: capacitance, air_capacitance_f_per_m: air })
-}
-
 /// On the fixed grids of the fast path: smooth in every size.
 pub(super) fn solve_fixed(section: &CrossSection) -> Result<Solved, Problem> {
     let tables = Tables::new(section)?;
-    solve_on(section, &tables.borrow(), COARSE)
+    solve_on(section, &tables.borrow(), array_grid(section))
+}
+
+/// Coarser of the two grids of an array.
+fn array_grid(section: &CrossSection) -> Grid {
+    match (section.strips.len() > FEW, section.copper.thickness_m > 0.0) {
+        (false, true) => COARSE,
+        (false, false) => COARSE_SHEET,
+        (true, true) => ARRAY,
+        (true, false) => ARRAY.doubled(),
+    }
 }
 
 /// Many strips on a stackup's tables, on the fixed grids of an array.
@@ -568,7 +344,7 @@ pub(super) fn solve_array(stackup: &Stackup, section: &CrossSection) -> Result<S
         return Err(problem);
     }
     let shared = Shared { kernels: stackup.kernels(section.span_m())?, heights: &stackup.heights };
-    let solved = solve_on(section, &shared, ARRAY)?;
+    let solved = solve_on(section, &shared, array_grid(section))?;
     usable(solved.error_estimate)?;
     Ok(solved)
 }

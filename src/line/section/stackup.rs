@@ -6,14 +6,17 @@ use std::sync::OnceLock;
 
 use crate::base::Problem;
 
+use super::fast::{solve_pair, solve_single};
 use super::geometry::CopperOf;
 use super::geometry::CrossSection;
 use super::geometry::HousingOf;
 use super::geometry::LayerOf;
+use super::geometry::SPAN_RATIO_AT_MOST;
 use super::geometry::StripOf;
 use super::green::{Kernel, Medium, OCTAVES_AT_MOST};
 use super::panels::{Grid, Interpolation};
-use super::solve::{Line, Pair, Solved, solve_array, solve_pair, solve_single, too_wide};
+use super::results::{Line, Pair, Solved};
+use super::solve::{solve_array, too_wide};
 
 /// Cached lines and pairs at most; then the cache is emptied. A synthesis with refine needs some thousand.
 const CACHED_AT_MOST: usize = 20_000;
@@ -60,8 +63,10 @@ impl std::fmt::Debug for Stackup {
 }
 
 /// Grids of the fast path: one Richardson step between them.
-pub(super) const COARSE: Grid = Grid::new(8);
-pub(super) const FINE: Grid = Grid::new(16);
+pub(super) const COARSE: Grid = Grid { width: 9, thickness: 4 };
+pub(super) const FINE: Grid = COARSE.doubled();
+/// The same of sheets: they have so few panels that both can be nearly twice as fine.
+pub(super) const COARSE_SHEET: Grid = Grid::new(16);
 
 impl Stackup {
     /// Checks layers, copper and lid.
@@ -97,6 +102,10 @@ impl Stackup {
 
     /// Tables that reach over a whole of this width.
     pub(super) fn kernels(&self, reach_m: f64) -> Result<&Kernels, Problem> {
+        // The same bound as `CrossSection::check`, so that no pair is solved here and refused there.
+        if reach_m > SPAN_RATIO_AT_MOST * self.dielectric.scale_m() {
+            return Err(too_wide(reach_m));
+        }
         let octaves = Kernel::octaves_for(&self.dielectric, reach_m).ok_or_else(|| too_wide(reach_m))?;
         let air_octaves = Kernel::octaves_for(&self.air, reach_m).ok_or_else(|| too_wide(reach_m))?;
         let level = self.levels.get(octaves - 1).ok_or_else(|| too_wide(reach_m))?;
@@ -160,18 +169,22 @@ impl Stackup {
     /// # Errors
     /// The codes of [`CrossSection::check`]; `section-not-converged`.
     pub fn array(&self, strips: &[StripOf]) -> Result<Solved, Problem> {
-        let section =
-            CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() };
-        solve_array(self, &section)
+        solve_array(self, &self.section(strips))
+    }
+
+    /// Strips on this stackup.
+    pub(super) fn section(&self, strips: &[StripOf]) -> CrossSection {
+        CrossSection { layers: self.layers.clone(), copper: self.copper, strips: strips.to_vec(), coat: None, housing: self.housing() }
     }
 
     pub(super) fn housing(&self) -> HousingOf {
         HousingOf { lid_m: self.lid_m, wall_m: None }
     }
 
-    /// Coarse and fine grid of the fast path; sheets have so few panels that both can be twice as fine.
+    /// Coarse and fine grid of the fast path.
     pub(super) fn grids(&self) -> [Grid; 2] {
-        if self.copper.thickness_m > 0.0 { [COARSE, FINE] } else { [FINE, Grid::new(2 * FINE.width)] }
+        let coarse = if self.copper.thickness_m > 0.0 { COARSE } else { COARSE_SHEET };
+        [coarse, coarse.doubled()]
     }
 
     pub(super) fn varied(&self) -> &[[Box<Stackup>; 2]] {

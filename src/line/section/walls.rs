@@ -2,7 +2,7 @@
 
 use super::geometry::CrossSection;
 use super::green::GAUSS_8;
-use super::panels::{Contour, Face, inverse_spread};
+use super::panels::{Face, inverse_spread};
 use super::solve::Charges;
 
 /// Images kept on each side when there are side walls; alternating, so the rest falls with the square of this.
@@ -33,7 +33,7 @@ impl WallShares {
         self.foot_per_m + self.top_per_m + self.sides_per_m + self.ground_per_m + self.lid_per_m + self.walls_per_m
     }
 
-    fn scaled(&self, factor: f64) -> WallShares {
+    pub(super) fn scaled(&self, factor: f64) -> WallShares {
         WallShares {
             foot_per_m: factor * self.foot_per_m,
             top_per_m: factor * self.top_per_m,
@@ -45,47 +45,72 @@ impl WallShares {
     }
 }
 
-/// The shares of one mode, each strip charged with its sign.
-pub(super) fn shares_of(section: &CrossSection, solved: &Charges, signs: &[f64]) -> WallShares {
-    let panels: usize = solved.contours.iter().map(Contour::len).sum();
-    let mut charge = vec![0.0; panels];
-    for (vector, sign) in solved.air.iter().zip(signs) {
-        for (sum, value) in charge.iter_mut().zip(vector) {
-            *sum += sign * value;
+/// Foot, top, sides, ground, lid, side walls.
+const WALLS: usize = 6;
+
+/// The walls' shares as quadratic forms in the potentials of the strips, N x N row by row, without dielectric.
+pub(super) struct WallMatrices {
+    count: usize,
+    walls: [Vec<f64>; WALLS],
+}
+
+impl WallMatrices {
+    /// Shares of one mode with these potentials on the strips, in units of eps0 squared times volts squared per metre.
+    pub(super) fn shares(&self, potentials: &[f64]) -> WallShares {
+        let form = |matrix: &Vec<f64>| -> f64 {
+            matrix
+                .chunks_exact(self.count)
+                .zip(potentials)
+                .map(|(row, left)| left * row.iter().zip(potentials).map(|(value, right)| value * right).sum::<f64>())
+                .sum()
+        };
+        let [foot_per_m, top_per_m, sides_per_m, ground_per_m, lid_per_m, walls_per_m] =
+            std::array::from_fn(|wall| form(&self.walls[wall]));
+        WallShares { foot_per_m, top_per_m, sides_per_m, ground_per_m, lid_per_m, walls_per_m }
+    }
+}
+
+/// Adds weight times the products of the values.
+fn add_products(matrix: &mut [f64], values: &[f64], weight: f64) {
+    for (row, left) in matrix.chunks_exact_mut(values.len()).zip(values) {
+        for (value, right) in row.iter_mut().zip(values) {
+            *value += weight * left * right;
         }
     }
-    let lines = signs.len() as f64;
-    let mut shares = WallShares::default();
-    let mut current = 0.0;
-    let mut first = 0;
+}
+
+/// Reads the walls' currents off the charges for one volt on each strip in turn.
+pub(super) fn wall_matrices(section: &CrossSection, solved: &Charges) -> WallMatrices {
+    let count = solved.contours.len();
+    let mut walls: [Vec<f64>; WALLS] = std::array::from_fn(|_| vec![0.0; count * count]);
     let mut sources = Vec::new();
-    for (contour, sign) in solved.contours.iter().zip(signs) {
+    let mut first = 0;
+    for contour in &solved.contours {
         for side in &contour.sides {
-            let own = &charge[first + side.first..first + side.first + side.inverse.len()];
-            let squares: f64 = own.iter().zip(inverse_spread(side.inverse.len(), side.length())).map(|(q, inverse)| q * q * inverse).sum();
-            match side.face {
-                Face::Foot => shares.foot_per_m += squares,
-                Face::Top => shares.top_per_m += squares,
-                Face::Left | Face::Right => shares.sides_per_m += squares,
-            }
-            for ((q, inverse), panel) in own.iter().zip(&side.inverse).zip(side.first..) {
+            let wall = match side.face {
+                Face::Foot => 0,
+                Face::Top => 1,
+                Face::Left | Face::Right => 2,
+            };
+            for ((spread, inverse), panel) in inverse_spread(side.inverse.len(), side.length()).zip(&side.inverse).zip(side.first..) {
+                let charges: Vec<f64> = solved.air.iter().map(|vector| vector[first + panel]).collect();
+                add_products(&mut walls[wall], &charges, spread);
                 let half = if matches!(side.face, Face::Foot | Face::Top) { 0.5 / inverse } else { 0.0 };
-                sources.push(Source { charge: *q, x: contour.x[panel], z: contour.z[panel], half });
-                current += sign * q;
+                sources.push(Source { charges, x: contour.x[panel], z: contour.z[panel], half });
             }
         }
         first += contour.len();
     }
     let room = Room::new(section);
-    room.add_walls(&sources, &mut shares);
-    // Each line carries current / lines; power is shared among the lines.
-    let line_current = current / lines;
-    shares.scaled(1.0 / (lines * line_current * line_current))
+    let [.., ground, lid, side_walls] = &mut walls;
+    room.add_walls(&sources, count, section.is_symmetric(), [ground, lid, side_walls]);
+    WallMatrices { count, walls }
 }
 
 /// One panel's charge: a flat stretch, or a line for the upright sides, which are short against their distance from every wall.
 struct Source {
-    charge: f64,
+    /// For one volt on each strip in turn.
+    charges: Vec<f64>,
     x: f64,
     z: f64,
     half: f64,
@@ -148,53 +173,66 @@ impl Room {
         }
     }
 
-    fn add_walls(&self, sources: &[Source], shares: &mut WallShares) {
+    fn add_walls(&self, sources: &[Source], count: usize, symmetric: bool, [ground, lid_share, side_walls]: [&mut Vec<f64>; 3]) {
         let reach = self.wall_x_m.unwrap_or(0.5 * self.span_m + GROUND_REACH * self.height_m);
+        let mut density = vec![0.0; count];
         let mut heights = vec![(false, self.height_m)];
         if let Some(lid) = self.lid_m {
             heights.push((true, lid));
         }
         for (is_lid, distance) in heights {
-            let density = |x: f64| -> f64 {
-                let mut sum = 0.0;
-                for source in sources {
-                    let (a, other) = if is_lid {
-                        (distance - source.z, Some(self.height_m + source.z))
-                    } else {
-                        (distance + source.z, self.lid_m.map(|lid| lid - source.z))
-                    };
-                    for (position, sign) in self.images(source.x) {
-                        let offset = x - position;
-                        sum += sign
-                            * source.charge
-                            * if source.half > 0.0 {
-                                (Room::plane_charge(a, other, offset + source.half) - Room::plane_charge(a, other, offset - source.half))
-                                    / (2.0 * source.half)
-                            } else {
-                                Room::plane_density(a, other, offset)
-                            };
+            let share = if is_lid { &mut *lid_share } else { &mut *ground };
+            for (x, weight) in graded_points(0.5 * self.span_m, reach, distance.min(self.height_m)) {
+                // What reads the same from the right is looked at from there only in the end.
+                for side in [1.0, -1.0].into_iter().take(if symmetric { 1 } else { 2 }) {
+                    density.fill(0.0);
+                    for source in sources {
+                        let (a, other) = if is_lid {
+                            (distance - source.z, Some(self.height_m + source.z))
+                        } else {
+                            (distance + source.z, self.lid_m.map(|lid| lid - source.z))
+                        };
+                        let mut unit = 0.0;
+                        for (position, sign) in self.images(source.x) {
+                            let offset = side * x - position;
+                            unit += sign
+                                * if source.half > 0.0 {
+                                    (Room::plane_charge(a, other, offset + source.half)
+                                        - Room::plane_charge(a, other, offset - source.half))
+                                        / (2.0 * source.half)
+                                } else {
+                                    Room::plane_density(a, other, offset)
+                                };
+                        }
+                        add_scaled(&mut density, &source.charges, unit);
                     }
+                    add_products(share, &density, weight);
                 }
-                sum * sum
-            };
-            // The strips' arrangement is the same from both sides only for one strip or a pair; those are all that come here.
-            let value = 2.0 * integrate_graded(density, 0.5 * self.span_m, reach, distance.min(self.height_m));
-            if is_lid { shares.lid_per_m += value } else { shares.ground_per_m += value }
+            }
+            if symmetric {
+                add_turned(share);
+            }
         }
         if let Some(wall) = self.wall_x_m {
             let top = self.lid_m.unwrap_or(GROUND_REACH * (self.height_m + 2.0 * wall));
-            let density = |z: f64| -> f64 {
-                let mut sum = 0.0;
-                for source in sources {
-                    for (position, sign) in self.images(source.x) {
-                        sum += sign * source.charge * self.sideways(wall - position, z, source.z);
+            let upward = graded_points(2.0 * self.height_m, top, self.height_m);
+            let downward = graded_points(self.height_m, self.height_m, self.height_m).into_iter().map(|(depth, weight)| (-depth, weight));
+            for (z, weight) in upward.into_iter().chain(downward) {
+                for side in [1.0, -1.0].into_iter().take(if symmetric { 1 } else { 2 }) {
+                    density.fill(0.0);
+                    for source in sources {
+                        let mut unit = 0.0;
+                        for (position, sign) in self.images(source.x) {
+                            unit += sign * self.sideways(side * wall - position, z, source.z);
+                        }
+                        add_scaled(&mut density, &source.charges, side * unit);
                     }
+                    add_products(side_walls, &density, weight);
                 }
-                sum * sum
-            };
-            let upward = integrate_graded(density, 2.0 * self.height_m, top, self.height_m);
-            let downward = integrate_graded(|depth| density(-depth), self.height_m, self.height_m, self.height_m);
-            shares.walls_per_m += 2.0 * (upward + downward);
+            }
+            if symmetric {
+                add_turned(side_walls);
+            }
         }
     }
 
@@ -216,8 +254,20 @@ impl Room {
     }
 }
 
-/// Integral from 0 to `end`: panels of `scale` up to `even` and a little beyond, then doubling.
-fn integrate_graded(density: impl Fn(f64) -> f64, even: f64, end: f64, scale: f64) -> f64 {
+/// Adds to a matrix itself with the strips counted from the right.
+fn add_turned(matrix: &mut [f64]) {
+    let turned: Vec<f64> = matrix.iter().rev().copied().collect();
+    add_scaled(matrix, &turned, 1.0);
+}
+
+fn add_scaled(sum: &mut [f64], values: &[f64], factor: f64) {
+    for (sum, value) in sum.iter_mut().zip(values) {
+        *sum += factor * value;
+    }
+}
+
+/// Points and weights from 0 to `end`: panels of `scale` up to `even` and a little beyond, then growing.
+fn graded_points(even: f64, end: f64, scale: f64) -> Vec<(f64, f64)> {
     let mut edges = vec![0.0];
     // At most some thousand panels: `check` bounds the span by the layer.
     let first = (even + 2.0 * scale).min(end);
@@ -232,12 +282,13 @@ fn integrate_graded(density: impl Fn(f64) -> f64, even: f64, end: f64, scale: f6
         edges.push(x);
         width *= 1.6;
     }
-    let mut sum = 0.0;
+    let mut points = Vec::with_capacity(8 * edges.len());
     for pair in edges.windows(2) {
         let (middle, half) = (0.5 * (pair[0] + pair[1]), 0.5 * (pair[1] - pair[0]));
         for (node, weight) in GAUSS_8 {
-            sum += weight * half * (density(middle - half * node) + density(middle + half * node));
+            points.push((middle - half * node, weight * half));
+            points.push((middle + half * node, weight * half));
         }
     }
-    sum
+    points
 }
