@@ -159,7 +159,8 @@ fn layout(set: &Dimensions) -> Result<Layout, Problem> {
         arriving = if k < set.degree {
             let from = draft.step(clear, main, Way::Right);
             let length = value(line_length(k))?;
-            if length <= Nm::ZERO {
+            // Shorter, the two steps leave a sliver between them.
+            if length.m() < set.order.shop.line_m.max(set.order.shop.gap_m) {
                 return Err(no_room(k, length.m()));
             }
             draft.strip(from, length, Way::Right, vec![LINE_WIDTH.into(), line_length(k)])
@@ -233,7 +234,7 @@ impl Family for CoupledResonatorStop {
                         let targets = [("electrical length deg", theta.to_degrees())];
                         let mut line = Dimension::guess(line_length(k), theta / beta, &targets);
                         line.correct("run along corner and next end", -cleared_m(&list, k));
-                        if line.value_m <= 0.0 {
+                        if line.value_m < order.shop.line_m.max(order.shop.gap_m) {
                             problems.push(no_room(k, line.value_m));
                         }
                         list.push(line);

@@ -77,13 +77,23 @@ pub fn miss(family: &dyn Family, set: &Dimensions) -> Result<Miss, Vec<Problem>>
 
 fn miss_with(family: &dyn Family, set: &Dimensions, goal: &Target, book: &Book) -> Result<Miss, Vec<Problem>> {
     let circuit = circuit(family, set, book)?;
-    Passband::of(&circuit, goal).map(|passband| Miss::of(&passband, goal)).ok_or_else(|| vec![passband_lost()])
+    Passband::of(&circuit, goal).map(|passband| Miss::of(&passband, goal)).ok_or_else(|| vec![passband_lost(goal)])
 }
 
-fn passband_lost() -> Problem {
+/// The order's key that holds the edges of a target.
+fn band_key(goal: &Target) -> Place {
+    let key = match (goal.passes_hz.len(), goal.edges_hz.len()) {
+        (2.., _) => "stopband",
+        (_, 1) => "cutoff",
+        _ => "passband",
+    };
+    Place::Key(format!("filter.{key}"))
+}
+
+fn passband_lost(goal: &Target) -> Problem {
     Problem::error(
         "passband-lost",
-        Place::Key("filter.passband".into()),
+        band_key(goal),
         "the response of these dimensions has no passband within half a bandwidth of the ordered one",
         "undo the last edit of the dimensions, or order a band this laminate can make",
     )
@@ -129,7 +139,7 @@ fn not_reached(miss: &Miss, goal: &Target, curves: &[ProbeCurve]) -> Problem {
         curves.iter().filter(|curve| curve.found_m.is_none()).map(|curve| format!("; {}", curve.describe())).collect();
     Problem::error(
         "passband-not-reached",
-        Place::Key("filter.passband".into()),
+        band_key(goal),
         format!(
             "the best these dimensions do is {}; allowed are 1 % of the bandwidth or 0.3 % of the frequency ({:.2} MHz) and 0.5 dB{}",
             miss.describe(),
@@ -178,9 +188,16 @@ impl Search<'_> {
         let aligned = x.clone();
         let ports = self.guess.order.filter.ports_ohm;
         let mut measure = if ports[0] == ports[1] && self.is_symmetric(&x) { Measure::Signed } else { Measure::Squared };
+        let mut is_fresh = true;
         for round in 0..ROUNDS {
             if round == 0 || best.0 > 1.0 {
-                x.copy_from_slice(&aligned);
+                // Another measure begins anew; the same one goes on from the best so far.
+                if is_fresh {
+                    x.copy_from_slice(&aligned);
+                } else if best.0.is_finite() {
+                    x.copy_from_slice(&best.1);
+                }
+                is_fresh = measure == Measure::Signed;
                 minimize(&mut x, &steps, &greatest, FIT_ITERATIONS, |x| self.fit(x, measure));
                 self.keep(&x, &mut best);
                 measure = Measure::Squared;

@@ -78,5 +78,5 @@ fn shift(family: &dyn Family, set: &Dimensions, target: &Target, built: impl Fn(
         }
         share *= 0.5;
     }
-    Err(vec![passband_lost()])
+    Err(vec![passband_lost(target)])
 }

@@ -126,3 +126,18 @@ fn the_predicted_resonance_gives_back_the_unloaded_q() {
     let said = length.serves.iter().find(|(what, _)| what == "unloaded Q").unwrap().1;
     assert!((unloaded / said - 1.0).abs() < 0.04, "{unloaded} {said}");
 }
+
+/// J.-S. Hong and M. J. Lancaster, section 5.2.3: the tap of a half-wave resonator at (2 L / pi) asin sqrt((pi/2) (Z0/Zr) / Qe) from its middle, L a
+/// quarter wave: in angle asin sqrt(...). With the section's figures n = 5, 0.1 dB, 20 %: Qe = g0 g1 / FBW = 5.734 (printed), Z0 = 50, Zr = 68.3 ohm:
+/// 6.03 of 20.4 mm, so 26.6 degrees. Tolerance 0.1 degree: printed digits.
+#[test]
+fn tap_of_a_half_wave_resonator() {
+    let found = first_guess(
+        "family = \"edge-coupled\"\ninput = \"tapped\"\nresonator-impedance = \"68.3 ohm\"\nresponse = \"equal-ripple\"\npassband = [\"1.8 GHz\", \"2.2 GHz\"]\nripple = \"0.1 dB\"",
+        "permittivity = 6.15\nin-plane-permittivity = 6.15\nthickness = \"1.27 mm\"",
+        5,
+    );
+    assert!((found("tap 1 inner length", "external Q") - 5.734).abs() < 1e-3, "{}", found("tap 1 inner length", "external Q"));
+    let degrees = found("tap 1 inner length", "electrical length deg");
+    assert!((degrees - 6.03 / 20.4 * 90.0).abs() < 0.1, "{degrees}");
+}
