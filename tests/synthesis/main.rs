@@ -7,3 +7,4 @@ mod published_designs;
 mod random_orders;
 mod response_laws;
 mod second_circuit;
+mod tapped;
