@@ -219,9 +219,9 @@ impl Family for CoupledResonatorStop {
                 problems.push(Problem::error("impedance-out-of-reach", Place::Key("filter.port".into()), message, why.help));
             }
         }
-        for k in 1..=degree {
+        for (k, element) in g.iter().enumerate().take(degree + 1).skip(1) {
             // Reactance slope over Z0 of the branch to ground, and from it what the resonator alone loses to the line.
-            let slope = 1.0 / (g[k] * fraction);
+            let slope = 1.0 / (element * fraction);
             let coupling = (PI / (2.0 * slope)).sqrt() / ARM_RAD.sin();
             match self.resonator(&built, order, k, [slope, coupling], center_hz) {
                 Ok(dimensions) => {

@@ -40,8 +40,8 @@ fn compares_every_family_that_passes_a_band_and_refuses_with_the_one_that_fits()
 #[test]
 fn another_gap_limit_of_the_shop_changes_the_advice() {
     let narrow = [
-        ("[\"3.40 GHz\", \"3.80 GHz\"]", "[\"3.58 GHz\", \"3.62 GHz\"]"),
-        ("[\"3.45 GHz\", \"3.75 GHz\"]", "[\"3.59 GHz\", \"3.61 GHz\"]"),
+        ("[\"3.40 GHz\", \"3.80 GHz\"]", "[\"3.595 GHz\", \"3.605 GHz\"]"),
+        ("[\"3.45 GHz\", \"3.75 GHz\"]", "[\"3.598 GHz\", \"3.602 GHz\"]"),
     ];
     let plain = ("# degree = 5 ", "degree = 2 ");
     let with_gap = |gap: &'static str| {
@@ -49,7 +49,7 @@ fn another_gap_limit_of_the_shop_changes_the_advice() {
         changes.extend([plain, ("# gap = \"0.15 mm\"", gap)]);
         advice(&changes)
     };
-    // 1.1 % wide: the end gap that this asks for is narrower than 0.15 mm and wider than 0.02 mm.
+    // 0.3 % wide: the end gap that this asks for is narrower than 0.15 mm and wider than 0.02 mm.
     let (_, fine) = with_gap("gap = \"0.02 mm\"");
     let (_, coarse) = with_gap("gap = \"0.15 mm\"");
     assert!(fine("end-coupled")["possible"] == true, "{}", fine("end-coupled"));

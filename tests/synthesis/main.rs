@@ -8,3 +8,4 @@ mod published_rows;
 mod random_orders;
 mod response_laws;
 mod second_circuit;
+mod tapped;
