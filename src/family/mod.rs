@@ -7,9 +7,15 @@ mod feeds;
 mod grounds;
 mod hairpin;
 mod interdigital;
+mod open_stub;
+mod open_stub_stop;
 mod own;
 mod probe;
+mod quarter_wave_stub;
 mod row;
+mod shorted_stub;
+mod stepped_impedance;
+mod stub_chain;
 mod target;
 
 pub use probe::{Aim, Drawing, Probe};
@@ -107,7 +113,17 @@ pub enum Moves {
 }
 
 /// Every family, in the order `list` shows them. The one list: order reading, help, templates and tests follow it.
-pub static FAMILIES: &[&dyn Family] = &[&edge_coupled::EdgeCoupled, &interdigital::Interdigital, &hairpin::Hairpin, &combline::Combline];
+pub static FAMILIES: &[&dyn Family] = &[
+    &edge_coupled::EdgeCoupled,
+    &interdigital::Interdigital,
+    &hairpin::Hairpin,
+    &combline::Combline,
+    &open_stub::OpenStub,
+    &stepped_impedance::SteppedImpedance,
+    &shorted_stub::ShortedStub,
+    &quarter_wave_stub::QuarterWaveStub,
+    &open_stub_stop::OpenStubStop,
+];
 
 /// The family an order names.
 ///

@@ -4,6 +4,7 @@
 mod orders;
 mod published_designs;
 mod published_rows;
+mod published_stubs;
 mod random_orders;
 mod response_laws;
 mod second_circuit;
