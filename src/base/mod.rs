@@ -1,5 +1,6 @@
-//! What every room stands on: problems, quantities, whole nanometres, root finding.
+//! What every room stands on: problems, quantities, whole nanometres, root finding, least squares.
 
+mod least_squares;
 mod linear;
 mod nm;
 mod problem;
@@ -7,6 +8,7 @@ mod quantity;
 mod root;
 mod spelling;
 
+pub use least_squares::minimize;
 pub use linear::solve_in_place;
 pub use nm::{Nm, Point};
 pub use problem::{Outcome, Place, Problem, Severity};

@@ -9,10 +9,16 @@ mod feeds;
 mod grounds;
 mod hairpin;
 mod interdigital;
+mod open_stub;
+mod open_stub_stop;
 mod own;
 mod probe;
+mod quarter_wave_stub;
 mod row;
+mod shorted_stub;
 mod single_resonator;
+mod stepped_impedance;
+mod stub_chain;
 mod taps;
 mod target;
 
@@ -119,6 +125,11 @@ pub static FAMILIES: &[&dyn Family] = &[
     &combline::Combline,
     &single_resonator::SingleResonator,
     &coupled_resonator_stop::CoupledResonatorStop,
+    &stepped_impedance::SteppedImpedance,
+    &open_stub::OpenStub,
+    &shorted_stub::ShortedStub,
+    &quarter_wave_stub::QuarterWaveStub,
+    &open_stub_stop::OpenStubStop,
 ];
 
 /// The family an order names.

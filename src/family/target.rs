@@ -12,6 +12,9 @@ use crate::prototype::edge_height;
 /// A low-pass is scanned from this part of its cutoff upwards: below, its reflection is a zero that every circuit between equal ports has.
 const LOWEST_OF_CUTOFF: f64 = 0.02;
 
+/// A very wide band is grown as if it were no wider than so many times its lower edge.
+const LOWEST_REACH: f64 = 1.6;
+
 /// K over its height at the edge, as a function of frequency in hertz.
 type Law = Arc<dyn Fn(f64) -> f64 + Send + Sync>;
 
@@ -120,8 +123,11 @@ impl Target {
 
     /// An interval grown outwards at its edges by a part of itself (or of the stopband, where that is narrower).
     pub fn grown(&self, [from, to]: [f64; 2], part: f64) -> [f64; 2] {
-        let reach = part * (to - from).min(self.width_hz);
         let held = |end: f64| self.edges_hz.contains(&end);
+        // Half of this is still above zero frequency, and below the next passband of a high-pass of stubs, which comes as far above its upper edge as the
+        // lower edge is from zero, twice.
+        let room = if held(from) { LOWEST_REACH * from } else { f64::INFINITY };
+        let reach = part * (to - from).min(self.width_hz).min(room);
         [if held(from) { from - reach } else { from }, if held(to) { to + reach } else { to }]
     }
 }

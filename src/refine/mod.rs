@@ -1,7 +1,6 @@
 //! From response back to dimensions: the network in the loop moves the set until the lossless passband is the prototype's.
 
 mod degree;
-mod least_squares;
 mod passband;
 mod probe;
 mod sensitivity;
@@ -9,6 +8,7 @@ mod sensitivity;
 use crate::base::Nm;
 use crate::base::Place;
 use crate::base::Problem;
+use crate::base::minimize;
 use crate::dimensions::Dimensions;
 use crate::family::Family;
 use crate::family::Knob;
@@ -20,7 +20,6 @@ use crate::network::Circuit;
 use crate::network::Planes;
 use crate::order::ResponseShape;
 pub use degree::{Chosen, synthesize};
-use least_squares::minimize;
 use num_complex::Complex64;
 pub use passband::{Miss, Passband};
 pub use probe::ProbeCurve;

@@ -5,6 +5,7 @@ mod bad_requests;
 mod orders;
 mod published_designs;
 mod published_rows;
+mod published_stubs;
 mod random_orders;
 mod response_laws;
 mod second_circuit;

@@ -43,7 +43,7 @@ pub fn minimize(
                 matrix[i * n + i] += 1e-12;
                 right[i] = -columns[i].iter().zip(&r).map(|(a, b)| a * b).sum::<f64>();
             }
-            if !crate::base::solve_in_place(&mut matrix, &mut right) {
+            if !super::solve_in_place(&mut matrix, &mut right) {
                 damping *= 10.0;
                 continue;
             }
