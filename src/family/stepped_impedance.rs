@@ -172,17 +172,17 @@ impl Family for SteppedImpedance {
         }
         let g = ladder(order.filter.response, degree);
         let mut list = Vec::new();
-        for k in 1..=degree {
+        for (k, g) in g.iter().copied().enumerate().skip(1).take(degree) {
             let is_high = is_high(order, k);
             let (width_m, ohm, per_rad_m) = if is_high { high } else { low };
             // What a short line has of reactance is the sine of its length; beyond the sine's reach the length grows half as fast as the element.
-            let element = g[k] * if is_high { port_ohm / ohm } else { ohm / port_ohm };
+            let element = g * if is_high { port_ohm / ohm } else { ohm / port_ohm };
             let theta = if element <= SINE_REACH { element.asin() } else { SINE_REACH.asin() + 0.5 * (element - SINE_REACH) };
             list.push(Dimension::guess(section(k, "width"), width_m, &[("Z0 ohm", ohm)]));
             list.push(Dimension::guess(
                 section(k, "length"),
                 theta * per_rad_m,
-                &[("g", g[k]), ("electrical length deg", theta.to_degrees())],
+                &[("g", g), ("electrical length deg", theta.to_degrees())],
             ));
         }
         list.extend(feeds::guess(order, &built, own::number(order, KEYS, "feed-length"), cutoff_hz)?);

@@ -75,6 +75,9 @@ pub struct StubChain {
     pub patches: bool,
 }
 
+/// The strips of one kind: their dimensions' names, how many, what they are called, whether their widths are knobs.
+type Kind = (fn(usize, &str) -> String, usize, &'static str, bool);
+
 /// Impedance (ohm) of a strip and its length (rad) at the frequency of the guess.
 pub type Wanted = (f64, f64);
 
@@ -174,12 +177,12 @@ impl StubChain {
     pub fn knobs(&self, set: &Dimensions, line_widths: bool, stub_widths: bool) -> Vec<Knob> {
         let at = |name: &str| set.list.iter().position(|d| d.name == name);
         let value = |name: &str| set.value(name).ok();
-        let kinds: [(fn(usize, &str) -> String, usize, &str, bool); 3] = [
+        let kinds: [Kind; 3] = [
             (stub, self.stubs, "stub", stub_widths),
             (line, self.lines(), "line", line_widths),
             (patch, if self.patches { self.stubs } else { 0 }, "patch", stub_widths),
         ];
-        let mirrored = |(name, count, ..): &(fn(usize, &str) -> String, usize, &str, bool)| {
+        let mirrored = |(name, count, ..): &Kind| {
             (1..=*count).all(|k| ["width", "length"].iter().all(|what| value(&name(k, what)) == value(&name(count + 1 - k, what))))
         };
         let symmetric = set.order.filter.ports_ohm[0] == set.order.filter.ports_ohm[1] && kinds.iter().all(mirrored);
