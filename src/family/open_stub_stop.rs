@@ -123,7 +123,7 @@ impl Family for OpenStubStop {
                     "a stopband of {:.0} % asks for stubs of {highest:.0} ohm; the shop's narrowest line has {narrowest_ohm:.0} ohm",
                     200.0 * (to_hz - from_hz) / (from_hz + to_hz)
                 ),
-                "order a wider stopband, a thicker laminate or a finer shop class, or a family with coupled resonators, which fits narrow stopbands",
+                "order a wider stopband, a thicker laminate or a finer shop class, or family = \"coupled-resonator-stop\", which fits narrow stopbands",
             )]);
         }
         let wanted = |z: Vec<f64>| z.into_iter().map(|z| (z * port_ohm, FRAC_PI_2)).collect::<Vec<_>>();

@@ -20,6 +20,9 @@ use crate::prototype::ladder;
 /// Gaps are searched for between the shop's narrowest and so many heights of the laminate: beyond, couplings are a hundredth of a per cent.
 const WIDEST_GAP_HEIGHTS: f64 = 8.0;
 
+/// Draws some neighbouring resonators of a set, with feeds or without.
+pub type Drawn = fn(&Dimensions, &[usize], bool) -> Result<Layout, Vec<Problem>>;
+
 /// `resonator 2 length`.
 pub fn resonator(i: usize, what: &str) -> String {
     format!("resonator {i} {what}")
@@ -83,7 +86,7 @@ pub fn tap_angle(order: &Order, degree: usize, fraction: f64, slope_s: f64) -> [
 }
 
 /// Resonance of one resonator, coupling of each pair of neighbours, external Q of the ends; `drawn` draws some neighbours with or without feeds.
-pub fn probes(set: &Dimensions, least_gap_m: f64, drawn: fn(&Dimensions, &[usize], bool) -> Result<Layout, Vec<Problem>>) -> Vec<Probe> {
+pub fn probes(set: &Dimensions, least_gap_m: f64, drawn: Drawn) -> Vec<Probe> {
     let index = |name: String| set.list.iter().position(|d| d.name == name);
     let serves = |i: usize| set.list[i].serves.first().map_or(f64::NAN, |(_, value)| *value);
     let Band::BandPass { from_hz, to_hz } = set.order.filter.band else { return Vec::new() };

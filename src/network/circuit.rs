@@ -65,7 +65,7 @@ struct Now {
 
 /// Where arms meet.
 enum Junction {
-    Tee(Tee),
+    Tee(Box<Tee>),
     Cross(Box<Cross>),
 }
 
@@ -199,7 +199,7 @@ impl Circuit {
             Part::Bend(corner) => return self.bend(book, *corner, width(0), nodes, joints),
             Part::Tee => {
                 let arms = [0, 1, 2].map(|arm| book.strip(width(arm)));
-                return self.junction(book, layout, Junction::Tee(tee(&arms[0], &arms[1], &arms[2])), nodes, joints);
+                return self.junction(book, layout, Junction::Tee(Box::new(tee(&arms[0], &arms[1], &arms[2]))), nodes, joints);
             }
             Part::Cross => {
                 // Round the crossing: through, side, through, side.

@@ -30,6 +30,8 @@ fn board(er: f64, h_m: f64) -> AsBuilt {
         roughness_m: 0.0,
         conductivity_s_per_m: 5.8e7,
         plating: None,
+        hole_plating_m: 25e-6,
+        ten_point_height_m: None,
         lid_m: None,
         widening_m: 0.0,
         lossless: true,
