@@ -19,6 +19,7 @@ fn board(permittivity: f64, thickness: f64, statics: StaticsModel) -> AsBuilt {
         ten_point_height_m: None,
         conductivity_s_per_m: 5.8e7,
         plating: None,
+        hole_plating_m: 25e-6,
         lid_m: None,
         widening_m: 0.0,
         lossless: true,
