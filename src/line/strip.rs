@@ -20,7 +20,7 @@ use crate::base::Problem;
 /// use stripwright::line::{AsBuilt, StaticsModel, Strip};
 /// let board = AsBuilt {
 ///     permittivity: 3.0, in_plane_permittivity: 3.0, loss_tangent: 0.0013, thickness_m: 0.762e-3, copper_thickness_m: 0.0, undercut_m: 0.0,
-///     roughness_m: 0.0, ten_point_height_m: None, conductivity_s_per_m: 5.8e7, plating: None, lid_m: None, widening_m: 0.0,
+///     roughness_m: 0.0, ten_point_height_m: None, conductivity_s_per_m: 5.8e7, plating: None, hole_plating_m: 25e-6, lid_m: None, widening_m: 0.0,
 ///     lossless: true, statics: StaticsModel::Numerical,
 /// };
 /// let strip = Strip::new(&board, 2.5 * 0.762e-3);

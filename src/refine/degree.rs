@@ -15,7 +15,7 @@ use crate::order::Order;
 /// add less than this at the frequencies of a requirement below the second passband.
 const HOPELESS_DB: f64 = 6.0;
 
-/// Degrees that find no geometry before the search ends: a greater one asks for weaker couplings and is as out of reach.
+/// Degrees in a row that find no geometry before the search ends: a greater one asks for weaker couplings and is as out of reach.
 const MOST_WITHOUT_GEOMETRY: usize = 2;
 
 /// A refined set with the reason for its degree.
@@ -51,6 +51,7 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
     let mut without_geometry = 0;
     for degree in least..=most {
         if let Some(miss) = hopeless(order, &family.target(order, degree)) {
+            without_geometry = 0;
             misses.push(Miss { degree, falls_short: true, why: miss, mend: None });
             continue;
         }
@@ -72,6 +73,7 @@ pub fn synthesize(family: &dyn Family, order: &Order) -> Result<Chosen, Vec<Prob
                 continue;
             }
         };
+        without_geometry = 0;
         let figures = figures(family, &refined)?;
         if figures.all_met() {
             return Ok(Chosen { reason: Some(reason(degree, &figures)), refined });
