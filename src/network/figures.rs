@@ -157,8 +157,11 @@ pub fn passes_hz(order: &Order) -> Vec<[f64; 2]> {
     }
 }
 
-/// Points per bandwidth of the default sweep, and their greatest number.
+/// Points per bandwidth of the default sweep.
 const POINTS_PER_BAND: f64 = 100.0;
+/// A wide band is swept in steps of at most this part of its upper edge: its ripples are narrower than the band.
+const POINTS_PER_EDGE: f64 = 500.0;
+/// Their greatest number.
 const MOST_POINTS: usize = 8001;
 
 /// The frequencies at which an order's response is predicted: evenly spaced, on round numbers, from a quarter of the band's lower edge
@@ -167,7 +170,7 @@ pub fn sweep_hz(order: &Order) -> Vec<f64> {
     let [from_hz, to_hz] = passband_hz(order);
     let low = order.requirements.iter().map(|r| r.from_hz).fold(0.25 * if from_hz > 0.0 { from_hz } else { to_hz }, f64::min);
     let high = order.requirements.iter().map(|r| r.to_hz).fold(3.25 * to_hz, f64::max);
-    let finest = ((to_hz - from_hz) / POINTS_PER_BAND).max((high - low) / (MOST_POINTS - 3) as f64);
+    let finest = ((to_hz - from_hz) / POINTS_PER_BAND).min(to_hz / POINTS_PER_EDGE).max((high - low) / (MOST_POINTS - 3) as f64);
     let decade = 10f64.powf(finest.log10().floor());
     let step = [1.0, 2.0, 5.0].map(|m| m * decade).into_iter().filter(|s| *s <= finest * 1.0001).fold(decade, f64::max);
     let step = if (high - low) / step > (MOST_POINTS - 3) as f64 { step * 2.5 } else { step };
