@@ -31,12 +31,9 @@ use crate::layout::Layout;
 use crate::layout::Part;
 use crate::layout::Way;
 use crate::line::AsBuilt;
-use crate::line::C_M_PER_S;
-use crate::line::Strip;
 use crate::line::ViaHoles;
 use crate::line::open_end;
 use crate::line::via;
-use crate::line::width_for_impedance;
 use crate::order::Band;
 use crate::order::Key;
 use crate::order::Order;
@@ -192,16 +189,8 @@ impl Family for Combline {
         let built = AsBuilt::nominal(order).without_loss();
         let (center_hz, fraction) = (0.5 * (from_hz + to_hz), 2.0 * (to_hz - from_hz) / (from_hz + to_hz));
         let strip_ohm = own::number(order, KEYS, "resonator-impedance");
-        let width_m = width_for_impedance(&built, strip_ohm, center_hz).map_err(|unreachable| {
-            vec![Problem::error(
-                "impedance-out-of-reach",
-                Place::Key("filter.resonator-impedance".into()),
-                format!("no strip of {strip_ohm} ohm: {}", unreachable.message),
-                unreachable.help,
-            )]
-        })?;
-        let strip = Strip::new(&built, width_m);
-        let wave = std::f64::consts::TAU * center_hz * strip.at(center_hz).eps_eff.sqrt() / C_M_PER_S;
+        let (strip, wave) = row::strip(&built, "resonator-impedance", strip_ohm, center_hz)?;
+        let width_m = strip.width_m();
         let Part::Via { diameter, count, pitch, .. } = grounds::via(order, Nm::from_m(width_m), MOST_HOLES) else { return Err(Vec::new()) };
         let holes = ViaHoles::row(diameter.m() + 2.0 * built.hole_plating_m, built.hole_plating_m, count, pitch.m());
         // An inductance at a grounded end is a line of that reactance.
@@ -216,16 +205,8 @@ impl Family for Combline {
                 format!("patch-impedance = \"{:.0} ohm\", or a higher resonator-impedance", 0.6 * strip_ohm),
             )]);
         }
-        let patch_m = width_for_impedance(&built, patch_ohm, center_hz).map_err(|unreachable| {
-            vec![Problem::error(
-                "impedance-out-of-reach",
-                Place::Key("filter.patch-impedance".into()),
-                format!("no patch of {patch_ohm} ohm: {}", unreachable.message),
-                unreachable.help,
-            )]
-        })?;
-        let patch = Strip::new(&built, patch_m);
-        let patch_wave = std::f64::consts::TAU * center_hz * patch.at(center_hz).eps_eff.sqrt() / C_M_PER_S;
+        let (patch, patch_wave) = row::strip(&built, "patch-impedance", patch_ohm, center_hz)?;
+        let patch_m = patch.width_m();
         let end_m = open_end::extension_m(&patch);
         // At resonance the patch's susceptance tan(theta)/Zp is the strip's cot(theta)/Zr.
         let load_rad = (patch_ohm / (strip_ohm * STRIP_RAD.tan())).atan();

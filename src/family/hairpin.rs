@@ -30,11 +30,9 @@ use crate::layout::Layout;
 use crate::layout::Part;
 use crate::layout::Way;
 use crate::line::AsBuilt;
-use crate::line::C_M_PER_S;
 use crate::line::Strip;
 use crate::line::open_end;
 use crate::line::optimum_cut;
-use crate::line::width_for_impedance;
 use crate::order::Band;
 use crate::order::Key;
 use crate::order::Order;
@@ -213,16 +211,8 @@ impl Family for Hairpin {
         let (center_hz, fraction) = (0.5 * (from_hz + to_hz), 2.0 * (to_hz - from_hz) / (from_hz + to_hz));
         let strip_ohm = own::number(order, KEYS, "resonator-impedance");
         let spacing_m = own::number(order, KEYS, "arm-spacing");
-        let width_m = width_for_impedance(&built, strip_ohm, center_hz).map_err(|unreachable| {
-            vec![Problem::error(
-                "impedance-out-of-reach",
-                Place::Key("filter.resonator-impedance".into()),
-                format!("no strip of {strip_ohm} ohm: {}", unreachable.message),
-                unreachable.help,
-            )]
-        })?;
-        let strip = Strip::new(&built, width_m);
-        let wave = std::f64::consts::TAU * center_hz * strip.at(center_hz).eps_eff.sqrt() / C_M_PER_S;
+        let (strip, wave) = row::strip(&built, "resonator-impedance", strip_ohm, center_hz)?;
+        let width_m = strip.width_m();
         let quarter_m = std::f64::consts::FRAC_PI_2 / wave;
         // Half of what lies between the arms' ends, corners taken along their middle.
         let half_bar_m = 0.5 * (spacing_m + width_m);

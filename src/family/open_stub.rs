@@ -56,7 +56,7 @@ static KEYS: &[Key] = &[
 ];
 
 fn chain(order: &Order, degree: usize) -> StubChain {
-    StubChain { stubs: degree, end: End::Open, sides: Sides::of(own::word(order, KEYS, "stubs")), outer_lines: false, patches: false }
+    StubChain { stubs: degree, end: End::Open, sides: Sides::of(own::word(order, KEYS, "stubs")) }
 }
 
 fn cutoff_theta(order: &Order) -> f64 {
@@ -122,7 +122,7 @@ impl Family for OpenStub {
         let port_ohm = order.filter.ports_ohm[0];
         let wanted = |z: Vec<f64>| z.into_iter().map(|z| (z * port_ohm, theta)).collect::<Vec<_>>();
         let feed_m = own::number(order, KEYS, "feed-length");
-        let list = chain(order, degree).guess(order, cutoff_hz, feed_m, &wanted(lines), &wanted(stubs), &[])?;
+        let list = chain(order, degree).guess(order, cutoff_hz, feed_m, &wanted(lines), &wanted(stubs))?;
         Ok((Dimensions { order: order.clone(), degree, list }, Vec::new()))
     }
 

@@ -52,7 +52,7 @@ static KEYS: &[Key] = &[
 ];
 
 fn chain(order: &Order, degree: usize) -> StubChain {
-    StubChain { stubs: degree, end: End::Open, sides: Sides::of(own::word(order, KEYS, "stubs")), outer_lines: false, patches: false }
+    StubChain { stubs: degree, end: End::Open, sides: Sides::of(own::word(order, KEYS, "stubs")) }
 }
 
 /// Frequency at which the stubs are a quarter wave, and their length at the lower edge (rad).
@@ -128,7 +128,7 @@ impl Family for OpenStubStop {
         }
         let wanted = |z: Vec<f64>| z.into_iter().map(|z| (z * port_ohm, FRAC_PI_2)).collect::<Vec<_>>();
         let feed_m = own::number(order, KEYS, "feed-length");
-        let list = chain(order, degree).guess(order, center_hz, feed_m, &wanted(lines), &wanted(stubs), &[])?;
+        let list = chain(order, degree).guess(order, center_hz, feed_m, &wanted(lines), &wanted(stubs))?;
         Ok((Dimensions { order: order.clone(), degree, list }, Vec::new()))
     }
 

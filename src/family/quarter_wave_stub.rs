@@ -56,7 +56,7 @@ static KEYS: &[Key] = &[
 ];
 
 fn chain(order: &Order, degree: usize) -> StubChain {
-    StubChain { stubs: degree, end: End::Ground, sides: Sides::of(own::word(order, KEYS, "stubs")), outer_lines: false, patches: false }
+    StubChain { stubs: degree, end: End::Ground, sides: Sides::of(own::word(order, KEYS, "stubs")) }
 }
 
 fn frame([from_hz, to_hz]: [f64; 2]) -> (f64, f64) {
@@ -131,7 +131,7 @@ impl Family for QuarterWaveStub {
         }
         let wanted = |y: Vec<f64>| y.into_iter().map(|y| (port_ohm / y, FRAC_PI_2)).collect::<Vec<_>>();
         let feed_m = own::number(order, KEYS, "feed-length");
-        let list = chain(order, degree).guess(order, center_hz, feed_m, &wanted(lines), &wanted(stubs), &[])?;
+        let list = chain(order, degree).guess(order, center_hz, feed_m, &wanted(lines), &wanted(stubs))?;
         Ok((Dimensions { order: order.clone(), degree, list }, Vec::new()))
     }
 

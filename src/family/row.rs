@@ -11,6 +11,10 @@ use crate::base::Problem;
 use crate::dimensions::Dimension;
 use crate::dimensions::Dimensions;
 use crate::layout::Layout;
+use crate::line::AsBuilt;
+use crate::line::C_M_PER_S;
+use crate::line::Strip;
+use crate::line::width_for_impedance;
 use crate::order::Band;
 use crate::order::Order;
 use crate::prototype::coupling_coefficients;
@@ -52,6 +56,24 @@ pub fn tap_off(set: &Dimensions) -> Problem {
         format!("the tap of a resonator does not lie between its ends ({} resonators)", set.degree),
         "a tap height between 0.2 and 0.8 of the resonator's length",
     )
+}
+
+/// The strip of an impedance (ohm) that a key asks for, and its phase constant (rad/m) at a frequency.
+///
+/// # Errors
+/// `impedance-out-of-reach`.
+pub fn strip(built: &AsBuilt, key: &str, ohm: f64, at_hz: f64) -> Result<(Strip, f64), Vec<Problem>> {
+    let width_m = width_for_impedance(built, ohm, at_hz).map_err(|unreachable| {
+        vec![Problem::error(
+            "impedance-out-of-reach",
+            Place::Key(format!("filter.{key}")),
+            format!("no strip of {ohm} ohm: {}", unreachable.message),
+            unreachable.help,
+        )]
+    })?;
+    let strip = Strip::new(built, width_m);
+    let wave = std::f64::consts::TAU * at_hz * strip.at(at_hz).eps_eff.sqrt() / C_M_PER_S;
+    Ok((strip, wave))
 }
 
 /// Gaps from coupling coefficients, none below the least: a rough law that the probes replace.

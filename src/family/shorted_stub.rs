@@ -56,7 +56,7 @@ static KEYS: &[Key] = &[
 ];
 
 fn chain(order: &Order, degree: usize) -> StubChain {
-    StubChain { stubs: degree, end: End::Ground, sides: Sides::of(own::word(order, KEYS, "stubs")), outer_lines: false, patches: false }
+    StubChain { stubs: degree, end: End::Ground, sides: Sides::of(own::word(order, KEYS, "stubs")) }
 }
 
 /// Length of the stubs at the cutoff, rad: they are a quarter wave in the middle of the passband.
@@ -139,7 +139,7 @@ impl Family for ShortedStub {
         let wanted = |y: Vec<f64>, length: f64| y.into_iter().map(|y| (port_ohm / y, 0.5 * PI * length)).collect::<Vec<_>>();
         let feed_m = own::number(order, KEYS, "feed-length");
         let (lines, stubs) = (wanted(lines, LINE_OVER_STUB as f64), wanted(stubs, 1.0));
-        let list = chain(order, degree).guess(order, middle_hz, feed_m, &lines, &stubs, &[])?;
+        let list = chain(order, degree).guess(order, middle_hz, feed_m, &lines, &stubs)?;
         Ok((Dimensions { order: order.clone(), degree, list }, Vec::new()))
     }
 

@@ -60,7 +60,7 @@ impl Sides {
     }
 }
 
-/// A line with stubs across it.
+/// A line with stubs across it; the outer stubs stand at the feeds' ends.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub struct StubChain {
     /// How many.
@@ -69,10 +69,6 @@ pub struct StubChain {
     pub end: End,
     /// Where they leave.
     pub sides: Sides,
-    /// Whether the line begins and ends with a section of its own; otherwise the outer stubs stand at the feeds' ends.
-    pub outer_lines: bool,
-    /// Whether each stub carries a patch of another width at its end.
-    pub patches: bool,
 }
 
 /// The strips of one kind: their dimensions' names, how many, what they are called, whether their widths are knobs.
@@ -89,22 +85,17 @@ pub fn stub(k: usize, what: &str) -> String {
     format!("stub {k} {what}")
 }
 
-pub fn patch(k: usize, what: &str) -> String {
-    format!("patch {k} {what}")
-}
-
 impl StubChain {
     /// Sections of the line.
     pub fn lines(&self) -> usize {
-        if self.outer_lines { self.stubs + 1 } else { self.stubs.saturating_sub(1) }
+        self.stubs.saturating_sub(1)
     }
 
     /// Names of its dimensions, in drawing order.
     pub fn names(&self, order: &Order) -> Vec<String> {
         let pair = |name: fn(usize, &str) -> String, k: usize| ["width", "length"].map(|what| name(k, what));
         let lines = (1..=self.lines()).flat_map(|k| pair(line, k));
-        let stubs =
-            (1..=self.stubs).flat_map(|k| pair(stub, k).into_iter().chain(self.patches.then(|| pair(patch, k)).into_iter().flatten()));
+        let stubs = (1..=self.stubs).flat_map(|k| pair(stub, k));
         lines.chain(stubs).chain(feeds::names(order)).collect()
     }
 
@@ -119,7 +110,6 @@ impl StubChain {
         feed_m: f64,
         lines: &[Wanted],
         stubs: &[Wanted],
-        patches: &[Wanted],
     ) -> Result<Vec<Dimension>, Vec<Problem>> {
         let built = AsBuilt::nominal(order).without_loss();
         let mut problems = Vec::new();
@@ -132,42 +122,31 @@ impl StubChain {
         // A stub on both sides is two strips side by side.
         let share = if self.sides == Sides::Both { 2.0 } else { 1.0 };
         let stubs: Vec<Wanted> = stubs.iter().map(|(ohm, theta)| (share * ohm, *theta)).collect();
-        let patches: Vec<Wanted> = patches.iter().map(|(ohm, theta)| (share * ohm, *theta)).collect();
-        let (lines, stubs, patches) = (sized(line, lines), sized(stub, &stubs), sized(patch, &patches));
+        let (lines, stubs) = (sized(line, lines), sized(stub, &stubs));
         let ports = feeds::guess(order, &built, feed_m, at_hz).map_err(|found| problems.extend(found)).unwrap_or_default();
         if !problems.is_empty() {
             return Err(problems);
         }
         let feed = |port: usize| ports.iter().find(|d| d.name == format!("feed {port} width")).map(|d| Strip::new(&built, d.value_m));
         let (Some(first), Some(last)) = (feed(1), feed(2)) else { return Err(problems) };
-        let before = |k: usize| if self.outer_lines { lines.get(k) } else { k.checked_sub(1).and_then(|i| lines.get(i)) };
-        let after = |k: usize| lines.get(if self.outer_lines { k + 1 } else { k });
+        let before = |k: usize| k.checked_sub(1).and_then(|i| lines.get(i));
         let mut along: Vec<Dimension> = Vec::new();
         let mut tees = Vec::new();
         for (k, stub) in stubs.iter().enumerate() {
             let arm = |section: Option<&Sized>, feed: &Strip| section.map_or_else(|| feed.clone(), |s| s.strip.clone());
-            tees.push(tee(&arm(before(k), &first), &arm(after(k), &last), &stub.strip).at(at_hz));
+            tees.push(tee(&arm(before(k), &first), &arm(lines.get(k), &last), &stub.strip).at(at_hz));
         }
         for (i, section) in lines.iter().enumerate() {
             let [width, mut length] = section.dimensions(line, i + 1);
-            let left = if self.outer_lines { i.checked_sub(1) } else { Some(i) }.and_then(|k| tees.get(k));
-            let right = tees.get(if self.outer_lines { i } else { i + 1 });
+            let (left, right) = (tees.get(i), tees.get(i + 1));
             length.correct("tees", left.map_or(0.0, |t| t.shift_2_m) + right.map_or(0.0, |t| t.shift_1_m));
             along.extend([width, length]);
         }
         for (k, section) in stubs.iter().enumerate() {
             let [width, mut length] = section.dimensions(stub, k + 1);
             length.correct("tee", tees[k].shift_side_m);
-            let end = patches.get(k);
-            if end.is_none() {
-                section.end(self.end, order, &built, at_hz, &mut length);
-            }
+            section.end(self.end, order, &built, at_hz, &mut length);
             along.extend([width, length]);
-            if let Some(end) = end {
-                let [width, mut length] = end.dimensions(patch, k + 1);
-                end.end(self.end, order, &built, at_hz, &mut length);
-                along.extend([width, length]);
-            }
         }
         along.extend(ports);
         Ok(along)
@@ -177,11 +156,7 @@ impl StubChain {
     pub fn knobs(&self, set: &Dimensions, line_widths: bool, stub_widths: bool) -> Vec<Knob> {
         let at = |name: &str| set.list.iter().position(|d| d.name == name);
         let value = |name: &str| set.value(name).ok();
-        let kinds: [Kind; 3] = [
-            (stub, self.stubs, "stub", stub_widths),
-            (line, self.lines(), "line", line_widths),
-            (patch, if self.patches { self.stubs } else { 0 }, "patch", stub_widths),
-        ];
+        let kinds: [Kind; 2] = [(stub, self.stubs, "stub", stub_widths), (line, self.lines(), "line", line_widths)];
         let mirrored = |(name, count, ..): &Kind| {
             (1..=*count).all(|k| ["width", "length"].iter().all(|what| value(&name(k, what)) == value(&name(count + 1 - k, what))))
         };
@@ -216,11 +191,6 @@ impl StubChain {
         let end_width = value("feed 2 width".into())?;
         let mut next = 1;
         let names = |name: fn(usize, &str) -> String, k: usize| ["width", "length"].map(|what| name(k, what)).to_vec();
-        if self.outer_lines {
-            at = draft.step(at, value(line(1, "width"))?, Way::Right);
-            at = draft.strip(at, value(line(1, "length"))?, Way::Right, names(line, 1));
-            next = 2;
-        }
         let mut drawn: Vec<(Way, [Nm; 2], usize)> = Vec::new();
         for k in 1..=self.stubs {
             let on_width = if next <= self.lines() { value(line(next, "width"))? } else { end_width };
@@ -252,13 +222,7 @@ impl StubChain {
                 )]);
             }
             for (way, out) in ways.iter().zip(out) {
-                let mut end = draft.strip(out, length, *way, names(stub, k));
-                if self.patches {
-                    let patch_width = value(patch(k, "width"))?;
-                    widest = widest.max(patch_width);
-                    end = draft.step(end, patch_width, *way);
-                    end = draft.strip(end, value(patch(k, "length"))?, *way, names(patch, k));
-                }
+                let end = draft.strip(out, length, *way, names(stub, k));
                 match self.end {
                     End::Open => draft.open(end),
                     End::Ground => {
